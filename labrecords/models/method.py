@@ -1,0 +1,135 @@
+"""Test methods and their versions."""
+
+from __future__ import annotations
+
+from django.db import models
+from django.db.models import Q
+
+
+class VersionState(models.TextChoices):
+    DRAFT = "draft", "draft"
+    EFFECTIVE = "effective", "effective"
+    SUPERSEDED = "superseded", "superseded"
+
+
+class Titration(models.TextChoices):
+    DIRECT = "direct", "direct"
+    BLANK_DIFFERENCE = "blank_difference", "blank difference"
+    BACK = "back", "back"
+
+
+class Quantity(models.TextChoices):
+    AMOUNT_CONCENTRATION = "amount_concentration", "amount concentration"
+    MASS_CONCENTRATION = "mass_concentration", "mass concentration"
+    MASS_FRACTION = "mass_fraction", "mass fraction"
+    TITRANT_EQUIVALENT = "titrant_equivalent", "titrant equivalent per mass"
+
+
+class CurveQuantity(models.TextChoices):
+    PH = "pH", "pH"
+    MV = "mV", "mV"
+    CONDUCTIVITY = "conductivity", "conductivity"
+    TEMPERATURE = "temperature", "temperature"
+    ABSORBANCE = "absorbance", "absorbance"
+
+
+class Method(models.Model):
+    """A test, known by its code; the recipe is in its versions."""
+
+    code = models.CharField(max_length=20, unique=True)
+    title = models.CharField(max_length=120)
+
+    class Meta:
+        ordering = ["code"]
+
+    def __str__(self) -> str:
+        return self.code
+
+
+class MethodVersion(models.Model):
+    """A recipe; once effective it never changes."""
+
+    method = models.ForeignKey(Method, on_delete=models.PROTECT, related_name="versions")
+    number = models.PositiveSmallIntegerField()
+    state = models.CharField(max_length=10, choices=VersionState, default=VersionState.DRAFT)
+    effective_from = models.DateField(null=True)
+    reason = models.TextField(blank=True, help_text="why this version was made")
+    titrant = models.ForeignKey("Titrant", on_delete=models.PROTECT, related_name="+")
+    expressed_as = models.ForeignKey("Substance", on_delete=models.PROTECT, related_name="+")
+    titration = models.CharField(max_length=16, choices=Titration)
+    ratio = models.CharField(max_length=12, help_text="mol expressed-as substance per mol titrant")
+    excess_titrant = models.ForeignKey("Titrant", on_delete=models.PROTECT, null=True, related_name="+")
+    excess_volume = models.DecimalField(max_digits=8, decimal_places=3, null=True, help_text="mL, back titration")
+    sample_by = models.CharField(max_length=6, choices=[("volume", "volume"), ("mass", "mass")])
+    sample_unit = models.CharField(max_length=4, choices=[("mL", "mL"), ("g", "g")])
+    sample_amount = models.DecimalField(max_digits=10, decimal_places=4, help_text="nominal, in the unit")
+    dilutions = models.JSONField(default=list, help_text='[{"flask": "100.0", "aliquot": "10.00"}, ...] mL')
+    endpoint = models.CharField(max_length=10, choices=[("indicator", "indicator"), ("curve", "recorded curve")])
+    indicator = models.CharField(max_length=120, blank=True, help_text="indicator and colour change")
+    indicator_bias = models.DecimalField(max_digits=6, decimal_places=4, default=0, help_text="mL past equivalence")
+    indicator_u = models.DecimalField(max_digits=6, decimal_places=4, default=0, help_text="mL")
+    curve_quantity = models.CharField(max_length=12, choices=CurveQuantity, blank=True)
+    deciding_family = models.CharField(max_length=12, blank=True)
+    checking_family = models.CharField(max_length=12, blank=True)
+    fixed_reading = models.DecimalField(max_digits=8, decimal_places=3, null=True)
+    endpoints_expected = models.PositiveSmallIntegerField(default=1)
+    endpoint_chosen = models.PositiveSmallIntegerField(default=1)
+    agreement_limit = models.DecimalField(max_digits=4, decimal_places=1, default=3)
+    system = models.JSONField(null=True, help_text="the chemistry for the model family")
+    initial_volume = models.DecimalField(
+        max_digits=8, decimal_places=2, null=True, help_text="mL in the vessel at the start, for the model"
+    )
+    replicates_needed = models.PositiveSmallIntegerField()
+    blanks_needed = models.PositiveSmallIntegerField(default=0)
+    policy = models.CharField(max_length=12, choices=[("concordance", "concordance"), ("all", "all replicates")])
+    limit = models.DecimalField(max_digits=8, decimal_places=4)
+    limit_kind = models.CharField(max_length=12, choices=[("range_mL", "range, mL"), ("rsd_percent", "RSD, %")])
+    quantity = models.CharField(max_length=24, choices=Quantity)
+    unit = models.CharField(max_length=16)
+    places = models.PositiveSmallIntegerField(help_text="decimals of the reported result")
+    basis = models.CharField(
+        max_length=10, choices=[("as_is", "as is"), ("dried", "dried"), ("anhydrous", "anhydrous")], default="as_is"
+    )
+    coverage = models.CharField(
+        max_length=10, choices=[("k2", "k = 2"), ("effective", "from the effective degrees of freedom")], default="k2"
+    )
+    instructions = models.TextField(blank=True)
+
+    class Meta:
+        ordering = ["method", "-number"]
+        constraints = [
+            models.UniqueConstraint(fields=["method", "number"], name="method_version_number_once"),
+            models.UniqueConstraint(
+                fields=["method"], condition=Q(state="effective"), name="method_one_effective_version"
+            ),
+            models.CheckConstraint(condition=Q(state__in=VersionState.values), name="method_version_state_known"),
+            models.CheckConstraint(
+                condition=Q(state="draft") | Q(effective_from__isnull=False), name="method_version_effective_is_dated"
+            ),
+            models.CheckConstraint(
+                condition=~Q(titration="back") | Q(excess_titrant__isnull=False, excess_volume__gt=0),
+                name="method_version_back_has_an_excess",
+            ),
+            models.CheckConstraint(
+                condition=~Q(endpoint="curve") | (~Q(curve_quantity="") & ~Q(deciding_family="")),
+                name="method_version_curve_says_how",
+            ),
+            models.CheckConstraint(
+                condition=~Q(endpoint="indicator") | ~Q(indicator=""), name="method_version_indicator_named"
+            ),
+            models.CheckConstraint(
+                condition=Q(sample_amount__gt=0, limit__gt=0, replicates_needed__gte=1),
+                name="method_version_amounts_positive",
+            ),
+            models.CheckConstraint(
+                condition=Q(sample_by="volume", sample_unit="mL") | Q(sample_by="mass", sample_unit="g"),
+                name="method_version_sample_unit_fits",
+            ),
+            models.CheckConstraint(
+                condition=~Q(titration="blank_difference") | Q(blanks_needed__gte=1),
+                name="method_version_blank_difference_has_blanks",
+            ),
+        ]
+
+    def __str__(self) -> str:
+        return f"{self.method.code}, version {self.number}"

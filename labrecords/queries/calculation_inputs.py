@@ -1,0 +1,288 @@
+"""The canonical inputs of a calculation: everything it rests on, as plain data, digits as read."""
+
+from __future__ import annotations
+
+from decimal import Decimal
+from typing import Any
+
+import analysis
+from labrecords.models import (
+    Basis, Calculation, Instrument, InstrumentCalibration, InstrumentKind, Replicate, ReplicateKind, Run,
+    Standardization, Substance, UsedInstrument,
+)  # fmt: skip
+from labrecords.queries.replicate import instruments_of, replicates_of
+
+SQRT_6 = 6**0.5
+SQRT_3 = 3**0.5
+
+
+def inputs_for_run(run: Run) -> dict[str, Any]:
+    """The inputs of a run's calculation, as analysis.determination.compute expects them."""
+    version, used = run.method_version, instruments_of(run)
+    titrant = titrant_inputs(run.standardization)
+    return {
+        "kind": "run",
+        "engine": analysis.VERSION,
+        "method": run_method(run),
+        "substance": substance_inputs(version.expressed_as),
+        "titrant": titrant,
+        "excess": _excess(run, used),
+        "burette": burette_inputs(used["burette"]),
+        "temperature_correction": False,
+        "sample": _sample(version.sample_by, version.sample_unit, used),
+        "dilutions": _dilutions(version.dilutions, used),
+        **_titrations(run),
+        "specification": _specification(run),
+    }
+
+
+def inputs_for_standardization(standardization: Standardization) -> dict[str, Any]:
+    """The inputs of a standardization's calculation."""
+    titrant, used = standardization.lot.titrant, instruments_of(standardization)
+    by_mass = standardization.basis == Basis.MASS
+    inputs = {
+        "kind": "standardization",
+        "engine": analysis.VERSION,
+        "method": standardization_method(standardization),
+        "standard": _standard(standardization),
+        "burette": burette_inputs(used["burette"]),
+        "temperature_correction": False,
+        "sample": _sample("mass" if by_mass else "volume", "g" if by_mass else "mL", used),
+        "nominal": str(titrant.nominal),
+        "window": {"low": str(titrant.window_low), "high": str(titrant.window_high)},
+        **_titrations(standardization),
+    }
+    if by_mass:
+        inputs["balance"] = _balance(used["balance"])
+    return inputs
+
+
+def run_method(run: Run) -> dict[str, Any]:
+    """The method part of a run's inputs."""
+    version = run.method_version
+    return {
+        "titration": version.titration,
+        "ratio": version.ratio,
+        "quantity": version.quantity,
+        "unit": version.unit,
+        "basis": version.basis,
+        "loss_percent": _text(run.loss_percent),
+        "loss_u": None,
+        "policy": version.policy,
+        "limit": str(version.limit),
+        "limit_kind": version.limit_kind,
+        "replicates_needed": version.replicates_needed,
+        "places": version.places,
+        "coverage": version.coverage,
+        "indicator_bias_mL": str(version.indicator_bias) if version.endpoint == "indicator" else None,
+        "indicator_u_mL": str(version.indicator_u) if version.endpoint == "indicator" else None,
+        "curve": _curve_settings(run),
+        "equivalent_formula": version.expressed_as.formula if version.quantity == "titrant_equivalent" else None,
+    }
+
+
+def standardization_method(standardization: Standardization) -> dict[str, Any]:
+    """The method part of a standardization's inputs, from the titrant's rule."""
+    titrant = standardization.lot.titrant
+    return {
+        "titration": "direct",
+        "ratio": titrant.ratio,
+        "policy": titrant.policy,
+        "limit": str(titrant.limit),
+        "limit_kind": titrant.limit_kind,
+        "replicates_needed": titrant.replicates_needed,
+        "places": 5,
+        "coverage": titrant.coverage,
+        "indicator_bias_mL": str(titrant.indicator_bias),
+        "indicator_u_mL": str(titrant.indicator_u),
+        "curve": None,
+    }
+
+
+def titrant_inputs(standardization: Standardization) -> dict[str, Any]:
+    """A titrant's concentration with the physical inputs it rests on, so that shared ones count once."""
+    calculation = standardization.calculation
+    if calculation is None or calculation.value is None:
+        raise ValueError(f"{standardization.number} has no concentration yet")
+    return {
+        "lot": standardization.lot.number,
+        "standardization": standardization.number,
+        "concentration": repr(calculation.value),
+        "u": repr(calculation.standard_uncertainty),
+        "degrees_of_freedom": repr(calculation.degrees_of_freedom) if calculation.degrees_of_freedom else None,
+        "components": titrant_components(calculation),
+    }
+
+
+def titrant_components(calculation: Calculation) -> list[dict[str, str]]:
+    """Signed contributions [mol/L] of the inputs of a concentration, by physical key."""
+    return [
+        {"key": line["key"], "label": line["label"], "u": repr(line["contribution"])}
+        for line in calculation.outputs["budget"]
+    ]
+
+
+def substance_inputs(substance: Substance) -> dict[str, Any]:
+    return {
+        "name": substance.name,
+        "formula": substance.formula,
+        "molar_mass": repr(substance.molar_mass),
+        "u": repr(substance.molar_mass_u),
+    }
+
+
+def burette_inputs(used: UsedInstrument) -> dict[str, Any]:
+    """A burette with its tolerance and the correction table of the calibration that held."""
+    burette, calibration = used.instrument, used.calibration
+    return {
+        "key": f"burette:{burette.identifier}",
+        "identifier": burette.identifier,
+        "nominal": str(burette.capacity),
+        "resolution": str(burette.resolution),
+        "tolerance": str(burette.tolerance),
+        "table": calibration.corrections,
+        "temperature_reference": "20",
+    }
+
+
+def standard_uncertainty(instrument: Instrument, calibration: InstrumentCalibration) -> float:
+    """From the certificate where it states one; else from the tolerance.
+
+    Glassware: triangular, half-width over the root of six (QUAM:2012 A2). Balances and others: rectangular.
+    """
+    if calibration.uncertainty is not None:
+        return float(calibration.uncertainty) / 2
+    is_glassware = instrument.kind in (InstrumentKind.PIPETTE, InstrumentKind.FLASK, InstrumentKind.BURETTE)
+    return float(instrument.tolerance) / (SQRT_6 if is_glassware else SQRT_3)
+
+
+def _excess(run: Run, used: dict[str, UsedInstrument]) -> dict[str, Any] | None:
+    if run.excess_standardization is None:
+        return None
+    pipette = used["excess pipette"]
+    return {
+        **titrant_inputs(run.excess_standardization),
+        "volume": str(run.method_version.excess_volume),
+        "volume_u": repr(standard_uncertainty(pipette.instrument, pipette.calibration)),
+        "key": _key(pipette),
+    }
+
+
+def _sample(by: str, unit: str, used: dict[str, UsedInstrument]) -> dict[str, Any]:
+    measure = used["balance" if by == "mass" else "pipette"]
+    return {
+        "by": by,
+        "unit": unit,
+        "u": repr(standard_uncertainty(measure.instrument, measure.calibration)),
+        "key": _key(measure),
+        "label": f"{measure.instrument.get_kind_display()} {measure.instrument.identifier}",
+        "buoyancy_density": None,
+    }
+
+
+def _balance(used: UsedInstrument) -> dict[str, Any]:
+    return {
+        "key": _key(used),
+        "identifier": used.instrument.identifier,
+        "u": repr(standard_uncertainty(used.instrument, used.calibration)),
+    }
+
+
+def _dilutions(steps: list[dict[str, str]], used: dict[str, UsedInstrument]) -> list[dict[str, Any]]:
+    lines = []
+    for position, step in enumerate(steps, start=1):
+        flask, aliquot = used[f"flask {position}"], used[f"aliquot {position}"]
+        lines.append(
+            {
+                "flask": step["flask"],
+                "flask_u": repr(standard_uncertainty(flask.instrument, flask.calibration)),
+                "flask_key": _key(flask),
+                "aliquot": step["aliquot"],
+                "aliquot_u": repr(standard_uncertainty(aliquot.instrument, aliquot.calibration)),
+                "aliquot_key": _key(aliquot),
+            }
+        )
+    return lines
+
+
+def _standard(standardization: Standardization) -> dict[str, Any]:
+    if standardization.against is not None:
+        return {"basis": "titrant", **titrant_inputs(standardization.against)}
+    standard = standardization.reference_standard
+    if standard is None:
+        raise ValueError(f"{standardization.number} rests on no standard")
+    return {
+        "basis": "mass",
+        "key": f"standard:{standard.number}",
+        "label": f"{standard.substance.name} {standard.number}",
+        "formula": standard.substance.formula,
+        "molar_mass": repr(standard.substance.molar_mass),
+        "molar_mass_u": repr(standard.substance.molar_mass_u),
+        "purity": str(standard.purity),
+        "purity_u": str(standard.purity_expanded / standard.purity_k),
+        "buoyancy_density": _text(standard.substance.density),
+    }
+
+
+def _titrations(record: Run | Standardization) -> dict[str, list[dict[str, Any]]]:
+    items = list(replicates_of(record))
+    return {
+        "replicates": [_titration(item) for item in items if item.kind == ReplicateKind.SAMPLE],
+        "blanks": [_titration(item) for item in items if item.kind == ReplicateKind.BLANK],
+    }
+
+
+def _titration(item: Replicate) -> dict[str, Any]:
+    curve = item.curve
+    return {
+        "number": item.number,
+        "amount": _text(item.amount),
+        "start": _text(item.start),
+        "end": _text(item.end),
+        "temperature": _text(item.temperature),
+        "curve": {"volume": curve.volumes, "reading": curve.readings} if curve else None,
+        "excluded": item.is_excluded,
+    }
+
+
+def _curve_settings(run: Run) -> dict[str, Any] | None:
+    version = run.method_version
+    if version.endpoint != "curve":
+        return None
+    system = dict(version.system) if version.system else None
+    if system is not None:
+        calculation = run.standardization.calculation
+        system["titrant_concentration"] = calculation.value if calculation else float(version.titrant.nominal)
+        system["sample_volume"] = float(version.initial_volume or 50)
+    return {
+        "quantity": version.curve_quantity,
+        "deciding": version.deciding_family,
+        "checking": version.checking_family or None,
+        "fixed_reading": _text(version.fixed_reading),
+        "expected": version.endpoints_expected,
+        "chosen": version.endpoint_chosen,
+        "agreement_limit": str(version.agreement_limit),
+        "system": system,
+    }
+
+
+def _specification(run: Run) -> dict[str, Any] | None:
+    limit = run.specification_limit
+    if limit is None:
+        return None
+    return {
+        "lower": _text(limit.lower),
+        "upper": _text(limit.upper),
+        "places": limit.places,
+        "rounding": limit.rounding,
+        "rule": limit.rule,
+        "guard_factor": str(limit.guard_factor),
+    }
+
+
+def _key(used: UsedInstrument) -> str:
+    return f"{used.instrument.kind}:{used.instrument.identifier}"
+
+
+def _text(value: Decimal | None) -> str | None:
+    return None if value is None else str(value)

@@ -1,0 +1,84 @@
+"""What a test method must say before it may be used."""
+
+from __future__ import annotations
+
+import re
+from fractions import Fraction
+
+from labrecords.models import Method, MethodVersion, User, VersionState
+
+CODE = re.compile(r"[A-Z][A-Z0-9]*(-[A-Z0-9]+)*")
+FAMILIES = ("model", "gran", "derivative", "parabola", "polynomial", "segments", "fixed")
+
+
+def objections_to_recording_method(*, by: User, code: str, title: str) -> list[str]:
+    """Supervisors record methods; a code is short, in capitals, and used once."""
+    found = _objections_to_author(by)
+    if not CODE.fullmatch(code) or len(code) > 20:
+        found.append(f"Code is {code!r}: capital letters, digits and hyphens, a letter first, 20 at most.")
+    if Method.objects.filter(code=code).exists():
+        found.append(f"Code {code} is in use. Record a new version of that method, or choose another code.")
+    if not title.strip():
+        found.append("Title is empty: name the test, for example Titratable acidity.")
+    return found
+
+
+def objections_to_recording_version(version: MethodVersion, *, by: User) -> list[str]:
+    """A recipe must hang together before it is kept even as a draft."""
+    found = _objections_to_author(by)
+    if version.state != VersionState.DRAFT:
+        return [*found, f"{version} is {version.state}; an effective version never changes. Record a new version."]
+    found += objections_to_ratio(version.ratio)
+    found += _objections_to_endpoint(version)
+    if version.titration == "back" and (version.excess_titrant is None or not version.excess_volume):
+        found.append("Back titration: name the excess solution and the volume that is pipetted.")
+    if version.titration == "blank_difference" and version.blanks_needed < 1:
+        found.append("Blank difference: at least one blank is needed; blanks needed is 0.")
+    if version.sample_amount is None or version.sample_amount <= 0:
+        found.append(f"Sample amount is {version.sample_amount}: a number above 0 in {version.sample_unit}.")
+    if version.limit is None or version.limit <= 0:
+        found.append(f"Limit for the replicates is {version.limit}: a number above 0.")
+    if not 1 <= version.replicates_needed <= 20:
+        found.append(f"Replicates needed is {version.replicates_needed}: from 1 to 20.")
+    if not version.reason.strip():
+        found.append("Reason is empty: say why this version is made.")
+    return found
+
+
+def objections_to_ratio(ratio: str) -> list[str]:
+    """A stoichiometric ratio is a whole number, a decimal or a fraction above zero."""
+    try:
+        value = Fraction(ratio)
+    except (ValueError, ZeroDivisionError):
+        return [f"Ratio is {ratio!r}: a number or a fraction such as 1, 2 or 1/2."]
+    return [] if value > 0 else [f"Ratio is {ratio}: a number above 0."]
+
+
+def objections_to_making_effective(version: MethodVersion, *, by: User) -> list[str]:
+    """Only a draft, only by a supervisor."""
+    found = _objections_to_author(by)
+    if version.state != VersionState.DRAFT:
+        found.append(f"{version} is {version.state}. Only a draft is made effective.")
+    return found
+
+
+def _objections_to_author(by: User) -> list[str]:
+    return [] if by.is_supervisor else [f"{by.full_name} is not a supervisor. A supervisor makes methods."]
+
+
+def _objections_to_endpoint(version: MethodVersion) -> list[str]:
+    if version.endpoint == "indicator":
+        return [] if version.indicator.strip() else ["Indicator is empty: name it and its colour change."]
+    found = []
+    for label, family in (("Deciding", version.deciding_family), ("Checking", version.checking_family)):
+        if (family or label == "Deciding") and family not in FAMILIES:
+            found.append(f"{label} family is {family!r}: one of {', '.join(FAMILIES)}.")
+    if version.deciding_family and version.deciding_family == version.checking_family:
+        found.append(f"Deciding and checking family are both {version.deciding_family}: a check needs another one.")
+    if "fixed" in (version.deciding_family, version.checking_family) and version.fixed_reading is None:
+        found.append("Fixed reading is empty: the family fixed needs the pH or mV of the endpoint.")
+    if "model" in (version.deciding_family, version.checking_family) and not version.system:
+        found.append("Chemistry is empty: the family model needs its analytes and constants.")
+    if not version.curve_quantity:
+        found.append("Curve quantity is empty: say what the curve records.")
+    return found

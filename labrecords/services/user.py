@@ -1,0 +1,100 @@
+"""Accounts: recorded, changed and closed by an administrator; signing in and out is on the trail too."""
+
+from __future__ import annotations
+
+from django.contrib.auth.password_validation import validate_password
+from django.core.exceptions import ValidationError
+from django.db import connection, transaction
+
+from labrecords.errors import Refused, refuse_if
+from labrecords.models import Role, User
+from labrecords.rules.user import objections_to_account, objections_to_administering
+from labrecords.services import audit
+
+
+@transaction.atomic(durable=True)
+def record_user(*, by: User, username: str, full_name: str, roles: list[str], password: str) -> User:
+    """Record a new account; Refused when the name is taken, a role unknown or the password weak."""
+    refuse_if([*objections_to_administering(by), *objections_to_account(username, full_name=full_name, roles=roles)])
+    user = User(username=username, full_name=full_name, roles=roles)
+    _set_password(user, password)
+    with audit.event("user.record", by=by, subject=username):
+        user.save()
+    return user
+
+
+@transaction.atomic(durable=True)
+def record_first_administrator(*, username: str, full_name: str, password: str) -> User:
+    """Record the first account of an empty laboratory, an administrator; it records itself."""
+    roles = [Role.ADMINISTRATOR.value]
+    refuse_if(
+        [
+            *(["There are accounts already; an administrator records others."] if User.objects.exists() else []),
+            *objections_to_account(username, full_name=full_name, roles=roles),
+        ]
+    )
+    with connection.cursor() as cursor:
+        cursor.execute("SELECT nextval(pg_get_serial_sequence('labrecords_user', 'id'))")
+        user = User(pk=cursor.fetchone()[0], username=username, full_name=full_name, roles=roles)
+    _set_password(user, password)
+    with audit.event("user.record", by=user, subject=username, reason="the first account"):
+        user.save(force_insert=True)
+    return user
+
+
+@transaction.atomic(durable=True)
+def correct_user(user: User, *, by: User, full_name: str, roles: list[str], reason: str) -> User:
+    """Change a person's name or roles, with a reason."""
+    user = User.objects.select_for_update().get(pk=user.pk)
+    refuse_if(
+        [
+            *objections_to_administering(by),
+            *objections_to_account(user.username, full_name=full_name, roles=roles, known=user),
+            *([] if reason.strip() else ["Reason is empty: say why the account is changed."]),
+        ]
+    )
+    user.full_name, user.roles = full_name, roles
+    with audit.event("user.correct", by=by, subject=user.username, reason=reason):
+        user.save(update_fields=["full_name", "roles"])
+    return user
+
+
+@transaction.atomic(durable=True)
+def close_user(user: User, *, by: User, reason: str) -> User:
+    """Close an account: it signs in and signs nothing more; what it signed stays."""
+    user = User.objects.select_for_update().get(pk=user.pk)
+    refuse_if(
+        [
+            *objections_to_administering(by),
+            *([f"{user} is you: another administrator closes your account."] if user.pk == by.pk else []),
+            *([] if reason.strip() else ["Reason is empty: say why the account is closed."]),
+        ]
+    )
+    user.is_active = False
+    with audit.event("user.close", by=by, subject=user.username, reason=reason):
+        user.save(update_fields=["is_active"])
+    return user
+
+
+@transaction.atomic(durable=True)
+def change_password(user: User, *, by: User, current: str, password: str) -> User:
+    """A person changes their own password and knows the current one; nobody sets another's to sign as them."""
+    user = User.objects.select_for_update().get(pk=user.pk)
+    refuse_if(
+        [
+            *([] if user.pk == by.pk else ["A password is changed by its owner only."]),
+            *([] if user.check_password(current) else ["Current password is not right; nothing was changed."]),
+        ]
+    )
+    _set_password(user, password)
+    with audit.event("user.change_password", by=by, subject=user.username):
+        user.save(update_fields=["password"])
+    return user
+
+
+def _set_password(user: User, password: str) -> None:
+    try:
+        validate_password(password, user)
+    except ValidationError as error:
+        raise Refused([f"Password: {message}" for message in error.messages]) from error
+    user.set_password(password)

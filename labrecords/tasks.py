@@ -1,0 +1,21 @@
+"""What the worker does: ids in, one call, nothing else."""
+
+from __future__ import annotations
+
+from celery import shared_task
+
+from labrecords.services import calculation
+
+
+@shared_task(name="labrecords.tasks.compute_request")
+def compute_request(request_id: int) -> None:
+    """Compute one waiting request."""
+    if calculation.claim_request(request_id):
+        calculation.record_calculation(request_id)
+
+
+@shared_task(name="labrecords.tasks.sweep_waiting")
+def sweep_waiting() -> None:
+    """Compute what a lost message left waiting."""
+    for request_id in calculation.overdue_requests():
+        compute_request.delay(request_id=request_id)

@@ -1,0 +1,31 @@
+"""The bench: an analyst's first page."""
+
+from __future__ import annotations
+
+from django.http import HttpRequest, HttpResponse
+from django.shortcuts import render
+from django.utils import timezone
+from django.views.decorators.http import require_GET
+
+from labrecords.queries.batch import samples_waiting
+from labrecords.queries.bench import calibrations_due, lots_in_use, open_sheets_of
+from labrecords.views.access import signed_in
+
+
+@signed_in
+@require_GET
+def list(request: HttpRequest) -> HttpResponse:
+    """Samples waiting, my open sheets, lots in use, what is due."""
+    now = timezone.now()
+    runs, standardizations = open_sheets_of(request.user)
+    return render(
+        request,
+        "bench/list.html",
+        {
+            "samples": samples_waiting()[:40],
+            "runs": runs,
+            "standardizations": standardizations,
+            "lots": lots_in_use(at=now),
+            "calibrations": calibrations_due(at=now),
+        },
+    )
