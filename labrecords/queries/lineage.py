@@ -2,9 +2,13 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import Any
+
 from django.db import connection
 
-DOWN_FROM_STANDARDIZATIONS = """
+RESTING = """
 WITH RECURSIVE resting (id) AS (
     SELECT id FROM labrecords_standardization WHERE id = ANY (%s)
     UNION
@@ -12,21 +16,116 @@ WITH RECURSIVE resting (id) AS (
 )
 """
 
+CHAIN_UP = """
+WITH RECURSIVE chain (id, depth, via) AS (
+    SELECT standardization_id, 1, 'titrant' FROM labrecords_run WHERE id = %(run)s
+    UNION ALL
+    SELECT excess_standardization_id, 1, 'excess solution' FROM labrecords_run
+        WHERE id = %(run)s AND excess_standardization_id IS NOT NULL
+    UNION ALL
+    SELECT id, 0, 'titrant' FROM labrecords_standardization WHERE id = %(standardization)s
+    UNION ALL
+    SELECT above.against_id, chain.depth + 1, chain.via
+        FROM labrecords_standardization AS above JOIN chain ON above.id = chain.id
+        WHERE above.against_id IS NOT NULL
+)
+SELECT chain.depth, chain.via, s.id, s.number, s.state, lot.number, titrant.name, s.basis, calc.value,
+       calc.expanded_uncertainty, person.full_name, s.started_at, standard.number, substance.name, standard.purity,
+       standard.state, file.id, file.name, file.sha256
+FROM chain
+JOIN labrecords_standardization AS s ON s.id = chain.id
+JOIN labrecords_titrantlot AS lot ON lot.id = s.lot_id
+JOIN labrecords_titrant AS titrant ON titrant.id = lot.titrant_id
+JOIN labrecords_user AS person ON person.id = s.started_by_id
+LEFT JOIN labrecords_calculation AS calc ON calc.id = s.calculation_id
+LEFT JOIN labrecords_referencestandard AS standard ON standard.id = s.reference_standard_id
+LEFT JOIN labrecords_substance AS substance ON substance.id = standard.substance_id
+LEFT JOIN labrecords_storedfile AS file ON file.id = standard.certificate_id
+ORDER BY chain.via DESC, chain.depth
+"""
 
-def standardizations_resting_on(ids: list[int]) -> list[int]:
+FAN_DOWN = """
+SELECT run.id, run.number, run.state, method.code, sample.number, batch.number, product.name, batch.state,
+       calc.value, calc.expanded_uncertainty, calc.unit, calc.outcome, run.started_at,
+       EXISTS (SELECT 1 FROM labrecords_question AS q WHERE q.run_id = run.id AND q.answered_at IS NULL)
+FROM labrecords_run AS run
+JOIN labrecords_methodversion AS version ON version.id = run.method_version_id
+JOIN labrecords_method AS method ON method.id = version.method_id
+JOIN labrecords_sample AS sample ON sample.id = run.sample_id
+LEFT JOIN labrecords_batch AS batch ON batch.id = sample.batch_id
+LEFT JOIN labrecords_product AS product ON product.id = batch.product_id
+LEFT JOIN labrecords_calculation AS calc ON calc.id = run.calculation_id
+WHERE run.standardization_id IN (SELECT id FROM resting) OR run.excess_standardization_id IN (SELECT id FROM resting)
+ORDER BY run.started_at DESC, run.id DESC
+"""
+
+
+@dataclass(frozen=True, slots=True)
+class ChainLink:
+    """One standardization on the way up, with the standard and its certificate where the chain ends."""
+
+    depth: int
+    via: str
+    standardization_id: int
+    number: str
+    state: str
+    lot: str
+    titrant: str
+    basis: str
+    value: float | None
+    expanded_uncertainty: float | None
+    started_by: str
+    started_at: Any
+    standard: str | None
+    substance: str | None
+    purity: Any
+    standard_state: str | None
+    certificate_id: int | None
+    certificate: str | None
+    certificate_sha256: str | None
+
+
+@dataclass(frozen=True, slots=True)
+class RestingRun:
+    """One run on the way down, with its batch."""
+
+    id: int
+    number: str
+    state: str
+    method: str
+    sample: str
+    batch: str | None
+    product: str | None
+    batch_state: str | None
+    value: float | None
+    expanded_uncertainty: float | None
+    unit: str | None
+    outcome: str | None
+    started_at: Any
+    in_question: bool
+
+
+def chain_up(*, run_id: int | None = None, standardization_id: int | None = None) -> list[ChainLink]:
+    """The standardizations a run (or a standardization, itself first) rests on, up to the certificates."""
+    with connection.cursor() as cursor:
+        cursor.execute(CHAIN_UP, {"run": run_id, "standardization": standardization_id})
+        return [ChainLink(*row) for row in cursor.fetchall()]
+
+
+def fan_down(standardization_ids: Sequence[int]) -> list[RestingRun]:
+    """Every run that rests on these standardizations at any remove, newest first."""
+    with connection.cursor() as cursor:
+        cursor.execute(RESTING + FAN_DOWN, [list(standardization_ids)])
+        return [RestingRun(*row) for row in cursor.fetchall()]
+
+
+def standardizations_resting_on(ids: Sequence[int]) -> list[int]:
     """The given standardizations and every one that rests on them through other titrants."""
     with connection.cursor() as cursor:
-        cursor.execute(DOWN_FROM_STANDARDIZATIONS + "SELECT id FROM resting ORDER BY id", [ids])
+        cursor.execute(RESTING + "SELECT id FROM resting ORDER BY id", [list(ids)])
         return [row[0] for row in cursor.fetchall()]
 
 
-def runs_resting_on(ids: list[int]) -> list[int]:
-    """Every run whose titrant or excess solution has its concentration, at any remove, from these."""
-    with connection.cursor() as cursor:
-        cursor.execute(
-            DOWN_FROM_STANDARDIZATIONS
-            + "SELECT run.id FROM labrecords_run AS run WHERE run.standardization_id IN (SELECT id FROM resting)"
-            " OR run.excess_standardization_id IN (SELECT id FROM resting) ORDER BY run.id",
-            [ids],
-        )
-        return [row[0] for row in cursor.fetchall()]
+def runs_resting_on(ids: Sequence[int]) -> list[int]:
+    """Ids of every run whose titrant or excess solution has its concentration, at any remove, from these."""
+    return [run.id for run in fan_down(ids)]

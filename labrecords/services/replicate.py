@@ -15,7 +15,7 @@ from labrecords.models import Curve, Instrument, Replicate, ReplicateKind, Run, 
 from labrecords.queries.instrument import calibration_at
 from labrecords.queries.replicate import next_replicate_number
 from labrecords.rules.replicate import (
-    objections_to_adding, objections_to_attaching, objections_to_excluding, objections_to_reading,
+    objections_to_adding, objections_to_attaching, objections_to_excluding, objections_to_readings,
 )  # fmt: skip
 from labrecords.services import audit
 from labrecords.services.calculation import ask_for_calculation
@@ -34,25 +34,26 @@ def add_replicate(record: Record, *, by: User, kind: str) -> Replicate:
 
 
 @transaction.atomic(durable=True)
-def record_reading(
-    replicate: Replicate, *, by: User, field: str, value: Decimal | str | None, reason: str = ""
+def record_readings(
+    replicate: Replicate, *, by: User, values: Mapping[str, Decimal | str | None], reason: str = ""
 ) -> Replicate:
-    """Keep one cell: amount, start, end, temperature or observation.
+    """Keep one or more cells of a titration: amount, start, end, temperature, observation.
 
     Filling an empty cell needs nothing more; changing a kept value is a correction and needs a reason.
     """
     record = lock_record(replicate.run or replicate.standardization)
     replicate = Replicate.objects.select_for_update(of=("self",)).get(pk=replicate.pk)
-    before = getattr(replicate, field)
-    if before == value and str(before) == str(value):
+    changed = {field: value for field, value in values.items() if str(getattr(replicate, field)) != str(value)}
+    if not changed:
         return replicate
-    refuse_if(objections_to_reading(replicate, record=record, by=by, field=field, value=value, reason=reason))
-    is_correction = before not in (None, "")
-    setattr(replicate, field, value)
-    replicate.corrections += is_correction
-    action = "replicate.correct" if is_correction else "replicate.record"
+    refuse_if(objections_to_readings(replicate, record=record, by=by, values=changed, reason=reason))
+    corrected = [field for field in changed if getattr(replicate, field) not in (None, "")]
+    for field, value in changed.items():
+        setattr(replicate, field, value)
+    replicate.corrections += len(corrected)
+    action = "replicate.correct" if corrected else "replicate.record"
     with audit.event(action, by=by, subject=record.number, reason=reason) as event:
-        replicate.save(update_fields=[field, "corrections"])
+        replicate.save(update_fields=[*changed, "corrections"])
         ask_for_calculation(record, by=by, at=event.at)
     return replicate
 
