@@ -28,7 +28,7 @@ YEARS_AHEAD = 30
 def objections_to_burette_reading(
     start: Decimal | None, end: Decimal | None, *, capacity: Decimal, resolution: Decimal, burette: str
 ) -> list[str]:
-    """Each reading lies on the burette and has no more places than can be read; the end is not below the start."""
+    """Each reading lies on the burette with places that can be read; the end is not below the start."""
     found = []
     for field, value in (("Start", start), ("End", end)):
         if value is not None:
@@ -65,7 +65,9 @@ def remarks_on_burette_reading(value: Decimal | None, *, field: str, resolution:
     readable = places_of(Decimal(shortest(resolution)))
     if value is None or not value.is_finite() or places_of(value) >= readable:
         return []
-    return [f"{field} is {plain(value)} mL with {_places(places_of(value))}; the burette is read to {readable}."]
+    return [
+        f"{field} is {plain(value)} mL with {_places(places_of(value))}; the burette is read to {readable}."
+    ]
 
 
 def objections_to_sample_amount(
@@ -76,7 +78,7 @@ def objections_to_sample_amount(
     capacity: Decimal | None = None,
     field: str = "Sample amount",
 ) -> list[str]:
-    """A positive amount that its balance or pipette can give, not so far from the usual one as a wrong unit is."""
+    """Positive, within what its instrument takes, and not as far from the usual as a wrong unit is."""
     if amount is None:
         return []
     about = f"about {shortest(expected)} {unit}" if expected else f"an amount in {unit}"
@@ -86,11 +88,12 @@ def objections_to_sample_amount(
         return [f"{field} is {plain(amount)} {unit}; {about} is expected, more than 0."]
     found = []
     if expected and not 1 / WRONG_UNIT <= amount / expected <= WRONG_UNIT:
-        found.append(
-            f"{field} is {plain(amount)} {unit}; {about} is expected. {_slip(amount, unit=unit, expected=expected)}"
-        )
+        slip = _slip(amount, unit=unit, expected=expected)
+        found.append(f"{field} is {plain(amount)} {unit}; {about} is expected. {slip}")
     elif capacity is not None and amount > capacity:
-        found.append(f"{field} is {plain(amount)} {unit}; the instrument takes up to {shortest(capacity)} {unit}.")
+        found.append(
+            f"{field} is {plain(amount)} {unit}; the instrument takes up to {shortest(capacity)} {unit}."
+        )
     return found
 
 
@@ -100,7 +103,9 @@ def remarks_on_sample_amount(
     """More than half away from the usual amount: possible, and worth a second look."""
     if amount is None or not expected or not amount.is_finite() or abs(amount - expected) <= expected / 2:
         return []
-    return [f"{field} is {plain(amount)} {unit}, more than 50 % away from the usual {shortest(expected)} {unit}."]
+    return [
+        f"{field} is {plain(amount)} {unit}, more than 50 % away from the usual {shortest(expected)} {unit}."
+    ]
 
 
 def objections_to_temperature(value: Decimal | None, *, field: str = "Temperature") -> list[str]:
@@ -184,7 +189,9 @@ def objections_to_order(
     """The later of two days comes after the earlier one."""
     if earlier is None or later is None or later > earlier:
         return []
-    return [f"{later_field} is {day(later)}; a day after {earlier_field.lower()}, {day(earlier)}, is expected."]
+    return [
+        f"{later_field} is {day(later)}; a day after {earlier_field.lower()}, {day(earlier)}, is expected."
+    ]
 
 
 def day(value: date) -> str:

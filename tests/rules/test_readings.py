@@ -8,10 +8,21 @@ from decimal import Decimal
 import pytest
 
 from labrecords.rules.readings import (
-    day, objections_to_burette_reading, objections_to_concentration, objections_to_date, objections_to_millivolts,
-    objections_to_order, objections_to_ph, objections_to_purity, objections_to_sample_amount, objections_to_slope,
-    objections_to_temperature, remarks_on_burette_reading, remarks_on_sample_amount, remarks_on_temperature,
-)  # fmt: skip
+    day,
+    objections_to_burette_reading,
+    objections_to_concentration,
+    objections_to_date,
+    objections_to_millivolts,
+    objections_to_order,
+    objections_to_ph,
+    objections_to_purity,
+    objections_to_sample_amount,
+    objections_to_slope,
+    objections_to_temperature,
+    remarks_on_burette_reading,
+    remarks_on_sample_amount,
+    remarks_on_temperature,
+)
 
 TODAY = date(2026, 12, 1)
 
@@ -24,7 +35,8 @@ def burette(start: str | None, end: str | None, *, resolution: str = "0.050000")
 
 
 @pytest.mark.parametrize(
-    ("start", "end"), [("0.00", "10.00"), ("0.05", "50.00"), (None, "12.3"), ("3.10", None), (None, None), ("0", "0")]
+    ("start", "end"),
+    [("0.00", "10.00"), ("0.05", "50.00"), (None, "12.3"), ("3.10", None), (None, None), ("0", "0")],
 )
 def test_objections_to_burette_reading_lets_plausible_ones_pass(start: str | None, end: str | None) -> None:
     assert burette(start, end) == []
@@ -86,7 +98,9 @@ def test_objections_to_sample_amount_refuses_what_cannot_be(amount: str) -> None
 
 
 def test_objections_to_sample_amount_minds_what_the_instrument_takes() -> None:
-    (sentence,) = objections_to_sample_amount(Decimal(230), unit="g", expected=Decimal(150), capacity=Decimal("220.00"))
+    (sentence,) = objections_to_sample_amount(
+        Decimal(230), unit="g", expected=Decimal(150), capacity=Decimal("220.00")
+    )
     assert "takes up to 220 g" in sentence
 
 
@@ -96,7 +110,9 @@ def test_remarks_on_sample_amount_start_beyond_half_the_usual() -> None:
     assert len(remarks_on_sample_amount(Decimal("15.01"), unit="mL", expected=usual)) == 1
 
 
-@pytest.mark.parametrize(("typed", "scale"), [("294.7", "kelvin would be 21.6 °C"), ("70.9", "°F would be 21.6 °C")])
+@pytest.mark.parametrize(
+    ("typed", "scale"), [("294.7", "kelvin would be 21.6 °C"), ("70.9", "°F would be 21.6 °C")]
+)
 def test_objections_to_temperature_recognizes_other_scales(typed: str, scale: str) -> None:
     (sentence,) = objections_to_temperature(Decimal(typed))
     assert sentence.endswith(f"{typed} {scale}.")
@@ -147,7 +163,10 @@ def test_objections_of_meters_and_concentrations_name_the_expected_range() -> No
     assert objections_to_slope(Decimal("98.2")) == []
     assert objections_to_slope(Decimal("5.9")) == ["Electrode slope is 5.9 %; 50 to 120 % is expected."]
     assert objections_to_millivolts(Decimal(2500)) == ["Potential is 2500 mV; -2000 to 2000 mV is expected."]
-    assert "100 mmol/L would be 0.1 mol/L" in objections_to_concentration(Decimal(100), nominal=Decimal("0.1"))[0]
+    assert (
+        "100 mmol/L would be 0.1 mol/L"
+        in objections_to_concentration(Decimal(100), nominal=Decimal("0.1"))[0]
+    )
 
 
 def test_day_is_written_without_a_leading_zero() -> None:
