@@ -44,7 +44,7 @@ def why_no_number(cell: str) -> str:
         return "is empty; a number is expected"
     said = f"is {shown(cell)}"
     if NO_NUMBER.fullmatch(typed):
-        return f"{said}, which is no number; a number is expected. Take the row out at its source"
+        return f"{said}, which is no number; a number is expected"
     if typed[0] in "=@" or re.match(r"[+-][^0-9.,]", typed):
         return f"{said}, which looks like a formula; its value is expected"
     if GROUPED.fullmatch(typed):

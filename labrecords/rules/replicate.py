@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from decimal import Decimal
 
 from labrecords.models import ExclusionCause, RecordState, Replicate, ReplicateKind, Run, Standardization, User
@@ -33,44 +34,46 @@ def objections_to_adding(record: Record, *, by: User, kind: str) -> list[str]:
     return found
 
 
-def objections_to_reading(
-    replicate: Replicate, *, record: Record, by: User, field: str, value: Decimal | str | None, reason: str
+def objections_to_readings(
+    replicate: Replicate, *, record: Record, by: User, values: Mapping[str, Decimal | str | None], reason: str
 ) -> list[str]:
-    """A reading must be plausible for its instrument; a change of a kept one needs its reason."""
+    """Readings must be plausible for their instruments; a change of a kept one needs its reason."""
     found = objections_to_working_on(record, by=by)
-    if field not in FIELDS:
-        return [*found, f"Field is {field!r}; expected one of {', '.join(FIELDS)}."]
+    unknown = [field for field in values if field not in FIELDS]
+    if unknown:
+        return [*found, f"Field is {unknown[0]!r}; expected one of {', '.join(FIELDS)}."]
     if replicate.is_excluded:
         found.append(f"{str(replicate).capitalize()} is excluded and stays as it is.")
-    if replicate.curve_id and field in ("start", "end"):
+    if replicate.curve_id and ("start" in values or "end" in values):
         found.append(f"{str(replicate).capitalize()} has a recorded curve; it takes no burette readings.")
-    if getattr(replicate, field) not in (None, "") and len(reason.strip()) < 5:
-        found.append("This reading was kept before. Say in a sentence why it is corrected.")
-    if value is not None and isinstance(value, Decimal):
-        found += _objections_to_value(replicate, record=record, field=field, value=value)
-    return found
+    if any(needs_a_reason(replicate, field=field, value=value) for field, value in values.items()):
+        found += [] if len(reason.strip()) >= 5 else ["A kept reading is changed. Say in a sentence why."]
+    return found + _objections_to_values(replicate, record=record, values=values)
 
 
 def needs_a_reason(replicate: Replicate, *, field: str, value: Decimal | str | None) -> bool:
     """Whether a value would correct one that was kept."""
-    before = getattr(replicate, field)
+    before = getattr(replicate, field, None)
     return before not in (None, "") and str(before) != str(value)
 
 
-def _objections_to_value(replicate: Replicate, *, record: Record, field: str, value: Decimal) -> list[str]:
-    used = instruments_of(record)
-    if field in ("start", "end"):
-        burette = used["burette"].instrument
-        start = value if field == "start" else replicate.start
-        end = value if field == "end" else replicate.end
-        return objections_to_burette_reading(
-            start, end, capacity=burette.capacity or Decimal(0), resolution=burette.resolution,
-            burette=burette.identifier,
+def _objections_to_values(
+    replicate: Replicate, *, record: Record, values: Mapping[str, Decimal | str | None]
+) -> list[str]:
+    found: list[str] = []
+    read = {field: value for field, value in values.items() if isinstance(value, Decimal)}
+    if "start" in read or "end" in read:
+        burette = instruments_of(record)["burette"].instrument
+        found += objections_to_burette_reading(
+            read.get("start", replicate.start), read.get("end", replicate.end), capacity=burette.capacity or Decimal(0),
+            resolution=burette.resolution, burette=burette.identifier,
         )  # fmt: skip
-    if field == "amount":
+    if "amount" in read:
         unit, expected = expected_amount(record)
-        return objections_to_sample_amount(value, unit=unit, expected=expected)
-    return objections_to_temperature(value)
+        found += objections_to_sample_amount(read["amount"], unit=unit, expected=expected)
+    if "temperature" in read:
+        found += objections_to_temperature(read["temperature"])
+    return found
 
 
 def expected_amount(record: Record) -> tuple[str, Decimal | None]:

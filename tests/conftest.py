@@ -1,0 +1,61 @@
+"""The cast: the people of the tests, recorded by the services like anybody else."""
+
+from __future__ import annotations
+
+import pytest
+
+from labrecords.models import User
+from labrecords.services.signature import Credentials
+from labrecords.services.user import record_first_administrator, record_user
+from tests.support.database import _flush_as_superuser, as_owner, django_db_setup
+
+__all__ = ["_flush_as_superuser", "as_owner", "django_db_setup"]
+
+PASSWORD = "correct horse 42"
+
+
+@pytest.fixture(autouse=True)
+def _fast_passwords(settings) -> None:
+    settings.PASSWORD_HASHERS = ["django.contrib.auth.hashers.MD5PasswordHasher"]
+
+
+@pytest.fixture
+def administrator(db: None) -> User:
+    return record_first_administrator(username="jachterberg", full_name="Jonas Achterberg", password=PASSWORD)
+
+
+def _person(administrator: User, username: str, full_name: str, *roles: str) -> User:
+    return record_user(
+        by=administrator, username=username, full_name=full_name, roles=list(roles), password=PASSWORD
+    )
+
+
+@pytest.fixture
+def analyst(administrator: User) -> User:
+    return _person(administrator, "icastell", "Ines Castell", "analyst")
+
+
+@pytest.fixture
+def other_analyst(administrator: User) -> User:
+    return _person(administrator, "tbrandvold", "Tomas Brandvold", "analyst")
+
+
+@pytest.fixture
+def supervisor(administrator: User) -> User:
+    return _person(administrator, "mokafor", "Maren Okafor", "supervisor")
+
+
+@pytest.fixture
+def other_supervisor(administrator: User) -> User:
+    """A supervisor who is an analyst too: the second-person rule holds for the person."""
+    return _person(administrator, "phalloran", "Piet Halloran", "supervisor", "analyst")
+
+
+@pytest.fixture
+def auditor(administrator: User) -> User:
+    return _person(administrator, "rlindqvist", "Rhea Lindqvist", "auditor")
+
+
+def signed_by(user: User, password: str = PASSWORD) -> Credentials:
+    """What a person types at a signing."""
+    return Credentials(username=user.username, password=password)
