@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import pytest
 
+from labrecords.models.substance import Hazard
 from labrecords.rules.cautions import BY_CLASS, STANDING, cautions_for
 
 
@@ -43,3 +44,7 @@ def test_cautions_for_repeated_classes_are_said_once() -> None:
 def test_cautions_for_an_unknown_class_refuse_to_pass_it_over() -> None:
     with pytest.raises(ValueError, match="'explosive'; expected one of corrosive_acid"):
         cautions_for(["explosive"])
+
+
+def test_cautions_are_known_for_every_hazard_of_a_substance() -> None:
+    assert set(BY_CLASS) == set(Hazard.values)
