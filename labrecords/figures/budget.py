@@ -24,7 +24,11 @@ def share_bar(share: float, *, width: int | None = None) -> SafeString:
     words = writing.percent(share, digits=1)
     return svg.document(
         [svg.box("0%", 7, width="100%", height=1, colour="soft"), bar],
-        title="Share of the variance", description=words, height=15, width=width, css_class="share",
+        title="Share of the variance",
+        description=words,
+        height=15,
+        width=width,
+        css_class="share",
     )
 
 
@@ -34,7 +38,10 @@ def budget_figure(output: Mapping[str, Any]) -> go.Figure:
     labels = [str(one["label"]) for one in lines]
     shares = [100 * float(one["share"]) for one in lines]
     bars = go.Bar(
-        x=shares, y=labels, orientation="h", marker={"color": plot.TEAL},
+        x=shares,
+        y=labels,
+        orientation="h",
+        marker={"color": plot.TEAL},
         hovertemplate="%{y}: %{x:.1f} %<extra></extra>",
     )
     rows = [
@@ -42,6 +49,11 @@ def budget_figure(output: Mapping[str, Any]) -> go.Figure:
         for one in reversed(lines)
     ]
     return plot.figure(
-        [bars], x=plot.axis("Share of the variance, %"), y=plot.axis("", showgrid=False),
-        columns=("Input", "u", "Share"), rows=rows, showlegend=False, bargap=0.45,
+        [bars],
+        x=plot.axis("Share of the variance, %"),
+        y=plot.axis("", showgrid=False),
+        columns=("Input", "u", "Share"),
+        rows=rows,
+        showlegend=False,
+        bargap=0.45,
     )

@@ -31,8 +31,13 @@ def chain(links: Sequence[Mapping[str, Any]]) -> SafeString:
             pieces.append(_join(left))
         pieces.append(_link(link, left=left))
     return svg.document(
-        pieces, title="Chain of records", description=_description(links), height=106,
-        width=max(1, len(links)) * STEP - (STEP - BOX) + 4, css_class="chain", role="group",
+        pieces,
+        title="Chain of records",
+        description=_description(links),
+        height=106,
+        width=max(1, len(links)) * STEP - (STEP - BOX) + 4,
+        css_class="chain",
+        role="group",
     )
 
 

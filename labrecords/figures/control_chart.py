@@ -21,11 +21,17 @@ def control_chart_figure(
     limit may also be a list, one number a point, as EWMA limits are.
     """
     places = [index + 1 for index in range(len(points))]
-    traces = [*_limit_lines(limits, places=places, digits=digits), _series(points, places=places, digits=digits)]
+    traces = [
+        *_limit_lines(limits, places=places, digits=digits),
+        _series(points, places=places, digits=digits),
+    ]
     return plot.figure(
         traces,
-        x=plot.axis("", tickvals=places, ticktext=[str(point["label"]) for point in points], nticks=12, tickangle=0)
-        if len(points) <= 12 else plot.axis("Point, in time order"),
+        x=plot.axis(
+            "", tickvals=places, ticktext=[str(point["label"]) for point in points], nticks=12, tickangle=0
+        )
+        if len(points) <= 12
+        else plot.axis("Point, in time order"),
         y=plot.axis(title),
         columns=("Point", title, "Signals"),
         rows=[_row(point, digits=digits) for point in points],
@@ -38,10 +44,14 @@ def _series(points: Sequence[Mapping[str, Any]], *, places: list[int], digits: i
     """Out of limits a magenta cross, another signal an amber triangle, else a dot."""
     marks = [_look(point) for point in points]
     return go.Scatter(
-        x=places, y=[float(point["value"]) for point in points], mode="lines+markers", name="value",
+        x=places,
+        y=[float(point["value"]) for point in points],
+        mode="lines+markers",
+        name="value",
         line={"color": plot.QUIET, "width": 1},
         marker={
-            "color": [colour for colour, _, _ in marks], "symbol": [symbol for _, symbol, _ in marks],
+            "color": [colour for colour, _, _ in marks],
+            "symbol": [symbol for _, symbol, _ in marks],
             "size": [size for _, _, size in marks],
         },
         customdata=[point.get("url") or "" for point in points],
@@ -63,13 +73,16 @@ def _hover(point: Mapping[str, Any], *, digits: int) -> str:
 
 def _limit_lines(limits: Mapping[str, Any], *, places: list[int], digits: int) -> list[go.Scatter]:
     looks = (
-        ("centre", "centre", plot.TEAL, "solid"), ("lower", "lower limit", plot.MAGENTA, "dash"),
-        ("upper", "upper limit", plot.MAGENTA, "dash"), ("warn_lower", "lower warning", plot.AMBER, "dot"),
+        ("centre", "centre", plot.TEAL, "solid"),
+        ("lower", "lower limit", plot.MAGENTA, "dash"),
+        ("upper", "upper limit", plot.MAGENTA, "dash"),
+        ("warn_lower", "lower warning", plot.AMBER, "dot"),
         ("warn_upper", "upper warning", plot.AMBER, "dot"),
     )
     return [
         _limit_line(limits[key], name=name, colour=colour, dash=dash, places=places, digits=digits)
-        for key, name, colour, dash in looks if limits.get(key) is not None
+        for key, name, colour, dash in looks
+        if limits.get(key) is not None
     ]
 
 
@@ -80,19 +93,31 @@ def _limit_line(
     stepped = isinstance(limit, list | tuple)
     words = name if stepped else f"{name} {writing.places(limit, digits=digits)}"
     return go.Scatter(
-        x=places if stepped else ends, y=list(limit) if stepped else [float(limit)] * 2, mode="lines",
-        name=words, line={"color": colour, "width": 1.3, "dash": dash, "shape": "hvh" if stepped else "linear"},
+        x=places if stepped else ends,
+        y=list(limit) if stepped else [float(limit)] * 2,
+        mode="lines",
+        name=words,
+        line={"color": colour, "width": 1.3, "dash": dash, "shape": "hvh" if stepped else "linear"},
         hovertemplate=f"{words}<extra></extra>",
     )
 
 
 def _annotations(points: Sequence[Mapping[str, Any]], *, places: list[int]) -> list[dict[str, Any]]:
-    """The first words of each signal at its point; the whole sentence is under the pointer and in the table."""
+    """The first words of each signal at its point; all of it is under the pointer and in the table."""
     return [
         {
-            "x": at, "y": float(point["value"]), "text": point["signals"][0], "showarrow": True,
-            "arrowcolor": plot.QUIET, "arrowwidth": 1, "arrowhead": 0, "ax": 0, "ay": -28 - 16 * (index % 2),
-            "font": {"size": 12, "color": plot.INK}, "bgcolor": "var(--sheet)", "borderpad": 2,
+            "x": at,
+            "y": float(point["value"]),
+            "text": point["signals"][0],
+            "showarrow": True,
+            "arrowcolor": plot.QUIET,
+            "arrowwidth": 1,
+            "arrowhead": 0,
+            "ax": 0,
+            "ay": -28 - 16 * (index % 2),
+            "font": {"size": 12, "color": plot.INK},
+            "bgcolor": "var(--sheet)",
+            "borderpad": 2,
         }
         for index, (at, point) in enumerate(
             (at, point) for at, point in zip(places, points, strict=True) if point["signals"]

@@ -21,7 +21,10 @@ SYMBOLS = ("diamond", "square", "triangle-up", "cross", "star", "hexagon", "pent
 
 
 def curve_figure(
-    endpoint: Mapping[str, Any] | None, *, volume: Sequence[float | str], reading: Sequence[float | str],
+    endpoint: Mapping[str, Any] | None,
+    *,
+    volume: Sequence[float | str],
+    reading: Sequence[float | str],
     quantity: str,
 ) -> go.Figure:
     """The curve [mL, quantity]; ``endpoint`` is that of one titration of ``compute``'s output."""
@@ -42,7 +45,10 @@ def curve_figure(
 
 def _measured(x: list[float], y: list[float]) -> go.Scatter:
     return go.Scatter(
-        x=x, y=y, name="measured", mode="markers",
+        x=x,
+        y=y,
+        name="measured",
+        mode="markers",
         marker={"color": plot.INK, "size": 6, "symbol": "circle-open", "line": {"width": 1.5}},
         hovertemplate="%{x} mL: %{y}<extra></extra>",
     )
@@ -54,7 +60,11 @@ def _derivative(endpoint: Mapping[str, Any]) -> list[go.Scatter]:
         return []
     return [
         go.Scatter(
-            x=list(pair[0]), y=list(pair[1]), name="first derivative", mode="lines", yaxis="y2",
+            x=list(pair[0]),
+            y=list(pair[1]),
+            name="first derivative",
+            mode="lines",
+            yaxis="y2",
             line={"color": plot.AMBER, "width": 1.5, "dash": "dot"},
             hovertemplate="%{x:.3f} mL: %{y:.3g} per mL<extra>first derivative</extra>",
         )
@@ -67,8 +77,12 @@ def _model(endpoint: Mapping[str, Any]) -> list[go.Scatter]:
         return []
     return [
         go.Scatter(
-            x=list(pair[0]), y=list(pair[1]), name="fitted model", mode="lines",
-            line={"color": plot.TEAL, "width": 2}, hoverinfo="skip",
+            x=list(pair[0]),
+            y=list(pair[1]),
+            name="fitted model",
+            mode="lines",
+            line={"color": plot.TEAL, "width": 2},
+            hoverinfo="skip",
         )
     ]
 
@@ -83,9 +97,15 @@ def _endpoints(endpoint: Mapping[str, Any], *, x: list[float], y: list[float]) -
         decides = family == endpoint["family"]
         traces.append(
             go.Scatter(
-                x=volumes, y=[_height(at, x=x, y=y) for at in volumes], mode="markers",
+                x=volumes,
+                y=[_height(at, x=x, y=y) for at in volumes],
+                mode="markers",
                 name=f"{family}{', decides' if decides else ''}",
-                error_x={"array": [2 * float(one["u"]) for one in found], "color": plot.QUIET, "thickness": 1.2},
+                error_x={
+                    "array": [2 * float(one["u"]) for one in found],
+                    "color": plot.QUIET,
+                    "thickness": 1.2,
+                },
                 marker={"color": plot.MAGENTA if decides else plot.INK_2, "size": 10, "symbol": symbol},
                 hovertemplate=f"%{{x:.4f}} mL ± %{{error_x.array:.2g}} (2 u)<extra>{family}</extra>",
             )
@@ -107,7 +127,12 @@ def _lines(endpoint: Mapping[str, Any] | None) -> list[dict[str, Any]]:
     at = float(endpoint["volume"])
     return [
         {
-            "type": "line", "x0": at, "x1": at, "y0": 0, "y1": 1, "yref": "paper",
+            "type": "line",
+            "x0": at,
+            "x1": at,
+            "y0": 0,
+            "y1": 1,
+            "yref": "paper",
             "line": {"color": plot.MAGENTA, "width": 1, "dash": "dash"},
         }
     ]

@@ -27,7 +27,9 @@ def _mark(share: float, *, colour: str) -> list[str]:
     """A triangle near the end, a cross past it: never colour alone."""
     if colour == "teal":
         return []
-    sign = svg.stroke(svg.CROSS, colour=colour, weight=2) if colour == "magenta" else svg.shape(
-        svg.TRIANGLE, colour=colour
+    sign = (
+        svg.stroke(svg.CROSS, colour=colour, weight=2)
+        if colour == "magenta"
+        else svg.shape(svg.TRIANGLE, colour=colour)
     )
     return [svg.place([sign], at=(f"{min(100 * share, 96):.1f}%", 6))]

@@ -34,8 +34,11 @@ def limit_bar(
     if not compact:
         pieces += _words(verdict, value=value, low=low, high=high)
     return svg.document(
-        pieces, title="Result against its limits", description=_description(output, places=places),
-        height=66 if compact else 100, width=width,
+        pieces,
+        title="Result against its limits",
+        description=_description(output, places=places),
+        height=66 if compact else 100,
+        width=width,
     )
 
 
@@ -75,7 +78,7 @@ def _hatched(start: float, end: float, *, low: float, high: float) -> str:
     lines = "".join(f"M{x} {height}l{height} -{height}" for x in range(-height, 1600, 7))
     return (
         f'<svg x="{left}" y="{TOP}" width="{_span(left, right)}" height="{height}" overflow="hidden">'
-        f'{svg.stroke(lines, colour="hatch", weight=1.5)}</svg>'
+        f"{svg.stroke(lines, colour='hatch', weight=1.5)}</svg>"
     )
 
 
@@ -128,7 +131,8 @@ def _description(output: Mapping[str, Any], *, places: int) -> str:
     bounds = (("lower", verdict["lower"]), ("upper", verdict["upper"]))
     limits = [
         f"{name} limit {writing.places(bound, digits=places)}"
-        for name, bound in bounds if bound not in (None, "")
+        for name, bound in bounds
+        if bound not in (None, "")
     ]
     words = writing.result(output["value"], expanded=output["U"], unit=output["unit"])
     return f"{words}; {', '.join(limits)}. {verdict['sentence']}"

@@ -13,8 +13,16 @@ from django.utils.safestring import SafeString, mark_safe
 
 FACE = "Inter, Segoe UI, Helvetica Neue, Liberation Sans, Arial, sans-serif"
 COLOURS = {
-    "ink": "#1b2422", "ink-2": "#47514d", "quiet": "#5c6662", "rule": "#8a8f89", "soft": "#eae8df",
-    "sheet": "#ffffff", "teal": "#0b6365", "teal-wash": "#e2f0ee", "hatch": "#9dbcb9", "amber": "#855000",
+    "ink": "#1b2422",
+    "ink-2": "#47514d",
+    "quiet": "#5c6662",
+    "rule": "#8a8f89",
+    "soft": "#eae8df",
+    "sheet": "#ffffff",
+    "teal": "#0b6365",
+    "teal-wash": "#e2f0ee",
+    "hatch": "#9dbcb9",
+    "amber": "#855000",
     "magenta": "#9c1257",
 }
 TRIANGLE = "M0 -6L6 5H-6Z"
@@ -22,8 +30,14 @@ CROSS = "M-5 -5L5 5M-5 5L5 -5"
 
 
 def document(
-    pieces: Iterable[str], *, title: str, description: str, height: int, width: int | None = None,
-    css_class: str = "", role: str = "img",
+    pieces: Iterable[str],
+    *,
+    title: str,
+    description: str,
+    height: int,
+    width: int | None = None,
+    css_class: str = "",
+    role: str = "img",
 ) -> SafeString:
     """One drawing, told in words to who cannot see it; ``role`` is "group" where it holds links."""
     head = (

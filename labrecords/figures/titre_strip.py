@@ -15,7 +15,10 @@ MIDDLE = 41
 
 
 def titre_strip(
-    titrations: Sequence[Mapping[str, Any]], *, limit: float | None, limit_kind: str = "range_mL",
+    titrations: Sequence[Mapping[str, Any]],
+    *,
+    limit: float | None,
+    limit_kind: str = "range_mL",
     width: int | None = None,
 ) -> SafeString:
     """The titres [mL] of ``compute``'s output: the set that counts filled, the others hollow and struck."""
@@ -23,16 +26,24 @@ def titre_strip(
     if not shown:
         return svg.document(
             [svg.line(("0%", AXIS), ("100%", AXIS)), svg.text("No titre yet", at=("50%", MIDDLE))],
-            title="Titres", description="No titre has been read yet.", height=80, width=width,
+            title="Titres",
+            description="No titre has been read yet.",
+            height=80,
+            width=width,
         )
     low, high = _scale(shown, limit=limit if limit_kind == "range_mL" else None)
     counted = [float(one["titre"]) for one in shown if _counts(one)]
     pieces = [
         *_bracket(counted, limit=limit, limit_kind=limit_kind, low=low, high=high),
-        *_axis(low, high), *_points(shown, low=low, high=high),
+        *_axis(low, high),
+        *_points(shown, low=low, high=high),
     ]
     return svg.document(
-        pieces, title="Titres", description=_description(shown), height=82, width=width,
+        pieces,
+        title="Titres",
+        description=_description(shown),
+        height=82,
+        width=width,
     )
 
 

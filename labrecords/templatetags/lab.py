@@ -17,18 +17,53 @@ register = template.Library()
 
 DASH = "\N{EN DASH}"
 
-GOOD = frozenset({
-    "approved", "in use", "in_use", "effective", "released", "conforms", "closed", "ready", "in force",
-    "accepted", "passed", "valid", "done",
-})
-PERSON = frozenset({
-    "submitted", "returned", "on hold", "on_hold", "in question", "in_question", "inconclusive",
-    "quarantined", "waiting", "due", "phase_1", "phase_2",
-})
-OUT = frozenset({
-    "rejected", "withdrawn", "expired", "void", "does not conform", "does_not_conform", "blocked",
-    "overdue", "failed", "out",
-})
+GOOD = frozenset(
+    {
+        "approved",
+        "in use",
+        "in_use",
+        "effective",
+        "released",
+        "conforms",
+        "closed",
+        "ready",
+        "in force",
+        "accepted",
+        "passed",
+        "valid",
+        "done",
+    }
+)
+PERSON = frozenset(
+    {
+        "submitted",
+        "returned",
+        "on hold",
+        "on_hold",
+        "in question",
+        "in_question",
+        "inconclusive",
+        "quarantined",
+        "waiting",
+        "due",
+        "phase_1",
+        "phase_2",
+    }
+)
+OUT = frozenset(
+    {
+        "rejected",
+        "withdrawn",
+        "expired",
+        "void",
+        "does not conform",
+        "does_not_conform",
+        "blocked",
+        "overdue",
+        "failed",
+        "out",
+    }
+)
 
 
 @register.filter
@@ -118,7 +153,9 @@ def big_result(value: Any, expanded: Any, unit: str, k: Any) -> SafeString | str
     return format_html(
         '<span class="big">{}</span> <small>± {} {}, k = {}</small>',
         writing.value_part(value, expanded=expanded),
-        writing.places(expanded, digits=digits), unit, _factor(k),
+        writing.places(expanded, digits=digits),
+        unit,
+        _factor(k),
     )
 
 

@@ -28,11 +28,19 @@ class Place:
 
 SHEETS = ("bench", "run", "standardization", "sample")
 REGISTERED = (
-    "register", "standard", "titrant", "titrant_lot", "instrument", "substance", "method", "product", "user",
+    "register",
+    "standard",
+    "titrant",
+    "titrant_lot",
+    "instrument",
+    "substance",
+    "method",
+    "product",
+    "user",
 )
 
 PLACES = (
-    Place("Bench", "bench-home", frozenset({"analyst", "supervisor"}), SHEETS),
+    Place("Bench", "bench-list", frozenset({"analyst", "supervisor"}), SHEETS),
     Place("Reviews", "review-list", frozenset({"supervisor", "auditor"}), ("review", "investigation")),
     Place("Batches", "batch-list", READERS, ("batch", "certificate")),
     Place("Charts", "control_chart-list", READERS, ("control_chart", "control_sample")),

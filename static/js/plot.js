@@ -1,0 +1,48 @@
+// Draws each figure with the colours of the page, again when the page turns dark, and to the width it has.
+
+const COLOUR = /var\((--[\w-]+)\)/g;
+const CONFIG = {
+  responsive: true,
+  displaylogo: false,
+  modeBarButtonsToRemove: ["select2d", "lasso2d", "autoScale2d"],
+};
+
+const styles = getComputedStyle(document.documentElement);
+
+function coloured(value) {
+  if (typeof value === "string") return value.replace(COLOUR, (_, name) => styles.getPropertyValue(name).trim());
+  if (Array.isArray(value)) return value.map(coloured);
+  if (value && typeof value === "object") {
+    return Object.fromEntries(Object.entries(value).map(([key, inner]) => [key, coloured(inner)]));
+  }
+  return value;
+}
+
+async function figureOf(place) {
+  if (place.dataset.src) return (await fetch(place.dataset.src, { headers: { Accept: "application/json" } })).json();
+  return JSON.parse(place.parentElement.querySelector("script[type='application/json']").textContent);
+}
+
+function narrowed(layout, place) {
+  if (place.clientWidth >= 480) return layout;
+  const margin = { ...layout.margin, l: Math.min(layout.margin?.l ?? 56, 48), r: 12 };
+  return { ...layout, margin };
+}
+
+async function draw(place) {
+  const figure = coloured(await figureOf(place));
+  const face = getComputedStyle(place).fontFamily;
+  const layout = { ...figure.layout, autosize: true, font: { ...figure.layout.font, family: face } };
+  await window.Plotly.react(place, figure.data, narrowed(layout, place), CONFIG);
+  place.dataset.drawn = "";
+}
+
+function drawAll(root, again = false) {
+  for (const place of root.querySelectorAll("[data-plot]")) {
+    if (again || place.dataset.drawn === undefined) draw(place);
+  }
+}
+
+matchMedia("(prefers-color-scheme: dark)").addEventListener("change", () => drawAll(document, true));
+document.addEventListener("htmx:load", (event) => drawAll(event.target));
+drawAll(document);
