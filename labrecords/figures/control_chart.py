@@ -3,12 +3,21 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
+from textwrap import wrap
 from typing import Any
 
 import plotly.graph_objects as go
 
 from labrecords import writing
 from labrecords.figures import plot
+
+LIMITS = (
+    ("centre", "centre", plot.TEAL, "solid"),
+    ("lower", "lower limit", plot.MAGENTA, "dash"),
+    ("upper", "upper limit", plot.MAGENTA, "dash"),
+    ("warn_lower", "lower warning", plot.AMBER, "dot"),
+    ("warn_upper", "upper warning", plot.AMBER, "dot"),
+)
 
 
 def control_chart_figure(
@@ -35,7 +44,7 @@ def control_chart_figure(
         y=plot.axis(title),
         columns=("Point", title, "Signals"),
         rows=[_row(point, digits=digits) for point in points],
-        annotations=_annotations(points, places=places),
+        annotations=[*_limit_names(limits, digits=digits), *_signal_notes(points, places=places)],
         showlegend=False,
     )
 
@@ -72,28 +81,20 @@ def _hover(point: Mapping[str, Any], *, digits: int) -> str:
 
 
 def _limit_lines(limits: Mapping[str, Any], *, places: list[int], digits: int) -> list[go.Scatter]:
-    looks = (
-        ("centre", "centre", plot.TEAL, "solid"),
-        ("lower", "lower limit", plot.MAGENTA, "dash"),
-        ("upper", "upper limit", plot.MAGENTA, "dash"),
-        ("warn_lower", "lower warning", plot.AMBER, "dot"),
-        ("warn_upper", "upper warning", plot.AMBER, "dot"),
-    )
     return [
-        _limit_line(limits[key], name=name, colour=colour, dash=dash, places=places, digits=digits)
-        for key, name, colour, dash in looks
+        _limit_line(
+            limits[key], words=_named(limits[key], name=name, digits=digits), look=look, places=places
+        )
+        for key, name, *look in LIMITS
         if limits.get(key) is not None
     ]
 
 
-def _limit_line(
-    limit: Any, *, name: str, colour: str, dash: str, places: list[int], digits: int
-) -> go.Scatter:
-    ends = [0.5, len(places) + 0.5]
+def _limit_line(limit: Any, *, words: str, look: list[str], places: list[int]) -> go.Scatter:
+    colour, dash = look
     stepped = isinstance(limit, list | tuple)
-    words = name if stepped else f"{name} {writing.places(limit, digits=digits)}"
     return go.Scatter(
-        x=places if stepped else ends,
+        x=places if stepped else [0.5, len(places) + 0.5],
         y=list(limit) if stepped else [float(limit)] * 2,
         mode="lines",
         name=words,
@@ -102,26 +103,48 @@ def _limit_line(
     )
 
 
-def _annotations(points: Sequence[Mapping[str, Any]], *, places: list[int]) -> list[dict[str, Any]]:
-    """The first words of each signal at its point; all of it is under the pointer and in the table."""
+def _named(limit: Any, *, name: str, digits: int) -> str:
+    """A straight limit is named with its number, a stepped one without."""
+    return name if isinstance(limit, list | tuple) else f"{name} {writing.places(limit, digits=digits)}"
+
+
+def _limit_names(limits: Mapping[str, Any], *, digits: int) -> list[dict[str, Any]]:
+    """The name of each limit above the right end of its line."""
+    present = [(limits[key], name) for key, name, _, _ in LIMITS if limits.get(key) is not None]
+    return [
+        {
+            "x": 1,
+            "xref": "paper",
+            "xanchor": "right",
+            "y": float(limit[-1] if isinstance(limit, list | tuple) else limit),
+            "yanchor": "bottom",
+            "text": _named(limit, name=name, digits=digits),
+            "showarrow": False,
+            "font": {"size": 11.5, "color": plot.INK_2},
+        }
+        for limit, name in present
+    ]
+
+
+def _signal_notes(points: Sequence[Mapping[str, Any]], *, places: list[int]) -> list[dict[str, Any]]:
+    """The first sentence of each signal at its point; all of them under the pointer and in the table."""
+    signals = [(at, point) for at, point in zip(places, points, strict=True) if point["signals"]]
     return [
         {
             "x": at,
             "y": float(point["value"]),
-            "text": point["signals"][0],
+            "text": "<br>".join(wrap(point["signals"][0], width=22)),
             "showarrow": True,
             "arrowcolor": plot.QUIET,
             "arrowwidth": 1,
             "arrowhead": 0,
-            "ax": 0,
-            "ay": -28 - 16 * (index % 2),
+            "ax": -30,
+            "ay": -34 - 18 * (index % 2),
             "font": {"size": 12, "color": plot.INK},
             "bgcolor": "var(--sheet)",
             "borderpad": 2,
         }
-        for index, (at, point) in enumerate(
-            (at, point) for at, point in zip(places, points, strict=True) if point["signals"]
-        )
+        for index, (at, point) in enumerate(signals)
     ]
 
 

@@ -34,7 +34,14 @@ async function draw(place) {
   const face = getComputedStyle(place).fontFamily;
   const layout = { ...figure.layout, autosize: true, font: { ...figure.layout.font, family: face } };
   await window.Plotly.react(place, figure.data, narrowed(layout, place), CONFIG);
+  if (place.dataset.drawn === undefined) place.on("plotly_click", open);
   place.dataset.drawn = "";
+}
+
+// A point that stands for a record opens it.
+function open(event) {
+  const address = event.points[0]?.customdata;
+  if (typeof address === "string" && address.startsWith("/") && !address.startsWith("//")) location.assign(address);
 }
 
 function drawAll(root, again = false) {
