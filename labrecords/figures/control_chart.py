@@ -59,6 +59,7 @@ def _series(points: Sequence[Mapping[str, Any]], *, places: list[int], digits: i
         name="value",
         line={"color": plot.QUIET, "width": 1},
         marker={
+            "opacity": 1,
             "color": [colour for colour, _, _ in marks],
             "symbol": [symbol for _, symbol, _ in marks],
             "size": [size for _, _, size in marks],

@@ -11,6 +11,7 @@ from labrecords import writing
 from labrecords.figures import svg
 
 TOP, FOOT = 26, 48
+RAISED = 18
 MIDDLE = (TOP + FOOT) / 2
 COLOUR = {"conforms": "ink", "inconclusive": "amber", "does_not_conform": "magenta"}
 
@@ -31,13 +32,12 @@ def limit_bar(
         *_limits(lower, upper, places=places, low=low, high=high, compact=compact),
         *_value(value, spread=spread, outcome=verdict["outcome"], low=low, high=high),
     ]
-    if not compact:
-        pieces += _words(verdict, value=value, low=low, high=high)
+    pieces = [_raised(pieces)] if compact else pieces + _words(verdict, value=value, low=low, high=high)
     return svg.document(
         pieces,
         title="Result against its limits",
         description=_description(output, places=places),
-        height=66 if compact else 100,
+        height=FOOT + 20 - RAISED if compact else 100,
         width=width,
     )
 
@@ -49,6 +49,11 @@ def scale(value: float, *, spread: float, lower: float | None, upper: float | No
     low, high = min(ends), max(ends)
     air = (high - low) * (0.18 if len(present) == 2 else 0.35) or abs(value) * 0.1 or 1.0
     return low - air, high + air
+
+
+def _raised(pieces: list[str]) -> str:
+    """Without words above it the bar starts higher."""
+    return f'<svg x="0" y="-{RAISED}" width="100%" height="100" overflow="visible">{"".join(pieces)}</svg>'
 
 
 def _number(bound: Any) -> float | None:

@@ -2,7 +2,7 @@
 
 const PREFIX = `unsent:${document.body.dataset.person}:`;
 
-const keyOf = (cell) => `${PREFIX}${cell.dataset.url} ${cell.name}`;
+const keyOf = (cell) => `${PREFIX}${cell.dataset.url} ${cell.name} ${cell.id}`;
 
 export function keep(cell) {
   const entry = { value: cell.value, stamp: cell.dataset.stamp ?? "", at: Date.now() };
