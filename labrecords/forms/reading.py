@@ -22,9 +22,9 @@ def clean_cell(field: str, text: str) -> Decimal | None:
     if not typed:
         return None
     try:
-        return parse_number(typed)
+        return parse_number(typed, field=LABELS.get(field, field))
     except ValueError as problem:
-        raise Refused([f"{LABELS.get(field, field)}: {problem}"]) from problem
+        raise Refused([str(problem)]) from problem
 
 
 def clean_observation(text: str) -> str:

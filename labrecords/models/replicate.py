@@ -85,6 +85,11 @@ class Replicate(models.Model):
     def __str__(self) -> str:
         return f"blank {self.number}" if self.kind == ReplicateKind.BLANK else f"titration {self.number}"
 
+    @property
+    def pk_text(self) -> str:
+        """The key as text, for the names of cells."""
+        return str(self.pk)
+
 
 class Curve(models.Model):
     """A recorded curve as read from its file; the file is kept beside it."""

@@ -7,8 +7,9 @@ from django.shortcuts import render
 from django.utils import timezone
 from django.views.decorators.http import require_GET
 
+from labrecords.figures.fitness_line import fitness_line
 from labrecords.queries.batch import samples_waiting
-from labrecords.queries.bench import calibrations_due, lots_in_use, open_sheets_of
+from labrecords.queries.bench import LotInUse, calibrations_due, lots_in_use, open_sheets_of
 from labrecords.views.access import signed_in
 
 
@@ -25,7 +26,13 @@ def list(request: HttpRequest) -> HttpResponse:
             "samples": samples_waiting()[:40],
             "runs": runs,
             "standardizations": standardizations,
-            "lots": lots_in_use(at=now),
+            "lots": [{"item": item, "fitness": _fitness(item)} for item in lots_in_use(at=now)],
             "calibrations": calibrations_due(at=now),
         },
     )
+
+
+def _fitness(item: LotInUse) -> str:
+    if item.days_left is None:
+        return ""
+    return fitness_line(item.fraction_used, label=f"{item.days_left} days left")

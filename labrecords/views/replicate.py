@@ -25,10 +25,9 @@ def record(request: HttpRequest, pk: int, field: str) -> HttpResponse:
     """Keep one cell the moment it is left; a change of a kept value asks for its reason first (428)."""
     replicate, reason = _replicate(pk), request.POST.get("reason", "")
     try:
-        value = _value(field, request.POST.get("value", ""))
+        value = _value(field, request.POST.get(f"{field}-{pk}", ""))
         if needs_a_reason(replicate, field=field, value=value) and not reason.strip():
-            context = {"replicate": replicate, "field": field, "before": getattr(replicate, field), "value": value}
-            return render(request, "replicate/_reason.html", context, status=428)
+            return render(request, "components/_reason.html", {"id": f"{field}-{pk}"}, status=428)
         service.record_readings(replicate, by=request.user, values={field: value}, reason=reason)
     except Refused as refusal:
         return JsonResponse({"reasons": list(refusal.reasons)}, status=409)
@@ -75,7 +74,7 @@ def exclude(request: HttpRequest, pk: int) -> HttpResponse:
             reasons = refusal.reasons
     context = {
         "replicate": replicate, "owner": owner, "causes": ExclusionCause.choices, "cause": cause,
-        "sentence": sentence, "reasons": reasons,
+        "sentence": sentence, "refused": reasons,
     }  # fmt: skip
     return render(request, "replicate/exclude.html", context, status=409 if reasons else 200)
 

@@ -12,13 +12,13 @@ from django.views.decorators.http import require_GET, require_http_methods, requ
 
 from labrecords.errors import Refused
 from labrecords.forms.reading import clean_cell
-from labrecords.models import Investigation, MethodVersion, Run, Sample
+from labrecords.models import Investigation, MethodVersion, RecordState, Run, Sample
 from labrecords.queries.run import runs, runs_found
 from labrecords.queries.sheet import sheet_of
 from labrecords.services import run as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.sheet import preview_outputs, refused_sheet, sheet_context, typed_credentials
-from labrecords.views.start import run_form
+from labrecords.views.sheet import preview_outputs, refused_sheet, sheet_context, shown, typed_credentials
+from labrecords.views.start import run_choices, run_form
 
 
 @signed_in
@@ -27,7 +27,8 @@ def list(request: HttpRequest) -> HttpResponse:
     """All runs, found by number, sample, batch, lot or method, and by state."""
     found = runs_found(q=request.GET.get("q", ""), state=request.GET.get("state", ""))
     page = Paginator(found, 50).get_page(request.GET.get("page"))
-    return render(request, "run/list.html", {"page": page, "q": request.GET.get("q", ""), "state": request.GET.get("state", "")})
+    context = {"page_obj": page, "q": request.GET.get("q", ""), "state": request.GET.get("state", "")}
+    return render(request, "run/list.html", context | {"states": RecordState.values})
 
 
 @for_roles("analyst")
@@ -47,7 +48,8 @@ def start(request: HttpRequest, sample_number: str, version_id: int) -> HttpResp
             return redirect("run-sheet", run.number)
         except Refused as refusal:
             reasons = refusal.reasons
-    context = {"sample": sample, "version": version, "form": form, "reasons": reasons, "retest_for": retest_for}
+    context = {"sample": sample, "version": version, "form": form, "refused": reasons, "retest_for": retest_for}
+    context |= run_choices(version)
     return render(request, "run/start.html", context, status=400 if request.method == "POST" else 200)
 
 
@@ -62,7 +64,8 @@ def sheet(request: HttpRequest, number: str) -> HttpResponse:
 @require_GET
 def result(request: HttpRequest, number: str) -> HttpResponse:
     """The part of the sheet that the worker's calculation fills; asked for again while it is waited for."""
-    return render(request, "run/_result.html", sheet_context(_run(number), by=request.user))
+    context = sheet_context(_run(number), by=request.user) | {"is_fragment": True}
+    return render(request, "sheet/_means.html", context)
 
 
 @for_roles("analyst")
@@ -70,8 +73,9 @@ def result(request: HttpRequest, number: str) -> HttpResponse:
 def preview(request: HttpRequest, number: str) -> HttpResponse:
     """What the cells as typed would mean; nothing is stored."""
     run = _run(number)
-    shown = sheet_of(run, outputs=preview_outputs(run, request.POST))
-    return render(request, "run/_meaning.html", {"sheet": shown, "run": run, "is_preview": True})
+    sheet = sheet_of(run, outputs=preview_outputs(run, request.POST))
+    context = shown(sheet) | {"run": run, "noun": "run", "is_preview": True}
+    return render(request, "sheet/_means.html", context)
 
 
 @for_roles("analyst")

@@ -11,12 +11,13 @@ from django.shortcuts import get_object_or_404, redirect, render
 from django.views.decorators.http import require_GET, require_http_methods, require_POST
 
 from labrecords.errors import Refused
-from labrecords.models import Standardization, TitrantLot
+from labrecords.models import RecordState, Standardization, TitrantLot
 from labrecords.queries.sheet import sheet_of
 from labrecords.queries.standardization import attempts_on_lot, standardizations, standardizations_found
+from labrecords.rules.cautions import cautions_for
 from labrecords.services import standardization as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.sheet import preview_outputs, refused_sheet, sheet_context, typed_credentials
+from labrecords.views.sheet import preview_outputs, refused_sheet, sheet_context, shown, typed_credentials
 from labrecords.views.start import standardization_form
 
 
@@ -26,7 +27,7 @@ def list(request: HttpRequest) -> HttpResponse:
     """All standardizations, found by number, lot, titrant or standard, and by state."""
     q, state = request.GET.get("q", ""), request.GET.get("state", "")
     page = Paginator(standardizations_found(q=q, state=state), 50).get_page(request.GET.get("page"))
-    return render(request, "standardization/list.html", {"page": page, "q": q, "state": state})
+    return render(request, "standardization/list.html", {"page_obj": page, "q": q, "state": state, "states": RecordState.values})
 
 
 @for_roles("analyst")
@@ -44,7 +45,7 @@ def start(request: HttpRequest, lot_number: str) -> HttpResponse:
             return redirect("standardization-sheet", standardization.number)
         except Refused as refusal:
             reasons = refusal.reasons
-    context = {"lot": lot, "form": form, "reasons": reasons, "attempts": attempts_on_lot(lot)}
+    context = {"lot": lot, "form": form, "refused": reasons, "attempts": attempts_on_lot(lot), "cautions": cautions_for(lot.titrant.substance.hazards)}
     return render(request, "standardization/start.html", context, status=400 if request.method == "POST" else 200)
 
 
@@ -59,8 +60,8 @@ def sheet(request: HttpRequest, number: str) -> HttpResponse:
 @require_GET
 def result(request: HttpRequest, number: str) -> HttpResponse:
     """The part of the sheet that the worker's calculation fills; asked for again while it is waited for."""
-    context = sheet_context(_standardization(number), by=request.user)
-    return render(request, "standardization/_result.html", context)
+    context = sheet_context(_standardization(number), by=request.user) | {"is_fragment": True}
+    return render(request, "sheet/_means.html", context)
 
 
 @for_roles("analyst")
@@ -68,9 +69,9 @@ def result(request: HttpRequest, number: str) -> HttpResponse:
 def preview(request: HttpRequest, number: str) -> HttpResponse:
     """What the cells as typed would mean; nothing is stored."""
     record = _standardization(number)
-    shown = sheet_of(record, outputs=preview_outputs(record, request.POST))
-    context = {"sheet": shown, "standardization": record, "is_preview": True}
-    return render(request, "standardization/_meaning.html", context)
+    sheet = sheet_of(record, outputs=preview_outputs(record, request.POST))
+    context = shown(sheet) | {"standardization": record, "noun": "standardization", "is_preview": True}
+    return render(request, "sheet/_means.html", context)
 
 
 @for_roles("analyst")

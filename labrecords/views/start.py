@@ -2,7 +2,10 @@
 
 from __future__ import annotations
 
+from typing import Any
+
 from django.http import QueryDict
+from django.urls import reverse
 from django.utils import timezone
 
 from labrecords.forms.start import StartForm
@@ -10,6 +13,7 @@ from labrecords.models import MethodVersion, TitrantLot
 from labrecords.queries.bench import lots_of_titrant
 from labrecords.queries.instrument import instruments_for_parts
 from labrecords.queries.standard import standards_in_use
+from labrecords.rules.cautions import cautions_for
 from labrecords.rules.instrument import kind_of_part, parts_of_method, parts_of_standardization
 
 
@@ -36,3 +40,14 @@ def standardization_form(lot: TitrantLot, *, data: QueryDict | None) -> StartFor
         return StartForm(data, parts=parts, lots=lots, instruments=instruments)
     standards = standards_in_use(titrant.standard_substance, day=timezone.localtime(now).date())
     return StartForm(data, parts=parts, lots={}, instruments=instruments, standards=standards, needs_standard=True)
+
+
+def run_choices(version: MethodVersion) -> dict[str, Any]:
+    """What the page that starts a run shows beside the form: lots in force and the cautions of the reagents."""
+    titrants = [version.titrant, *([version.excess_titrant] if version.excess_titrant else [])]
+    now = timezone.now()
+    return {
+        "lots": [item for titrant in titrants for item in lots_of_titrant(titrant.pk, at=now)],
+        "lots_url": reverse("titrant-detail", args=[version.titrant.code]),
+        "cautions": cautions_for(sorted({hazard for titrant in titrants for hazard in titrant.substance.hazards})),
+    }
