@@ -1,5 +1,6 @@
 // Every cell is sent when it is left; what cannot be sent stays on this device and is sent again.
 
+import { ask, asks, cellOf, say, settle } from "./saying.js";
 import { cells, changed, forget, keep, kept, unsent } from "./unsent.js";
 
 const RETRY = 10_000;
@@ -8,18 +9,6 @@ const SIGNED_OUT = "You are signed out. The value is kept on this device: sign i
 const BROKEN = "The server could not save this. The value is kept on this device and sent again.";
 
 const underway = new Map();
-
-function say(cell, sentence, mark = "") {
-  const place = document.getElementById(`${cell.id}-kept`);
-  if (!place) return;
-  place.textContent = sentence;
-  place.className = `kept ${mark}`.trim();
-  cell.toggleAttribute("aria-invalid", false);
-  if (mark === "is-out") {
-    cell.setAttribute("aria-invalid", "true");
-    cell.setAttribute("aria-describedby", place.id);
-  }
-}
 
 function token() {
   const cookie = document.cookie.match(/(?:^|; )csrftoken=([^;]+)/);
@@ -46,7 +35,6 @@ function accept(cell, sent, answer) {
     if (answer.value !== undefined && answer.value !== null) cell.value = cell.dataset.kept = answer.value;
     forget(cell);
   }
-  closeReason(cell);
   say(cell, answer.saved ? `saved ${answer.saved}` : "saved");
   cell.dispatchEvent(new CustomEvent("labrecords:saved", { bubbles: true }));
 }
@@ -61,7 +49,7 @@ async function receive(cell, sent, response) {
   if (response.type === "opaqueredirect" || response.status === 401 || response.status === 403) {
     say(cell, SIGNED_OUT, "is-person");
   } else if (response.status === 428) {
-    askReason(cell, await response.text());
+    ask(cell, await response.text());
   } else if (response.status === 400 || response.status === 409) {
     say(cell, (await sentencesOf(response)).join(" "), "is-out");
   } else if (!response.ok) {
@@ -89,7 +77,7 @@ function swap(cell, html) {
 
 async function send(cell, more = {}) {
   const sent = cell.value;
-  say(cell, "saving");
+  if (!asks(cell)) say(cell, "saving");
   try {
     await receive(cell, sent, await post(cell, more));
   } catch {
@@ -105,30 +93,17 @@ function queue(cell, more) {
   return mine.finally(() => underway.get(cell) === mine && underway.delete(cell));
 }
 
-function closeReason(cell) {
-  cell.parentElement.querySelector("[data-reason]")?.remove();
-}
-
-function askReason(cell, html) {
-  closeReason(cell);
-  say(cell, "Not recorded yet: a reason is needed.", "is-person");
-  cell.parentElement.append(document.createRange().createContextualFragment(html));
-  cell.parentElement.querySelector("[data-reason] :is(select, input, textarea)")?.focus();
-}
-
 function sendReason(box) {
   const fields = [...box.querySelectorAll("[name]")];
   const missing = fields.find((field) => !field.reportValidity());
   if (missing) return;
-  const cell = box.parentElement.querySelector("[data-autosave]");
-  queue(cell, Object.fromEntries(fields.map((field) => [field.name, field.value])));
+  queue(cellOf(box), Object.fromEntries(fields.map((field) => [field.name, field.value])));
 }
 
 function putBack(box) {
-  const cell = box.parentElement.querySelector("[data-autosave]");
+  const cell = cellOf(box);
   cell.value = cell.dataset.kept;
   forget(cell);
-  closeReason(cell);
   say(cell, "");
   cell.focus();
 }
@@ -138,8 +113,7 @@ function leave(cell) {
     queue(cell, {});
   } else {
     forget(cell);
-    closeReason(cell);
-    say(cell, "");
+      say(cell, "");
   }
 }
 
@@ -147,6 +121,7 @@ function start() {
   for (const cell of cells()) {
     if (cell.dataset.kept !== undefined) continue;
     cell.dataset.kept = cell.defaultValue ?? cell.value;
+    settle(cell);
     const entry = kept(cell);
     if (!entry || entry.value === cell.value) continue;
     cell.value = entry.value;
@@ -157,9 +132,8 @@ function start() {
 function again() {
   if (!navigator.onLine) return;
   for (const cell of unsent()) {
-    const waits = document.getElementById(`${cell.id}-kept`)?.classList.contains("is-person");
-    const asks = cell.parentElement.querySelector("[data-reason]");
-    if (waits && !asks && cell !== document.activeElement) queue(cell, {});
+    const waits = cell.dataset.says === "is-person" && !asks(cell);
+    if (waits && cell !== document.activeElement) queue(cell, {});
   }
 }
 
