@@ -16,7 +16,7 @@ COLOURS = {
     "ink": "#1b2422",
     "ink-2": "#47514d",
     "quiet": "#5c6662",
-    "rule": "#8a8f89",
+    "rule": "#838882",
     "soft": "#eae8df",
     "sheet": "#ffffff",
     "teal": "#0b6365",

@@ -52,7 +52,8 @@ PLACES = (
 
 def page(request: HttpRequest) -> dict[str, Any]:
     """Context of the layout."""
-    roles = frozenset(getattr(request.user, "roles", ()))
+    person = getattr(request, "user", None)  # a request refused early has none
+    roles = frozenset(getattr(person, "roles", ()))
     return {
         "lab_name": getattr(settings, "LAB_NAME", "Titration records"),
         "time_zone": settings.TIME_ZONE,
