@@ -15,8 +15,12 @@ function newTitration() {
 function nextCell(cell) {
   const cells = cellsOf(cell);
   const next = cells[cells.indexOf(cell) + 1] ?? document.querySelector("[data-new-titration]");
-  next?.focus();
-  next?.select?.();
+  if (!next) {
+    cell.blur();
+    return;
+  }
+  next.focus();
+  next.select?.();
 }
 
 function onFind(event) {
