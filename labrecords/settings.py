@@ -55,6 +55,7 @@ ALLOWED_HOSTS = text("ALLOWED_HOSTS", "localhost,127.0.0.1,[::1],testserver" if 
 CSRF_TRUSTED_ORIGINS = [item for item in text("CSRF_TRUSTED_ORIGINS", "").split(",") if item]
 LAB_NAME = text("LAB_NAME", "Marram Quay Laboratory" if DEMO else "Laboratory")
 DATA_DIR = Path(text("DATA_DIR", str(BASE_DIR / ".lab")))
+ANCHOR_FILE = Path(text("ANCHOR_FILE", str(DATA_DIR / "anchors.txt")))  # checkpoints of the trail, append only
 TIME_ZONE = text("LAB_TIME_ZONE", "UTC")
 
 DATABASES = {"default": database(text("DATABASE_URL"))}

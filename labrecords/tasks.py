@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from celery import shared_task
 
-from labrecords.services import calculation
+from labrecords.services import calculation, seal
 
 
 @shared_task(name="labrecords.tasks.compute_request")
@@ -19,3 +19,9 @@ def sweep_waiting() -> None:
     """Compute what a lost message left waiting."""
     for request_id in calculation.overdue_requests():
         compute_request.delay(request_id=request_id)
+
+
+@shared_task(name="labrecords.tasks.seal_trail")
+def seal_trail() -> None:
+    """Seal the events that are new; again at once while there are more than one round takes."""
+    seal.seal_trail()

@@ -110,14 +110,22 @@ def titrant_inputs(standardization: Standardization) -> dict[str, Any]:
         "concentration": repr(calculation.value),
         "u": repr(calculation.standard_uncertainty),
         "degrees_of_freedom": repr(calculation.degrees_of_freedom) if calculation.degrees_of_freedom else None,
-        "components": titrant_components(calculation),
+        "components": titrant_components(calculation, of=standardization.number),
     }
 
 
-def titrant_components(calculation: Calculation) -> list[dict[str, str]]:
-    """Signed contributions [mol/L] of the inputs of a concentration, by physical key."""
+def titrant_components(calculation: Calculation, *, of: str) -> list[dict[str, Any]]:
+    """Signed contributions [mol/L] of the inputs of a concentration, by physical key.
+
+    A physical key ("burette:B-07") is the same thing wherever it is used; scatter belongs to its standardization.
+    """
     return [
-        {"key": line["key"], "label": line["label"], "u": repr(line["contribution"])}
+        {
+            "key": line["key"] if ":" in line["key"] or "/" in line["key"] else f"{of}/{line['key']}",
+            "label": line["label"] if ":" in line["key"] or "/" in line["key"] else f"{line['label']} in {of}",
+            "u": repr(line["contribution"]),
+            "degrees_of_freedom": None if line["degrees_of_freedom"] is None else repr(line["degrees_of_freedom"]),
+        }
         for line in calculation.outputs["budget"]
     ]
 
