@@ -92,6 +92,20 @@ def change_password(user: User, *, by: User, current: str, password: str) -> Use
     return user
 
 
+@transaction.atomic(durable=True)
+def record_sign_in(user: User) -> None:
+    """Write that a person signed in."""
+    with audit.event("user.sign_in", by=user, subject=user.username):
+        pass
+
+
+@transaction.atomic(durable=True)
+def record_sign_out(user: User) -> None:
+    """Write that a person signed out."""
+    with audit.event("user.sign_out", by=user, subject=user.username):
+        pass
+
+
 def _set_password(user: User, password: str) -> None:
     try:
         validate_password(password, user)

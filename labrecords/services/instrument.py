@@ -1,0 +1,129 @@
+"""Instruments and calibrations: recorded, superseded, withdrawn."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from datetime import date
+from decimal import Decimal
+from typing import Any
+
+from django.db import transaction
+from django.utils import timezone
+
+from labrecords.errors import refuse_if
+from labrecords.models import Instrument, InstrumentCalibration, Meaning, User
+from labrecords.rules.instrument_register import (
+    objections_to_calibrating, objections_to_recording_instrument, objections_to_withdrawing_calibration,
+    objections_to_withdrawing_instrument,
+)  # fmt: skip
+from labrecords.rules.review import objections_to_reason
+from labrecords.services import audit
+from labrecords.services.question import raise_questions_on, raise_questions_on_runs
+from labrecords.services.signature import Credentials, sign
+from labrecords.services.stored_file import store_file
+
+
+@transaction.atomic(durable=True)
+def record_instrument(
+    *, by: User, identifier: str, kind: str, unit: str, resolution: Decimal, tolerance: Decimal,
+    capacity: Decimal | None = None, description: str = "", place: str = "",
+) -> Instrument:  # fmt: skip
+    """Record an instrument; it is used once it has a calibration."""
+    instrument = Instrument(
+        identifier=identifier, kind=kind, unit=unit, resolution=resolution, tolerance=tolerance, capacity=capacity,
+        description=description, place=place,
+    )  # fmt: skip
+    refuse_if(objections_to_recording_instrument(instrument, by=by))
+    with audit.event("instrument.record", by=by, subject=identifier):
+        instrument.save()
+    return instrument
+
+
+@transaction.atomic(durable=True)
+def supersede_instrument(instrument: Instrument, *, by: User, reason: str, **new: Any) -> Instrument:
+    """Replace an instrument's entry by a corrected one under another identifier; the old one stays with its uses."""
+    instrument = Instrument.objects.select_for_update().get(pk=instrument.pk)
+    successor = Instrument(**new)
+    refuse_if(
+        [
+            *objections_to_recording_instrument(successor, by=by),
+            *objections_to_reason(reason, what="the instrument is superseded"),
+            *([f"{instrument.identifier} is superseded already."] if instrument.superseded_by_id else []),
+        ]
+    )
+    with audit.event("instrument.supersede", by=by, subject=instrument.identifier, reason=reason):
+        successor.save()
+        instrument.superseded_by = successor
+        instrument.save(update_fields=["superseded_by"])
+    return successor
+
+
+@transaction.atomic(durable=True)
+def withdraw_instrument(instrument: Instrument, *, by: User, reason: str) -> Instrument:
+    """Take an instrument out of use; what was done with it stays."""
+    instrument = Instrument.objects.select_for_update().get(pk=instrument.pk)
+    refuse_if(
+        [
+            *objections_to_withdrawing_instrument(instrument, by=by),
+            *objections_to_reason(reason, what="the instrument is withdrawn"),
+        ]
+    )
+    with audit.event("instrument.withdraw", by=by, subject=instrument.identifier, reason=reason) as event:
+        instrument.withdrawn_at, instrument.withdrawn_reason = event.at, reason
+        instrument.save(update_fields=["withdrawn_at", "withdrawn_reason"])
+    return instrument
+
+
+@transaction.atomic(durable=True)
+def record_calibration(
+    instrument: Instrument, *, by: User, calibrated_on: date, due_on: date, performed_by: str,
+    uncertainty: Decimal | None = None, corrections: Sequence[Sequence[str]] = (), slope_percent: Decimal | None = None,
+    remarks: str = "", certificate: tuple[str, str, bytes] | None = None,
+) -> InstrumentCalibration:  # fmt: skip
+    """Record a calibration, with its certificate as (name, media type, bytes) where there is one."""
+    with audit.event("instrument.calibrate", by=by, subject=instrument.identifier) as event:
+        refuse_if(
+            objections_to_calibrating(
+                instrument, by=by, calibrated_on=calibrated_on, due_on=due_on, performed_by=performed_by,
+                corrections=corrections, slope_percent=slope_percent, today=timezone.localtime(event.at).date(),
+            )
+        )  # fmt: skip
+        file = None
+        if certificate is not None:
+            name, media_type, content = certificate
+            file = store_file(name, media_type=media_type, content=content, by=by, at=event.at)
+        return InstrumentCalibration.objects.create(
+            instrument=instrument, calibrated_on=calibrated_on, due_on=due_on, performed_by=performed_by,
+            uncertainty=uncertainty, corrections=[list(row) for row in corrections], slope_percent=slope_percent,
+            remarks=remarks, certificate=file,
+        )  # fmt: skip
+
+
+@transaction.atomic(durable=True)
+def withdraw_calibration(
+    calibration: InstrumentCalibration, *, by: User, credentials: Credentials, reason: str
+) -> InstrumentCalibration:
+    """Withdraw a calibration that proved wrong; everything measured under it is put in question."""
+    calibration = (
+        InstrumentCalibration.objects.select_for_update(of=("self",)).select_related("instrument").get(pk=calibration.pk)
+    )
+    refuse_if(
+        [
+            *objections_to_withdrawing_calibration(calibration, by=by),
+            *objections_to_reason(reason, what="the calibration is withdrawn"),
+        ]
+    )
+    identifier = calibration.instrument.identifier
+    because = f"Calibration of {identifier} of {calibration.calibrated_on:%-d %b %Y} is withdrawn: {reason}"
+    with audit.event("instrument.withdraw_calibration", by=by, subject=identifier, reason=reason) as event:
+        calibration.withdrawn_at, calibration.withdrawn_reason = event.at, reason
+        calibration.save(update_fields=["withdrawn_at", "withdrawn_reason"])
+        sign(
+            Meaning.WITHDRAWN, by=by, credentials=credentials, noun="calibration", record_id=calibration.pk,
+            number=str(calibration), content={"noun": "calibration", "instrument": identifier, "reason": reason},
+            reason=reason, zone=timezone.get_current_timezone_name(),
+        )  # fmt: skip
+        uses = calibration.uses.all()
+        raise_questions_on([use.standardization_id for use in uses if use.standardization_id], because=because, by=by)
+        raise_questions_on_runs([use.run_id for use in uses if use.run_id], because=because, by=by)
+    return calibration
