@@ -6,35 +6,31 @@ added with a seeded generator. Used by the tests and by the demo laboratory.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable
+from collections.abc import Callable
 
 import numpy as np
 import numpy.typing as npt
-from scipy import optimize
 
 from analysis.explicit import NERNST, PKW, acid_base_volume, ionic_strength, silver_halide_volume
 from analysis.system import System
 
 FloatArray = npt.NDArray[np.float64]
+HALVINGS = 50
 
 
 def simulate_acid_base(
     system: System, *, amounts: FloatArray, volumes: FloatArray, carbonate: float = 0.0
 ) -> FloatArray:
-    """pH at each volume [mL] for amounts [mmol] of the analytes, by root finding on the explicit model."""
-    def volume_at(pH: float, strength: FloatArray | None) -> float:
-        found = acid_base_volume(np.array([pH]), amounts, system, carbonate=carbonate, ionic_strength=strength)
-        return float(found[0])
+    """pH at each volume [mL] for amounts [mmol] of the analytes, by bisection on the explicit model."""
+    strength = ionic_strength(system, volume=volumes, amounts=amounts) if system.activity else None
+
+    def volume_at(pH: FloatArray) -> FloatArray:
+        return acid_base_volume(pH, amounts, system, carbonate=carbonate, ionic_strength=strength)
 
     strongest = float(np.log10(system.titrant_concentration)) - 1e-4  # the titrant itself is never reached
     shift = 0.1 if system.activity else 0.0
     low, high = (0.2, PKW + strongest - shift) if system.titrant == "base" else (-strongest + shift, 13.8)
-    strengths = ionic_strength(system, volume=volumes, amounts=amounts)
-    found = []
-    for volume, strength in zip(volumes, strengths, strict=True):
-        given = np.array([strength]) if system.activity else None
-        found.append(_inverted(lambda pH, given=given: volume_at(pH, given), [volume], low=low, high=high)[0])
-    return np.array(found)
+    return _inverted(volume_at, volumes, low=low, high=high)
 
 
 def simulate_silver(
@@ -42,9 +38,8 @@ def simulate_silver(
 ) -> FloatArray:
     """Potential [mV] of a silver electrode at each volume [mL] for an amount [mmol] of halide."""
 
-    def volume_at(potential: float) -> float:
-        found = silver_halide_volume(np.array([potential]), amount, system, standard=standard, slope=NERNST, pKs=pKs)
-        return float(found[0])
+    def volume_at(potential: FloatArray) -> FloatArray:
+        return silver_halide_volume(potential, amount, system, standard=standard, slope=NERNST, pKs=pKs)
 
     middle = standard - NERNST * pKs / 2
     strongest = standard + NERNST * (float(np.log10(system.titrant_concentration)) - 1e-4)
@@ -66,10 +61,12 @@ def grid(*, end: float, near: float, coarse: float = 0.5, fine: float = 0.1, wid
     return np.round(np.sort(np.concatenate([outside, inside])), 3)
 
 
-def _inverted(volume_at: Callable[[float], float], volumes: Iterable[float], *, low: float, high: float) -> FloatArray:
-    first, last = volume_at(low), volume_at(high)
-    found = []
-    for volume in volumes:
-        bounded = min(max(volume, min(first, last) + 1e-9), max(first, last) - 1e-9)
-        found.append(optimize.brentq(lambda reading: volume_at(reading) - bounded, low, high, xtol=1e-10))
-    return np.array(found)
+def _inverted(volume_at: Callable[[FloatArray], FloatArray], volumes: FloatArray, *, low: float, high: float) -> FloatArray:
+    """The reading at each volume: bisection of all at once, V being monotone in the reading."""
+    below, above = np.full(volumes.shape, low), np.full(volumes.shape, high)
+    rising = volume_at(above) > volume_at(below)
+    for _ in range(HALVINGS):
+        middle = (below + above) / 2
+        is_short = (volume_at(middle) < volumes) == rising
+        below, above = np.where(is_short, middle, below), np.where(is_short, above, middle)
+    return np.asarray((below + above) / 2)

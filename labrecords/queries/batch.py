@@ -8,7 +8,7 @@ from typing import Any
 
 from django.db.models import Count, Prefetch, Q, QuerySet
 
-from labrecords.models import Batch, Investigation, InvestigationState, Question, RecordState, Run, Sample, SpecificationLimit
+from labrecords.models import Batch, Conclusion, Investigation, InvestigationState, Question, RecordState, Run, Sample, SpecificationLimit
 from labrecords.models.batch import BatchState
 
 
@@ -75,6 +75,11 @@ def runs_of_batch(batch: Batch) -> QuerySet[Run]:
                 queryset=Investigation.objects.exclude(state=InvestigationState.CLOSED),
                 to_attr="open_investigations",
             ),
+            Prefetch(
+                "investigations",
+                queryset=Investigation.objects.filter(conclusion=Conclusion.NOT_CONFIRMED),
+                to_attr="not_confirmed",
+            ),
         )
         .order_by("started_at", "id")
     )
@@ -91,7 +96,7 @@ def _required_test(limit: SpecificationLimit, runs: list[Run]) -> RequiredTest:
         ("open", [run for run in live if run.state == RecordState.OPEN]),
         ("submitted", [run for run in live if run.state == RecordState.SUBMITTED]),
         ("in question", [run for run in live if run.open_questions]),  # type: ignore[attr-defined]
-        ("out of limits", [run for run in live if _outcome(run) == "does_not_conform"]),
+        ("out of limits", [run for run in live if _outcome(run) == "does_not_conform" and not run.not_confirmed]),  # type: ignore[attr-defined]
         ("inconclusive", [run for run in live if _outcome(run) == "inconclusive"]),
     ):
         if chosen:

@@ -109,7 +109,7 @@ def unsigned_approvals() -> Iterator[str]:
 
 def uninvestigated_results() -> Iterator[str]:
     """Submitted and approved results out of specification are investigated; void ones too."""
-    runs = Run.objects.filter(calculation__outcome="does_not_conform", investigations__isnull=True)
+    runs = Run.objects.filter(calculation__outcome="does_not_conform", investigations__isnull=True, retest_for__isnull=True)
     for run in runs.exclude(state=RecordState.OPEN):
         yield f"{run.number} is out of specification and was never investigated."
 

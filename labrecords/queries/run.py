@@ -8,7 +8,7 @@ from typing import Any
 
 from django.db.models import Count, Q, QuerySet
 
-from labrecords.models import RecordState, Run, Sample, Standardization
+from labrecords.models import Investigation, RecordState, Run, Sample, Standardization
 from labrecords.queries.replicate import replicates_as_signed, used_instruments_as_signed
 from labrecords.queries.standardization import calculation_as_signed
 
@@ -36,13 +36,16 @@ def runs_found(*, q: str = "", state: str = "") -> QuerySet[Run]:
     return found.filter(reduce(or_, (Q(**{f"{place}__icontains": q}) for place in places)))
 
 
-def unfinished_runs_of(sample: Sample, *, method_id: int) -> QuerySet[Run]:
-    """Runs of a sample under a method that are still open or waiting for review."""
-    return Run.objects.filter(
+def unfinished_runs_of(
+    sample: Sample, *, method_id: int, apart_from: Investigation | None = None
+) -> QuerySet[Run]:
+    """Runs of a sample under a method that are open or wait for review, without the one that is investigated."""
+    found = Run.objects.filter(
         sample=sample,
         method_version__method_id=method_id,
         state__in=[RecordState.OPEN, RecordState.SUBMITTED],
     )
+    return found if apart_from is None else found.exclude(pk=apart_from.run_id)
 
 
 def review_count() -> int:

@@ -46,7 +46,7 @@ def _objections_to_sample(sample: Sample, *, version: MethodVersion, retest_for:
         found.append(f"Sample {sample.number} is void: {sample.void_reason}")
     if sample.batch is not None and sample.batch.state in (BatchState.RELEASED, BatchState.REJECTED):
         found.append(f"Batch {sample.batch.number} is {sample.batch.state}. Nothing more is tested on it.")
-    unfinished = unfinished_runs_of(sample, method_id=version.method_id).first()
+    unfinished = unfinished_runs_of(sample, method_id=version.method_id, apart_from=retest_for).first()
     if unfinished is not None:
         found.append(f"{unfinished.number} is {unfinished.state} for this sample and test. Finish that one first.")
     investigation = open_investigation_of_sample(sample, method_id=version.method_id)
@@ -109,7 +109,8 @@ def objections_to_voiding_run(run: Run, *, by: User) -> list[str]:
     return found
 
 
-def was_out_of_specification(run: Run) -> bool:
-    """Whether the newest official calculation of a run is out of specification."""
+def needs_an_investigation(run: Run) -> bool:
+    """Out of specification and not yet investigated; a planned retest belongs to the investigation that planned it."""
     latest = latest_calculation(run)
-    return latest is not None and latest.outcome == "does_not_conform"
+    is_outside = latest is not None and latest.outcome == "does_not_conform"
+    return is_outside and run.retest_for_id is None and not run.investigations.exists()

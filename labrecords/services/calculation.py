@@ -24,7 +24,7 @@ def ask_for_calculation(record: Record, *, by: User, at: datetime) -> Calculatio
     request, is_new = CalculationRequest.objects.get_or_create(
         **_owner(record), state="waiting", defaults={"requested_by": by, "requested_at": at}
     )
-    if not is_new:
+    if not is_new and request.requested_by_id != by.pk:
         request.requested_by, request.requested_at = by, at
         request.save(update_fields=["requested_by", "requested_at"])
     after_commit("labrecords.tasks.compute_request", request_id=request.pk)

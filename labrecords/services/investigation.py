@@ -20,7 +20,7 @@ from labrecords.services.number import next_number
 from labrecords.services.signature import Credentials, sign
 
 
-def open_investigation(run: Run, *, calculation: Calculation, at: datetime) -> Investigation:
+def open_investigation(run: Run, *, calculation: Calculation | None, at: datetime) -> Investigation:
     """Open the investigation of an out-of-specification result; called inside the service that met it."""
     return Investigation.objects.create(
         number=next_number("I", at=at, width=3), run=run, calculation=calculation, opened_at=at

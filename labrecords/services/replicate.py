@@ -41,7 +41,7 @@ def record_readings(
 
     Filling an empty cell needs nothing more; changing a kept value is a correction and needs a reason.
     """
-    record = lock_record(replicate.run or replicate.standardization)
+    record = lock_record_of(replicate)
     replicate = Replicate.objects.select_for_update(of=("self",)).get(pk=replicate.pk)
     changed = {field: value for field, value in values.items() if str(getattr(replicate, field)) != str(value)}
     if not changed:
@@ -61,7 +61,7 @@ def record_readings(
 @transaction.atomic(durable=True)
 def exclude_replicate(replicate: Replicate, *, by: User, cause: str, sentence: str) -> Replicate:
     """Take a replicate out of the calculation for an assignable cause; it stays on the record."""
-    record = lock_record(replicate.run or replicate.standardization)
+    record = lock_record_of(replicate)
     replicate = Replicate.objects.select_for_update(of=("self",)).get(pk=replicate.pk)
     refuse_if(objections_to_excluding(replicate, record=record, by=by, cause=cause, sentence=sentence))
     with audit.event("replicate.exclude", by=by, subject=record.number, reason=sentence) as event:
@@ -80,7 +80,7 @@ def attach_curve(
 
     ``curve`` has quantity, mapping, volumes, readings and notes as the reader of curve files gave them.
     """
-    record = lock_record(replicate.run or replicate.standardization)
+    record = lock_record_of(replicate)
     replicate = Replicate.objects.select_for_update(of=("self",)).get(pk=replicate.pk)
     digest = hashlib.sha256(content).hexdigest()
     refuse_if(objections_to_attaching(replicate, record=record, by=by, digest=digest, quantity=curve["quantity"]))
@@ -107,11 +107,17 @@ def record_used_instruments(record: Record, instruments: Mapping[str, Instrument
         )
 
 
-def lock_record(record: Record | None) -> Record:
+def lock_record(record: Record) -> Record:
     """The record, locked; what is read and what is refused then belong together."""
     if isinstance(record, Run):
         return Run.objects.select_for_update(of=("self",)).select_related("method_version__method").get(pk=record.pk)
     return Standardization.objects.select_for_update(of=("self",)).select_related("lot__titrant").get(pk=record.pk)
+
+
+def lock_record_of(replicate: Replicate) -> Record:
+    """The record a replicate belongs to, locked."""
+    owner = Run(pk=replicate.run_id) if replicate.run_id else Standardization(pk=replicate.standardization_id)
+    return lock_record(owner)
 
 
 def _added(record: Record, *, by: User, at: datetime, kind: str) -> Replicate:

@@ -20,7 +20,7 @@ from labrecords.queries.standardization import in_force
 from labrecords.rules.instrument import objections_to_instruments, parts_of_method
 from labrecords.rules.review import objections_to_reason, objections_to_reviewing
 from labrecords.rules.run import (
-    objections_to_approving_run, objections_to_starting_run, objections_to_submitting_run, objections_to_voiding_run,
+    needs_an_investigation, objections_to_approving_run, objections_to_starting_run, objections_to_submitting_run, objections_to_voiding_run,
 )  # fmt: skip
 from labrecords.services import audit
 from labrecords.services.calculation import ask_for_calculation
@@ -43,6 +43,9 @@ def start_run(
 ) -> Run:
     """Reserve a number and fix what the run rests on; Refused with every reason at once."""
     sample = Sample.objects.select_for_update(of=("self",)).select_related("batch", "control_sample").get(pk=sample.pk)
+    lot = TitrantLot.objects.select_for_update(of=("self",)).select_related("titrant").get(pk=lot.pk)
+    if excess_lot is not None:
+        excess_lot = TitrantLot.objects.select_for_update(of=("self",)).select_related("titrant").get(pk=excess_lot.pk)
     with audit.event("run.start", by=by, subject=sample.number) as event:
         refuse_if(
             [
@@ -92,7 +95,7 @@ def submit_run(run: Run, *, by: User, credentials: Credentials) -> Run:
     with audit.event("run.submit", by=by, subject=run.number) as event:
         run.save(update_fields=["calculation", "state"])
         _sign(Meaning.PERFORMED, run, by=by, credentials=credentials)
-        if run.calculation is not None and run.calculation.outcome == "does_not_conform":
+        if needs_an_investigation(run):
             open_investigation(run, calculation=run.calculation, at=event.at)
     return run
 
@@ -130,9 +133,8 @@ def void_run(run: Run, *, by: User, credentials: Credentials, reason: str) -> Ru
         run.state, run.void_reason = RecordState.VOID, reason
         run.save(update_fields=["state", "void_reason"])
         _sign(Meaning.VOIDED, run, by=by, credentials=credentials, reason=reason)
-        latest = latest_calculation(run)
-        if latest is not None and latest.outcome == "does_not_conform" and not run.investigations.exists():
-            open_investigation(run, calculation=latest, at=event.at)
+        if needs_an_investigation(run):
+            open_investigation(run, calculation=latest_calculation(run), at=event.at)
     return run
 
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from datetime import timedelta
+from typing import TypeVar
 
 from django.db import transaction
 from django.utils import timezone
@@ -28,6 +29,9 @@ from labrecords.services.replicate import add_first_replicates, record_used_inst
 from labrecords.services.signature import Credentials, sign
 
 
+Row = TypeVar("Row", ReferenceStandard, TitrantLot)
+
+
 @transaction.atomic(durable=True)
 def start_standardization(
     lot: TitrantLot,
@@ -39,6 +43,7 @@ def start_standardization(
 ) -> Standardization:
     """Reserve a number and fix what the standardization rests on."""
     lot = TitrantLot.objects.select_for_update(of=("self",)).select_related("titrant").get(pk=lot.pk)
+    reference_standard, against = _as_stored(reference_standard), _as_stored(against)
     basis = Basis.MASS if reference_standard is not None else Basis.TITRANT
     with audit.event("standardization.start", by=by, subject=lot.number) as event:
         refuse_if(
@@ -163,6 +168,13 @@ def void_standardization(
                 [standardization.pk], because=f"Standardization {standardization.number} is void: {reason}", by=by
             )
     return standardization
+
+
+def _as_stored(row: Row | None) -> Row | None:
+    """A choice as it stands now, not as it stood when the page was made; locked against being withdrawn meanwhile."""
+    if row is None:
+        return None
+    return type(row).objects.select_for_update(of=("self",)).get(pk=row.pk)
 
 
 def _locked(standardization: Standardization) -> Standardization:
