@@ -4,7 +4,9 @@ from __future__ import annotations
 
 from django.urls import path
 
-from labrecords.views import bench, curve, replicate, run, standardization, user
+from labrecords.views import (
+    bench, curve, instrument, register, replicate, run, standard, standardization, substance, titrant, titrant_lot, user,
+)  # fmt: skip
 
 bench_urls = [path("", bench.list, name="bench-list")]
 
@@ -56,7 +58,52 @@ curve_urls = [
     path("curves/<int:pk>/record/", curve.record, name="curve-record"),
 ]
 
+register_urls = [path("register/", register.home, name="register-home")]
+
+substance_urls = [
+    path("substances/", substance.list, name="substance-list"),
+    path("substances/record/", substance.record, name="substance-record"),
+    path("substances/<int:pk>/", substance.detail, name="substance-detail"),
+    path("substances/<int:pk>/supersede/", substance.supersede, name="substance-supersede"),
+]
+
+instrument_urls = [
+    path("instruments/", instrument.list, name="instrument-list"),
+    path("instruments/record/", instrument.record, name="instrument-record"),
+    path("instruments/<str:identifier>/", instrument.detail, name="instrument-detail"),
+    path("instruments/<str:identifier>/supersede/", instrument.supersede, name="instrument-supersede"),
+    path("instruments/<str:identifier>/calibrate/", instrument.calibrate, name="instrument-calibrate"),
+    path("instruments/<str:identifier>/withdraw/", instrument.withdraw, name="instrument-withdraw"),
+    path("calibrations/<int:pk>/withdraw/", instrument.withdraw_calibration, name="instrument-withdraw_calibration"),
+]
+
+standard_urls = [
+    path("standards/", standard.list, name="standard-list"),
+    path("standards/record/", standard.record, name="standard-record"),
+    path("standards/certificates/<int:pk>/", standard.certificate, name="standard-certificate"),
+    path("standards/<str:number>/", standard.detail, name="standard-detail"),
+    path("standards/<str:number>/issue/", standard.issue, name="standard-issue"),
+    path("standards/<str:number>/withdraw/", standard.withdraw, name="standard-withdraw"),
+]
+
+titrant_urls = [
+    path("titrants/", titrant.list, name="titrant-list"),
+    path("titrants/record/", titrant.record, name="titrant-record"),
+    path("titrants/<str:code>/", titrant.detail, name="titrant-detail"),
+    path("titrants/<str:code>/supersede/", titrant.supersede, name="titrant-supersede"),
+    path("titrants/<str:code>/lots/record/", titrant_lot.record, name="titrant_lot-record"),
+    path("lots/", titrant_lot.list, name="titrant_lot-list"),
+    path("lots/<str:number>/", titrant_lot.detail, name="titrant_lot-detail"),
+    path("lots/<str:number>/label/", titrant_lot.label, name="titrant_lot-label"),
+    path("lots/<str:number>/withdraw/", titrant_lot.withdraw, name="titrant_lot-withdraw"),
+]
+
 urlpatterns = [
+    *register_urls,
+    *substance_urls,
+    *instrument_urls,
+    *standard_urls,
+    *titrant_urls,
     *bench_urls,
     *user_urls,
     *run_urls,
