@@ -97,6 +97,7 @@ def prepare(postgres: Postgres, stop: dict[str, int]) -> None:
     postgres.make_roles()
     if not filled.exists():
         postgres.drop_database()  # an interrupted first filling is begun again
+        (DATA / "anchors.txt").unlink(missing_ok=True)
     postgres.make_database()
     owner = environment(postgres, OWNER, broker="memory://")
     say("bringing the database up to date")

@@ -5,8 +5,15 @@ from __future__ import annotations
 from django.urls import path
 
 from labrecords.views import (
-    bench, curve, instrument, register, replicate, run, standard, standardization, substance, titrant, titrant_lot, user,
+    audit, batch, bench, control_chart, control_sample, curve, find, health, instrument, investigation, lineage, method,
+    product, question, register, replicate, review, run, sample, standard, standardization, substance, titrant,
+    titrant_lot, user,
 )  # fmt: skip
+
+handler400 = "labrecords.views.error.bad_request"
+handler403 = "labrecords.views.error.forbidden"
+handler404 = "labrecords.views.error.not_found"
+handler500 = "labrecords.views.error.broken"
 
 bench_urls = [path("", bench.list, name="bench-list")]
 
@@ -98,7 +105,90 @@ titrant_urls = [
     path("lots/<str:number>/withdraw/", titrant_lot.withdraw, name="titrant_lot-withdraw"),
 ]
 
+batch_urls = [
+    path("batches/", batch.list, name="batch-list"),
+    path("batches/record/", batch.record, name="batch-record"),
+    path("batches/<str:number>/", batch.detail, name="batch-detail"),
+    path("batches/<str:number>/release/", batch.release, name="batch-release"),
+    path("batches/<str:number>/reject/", batch.reject, name="batch-reject"),
+    path("batches/<str:number>/hold/", batch.hold, name="batch-hold"),
+]
+
+sample_urls = [
+    path("samples/", sample.list, name="sample-list"),
+    path("samples/record/", sample.record, name="sample-record"),
+    path("samples/<str:number>/", sample.detail, name="sample-detail"),
+    path("samples/<str:number>/void/", sample.void, name="sample-void"),
+]
+
+review_urls = [
+    path("reviews/", review.list, name="review-list"),
+    path("questions/<int:pk>/", question.answer, name="question-answer"),
+]
+
+investigation_urls = [
+    path("investigations/", investigation.list, name="investigation-list"),
+    path("investigations/<str:number>/", investigation.detail, name="investigation-detail"),
+    path("investigations/<str:number>/assess/", investigation.assess, name="investigation-assess"),
+    path("investigations/<str:number>/plan/", investigation.plan, name="investigation-plan"),
+    path("investigations/<str:number>/close/", investigation.close, name="investigation-close"),
+]
+
+method_urls = [
+    path("methods/", method.list, name="method-list"),
+    path("methods/record/", method.record, name="method-record"),
+    path("methods/versions/<int:pk>/effective/", method.make_effective, name="method-make_effective"),
+    path("methods/<str:code>/", method.detail, name="method-detail"),
+    path("methods/<str:code>/versions/record/", method.record_version, name="method-record_version"),
+]
+
+product_urls = [
+    path("products/", product.list, name="product-list"),
+    path("products/record/", product.record, name="product-record"),
+    path("products/specifications/<int:pk>/effective/", product.make_effective, name="product-make_effective"),
+    path("products/<str:code>/", product.detail, name="product-detail"),
+    path("products/<str:code>/specify/", product.specify, name="product-specify"),
+]
+
+control_urls = [
+    path("control-samples/", control_sample.list, name="control_sample-list"),
+    path("control-samples/record/", control_sample.record, name="control_sample-record"),
+    path("control-samples/<str:code>/", control_sample.detail, name="control_sample-detail"),
+    path("control-samples/<str:code>/withdraw/", control_sample.withdraw, name="control_sample-withdraw"),
+    path("charts/", control_chart.list, name="control_chart-list"),
+    path("charts/record/", control_chart.record, name="control_chart-record"),
+    path("charts/<str:code>/", control_chart.detail, name="control_chart-detail"),
+    path("charts/<str:code>/limits/", control_chart.set_limits, name="control_chart-set_limits"),
+]
+
+lineage_urls = [
+    path("find/", find.number, name="find-number"),
+    path("lineage/", lineage.find, name="lineage-find"),
+    path("lineage/runs/<str:number>/", lineage.run, name="lineage-run"),
+    path("lineage/runs/<str:number>/provenance/", lineage.provenance, name="lineage-provenance"),
+    path("lineage/standardizations/<str:number>/", lineage.standardization, name="lineage-standardization"),
+    path("lineage/lots/<str:number>/", lineage.lot, name="lineage-lot"),
+    path("lineage/standards/<str:number>/", lineage.standard, name="lineage-standard"),
+]
+
+audit_urls = [
+    path("audit/", audit.list, name="audit-list"),
+    path("audit/export/", audit.export, name="audit-export"),
+    path("audit/integrity/", audit.integrity, name="audit-integrity"),
+    path("audit/<int:pk>/", audit.detail, name="audit-detail"),
+    path("healthz", health.check, name="health-check"),
+]
+
 urlpatterns = [
+    *batch_urls,
+    *sample_urls,
+    *review_urls,
+    *investigation_urls,
+    *method_urls,
+    *product_urls,
+    *control_urls,
+    *lineage_urls,
+    *audit_urls,
     *register_urls,
     *substance_urls,
     *instrument_urls,

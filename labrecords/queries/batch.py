@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import reduce
+from operator import or_
 from typing import Any
 
 from django.db.models import Count, Prefetch, Q, QuerySet
@@ -137,3 +139,22 @@ def as_signed(batch: Batch) -> dict[str, Any]:
             for test in required_tests(batch)
         ],
     }
+
+
+def batches_found(*, q: str = "", state: str = "") -> QuerySet[Batch]:
+    """Batches whose number or product has the text, in a state if one is given."""
+    found = batches()
+    if state:
+        found = found.filter(state=state)
+    if q:
+        found = found.filter(Q(number__icontains=q) | Q(product__name__icontains=q) | Q(product__code__icontains=q))
+    return found
+
+
+def samples_found(*, q: str = "") -> QuerySet[Sample]:
+    """Samples whose number, batch, product or control sample has the text."""
+    found = samples()
+    if q:
+        places = ("number", "batch__number", "batch__product__name", "control_sample__code")
+        found = found.filter(reduce(or_, (Q(**{f"{place}__icontains": q}) for place in places)))
+    return found
