@@ -36,7 +36,7 @@ def batches() -> QuerySet[Batch]:
     """All batches with what a list shows, newest first."""
     return Batch.objects.select_related("product", "specification", "disposed_by").annotate(
         sample_count=Count("samples", distinct=True)
-    )
+    ).order_by("-made_on", "-id")
 
 
 def samples() -> QuerySet[Sample]:

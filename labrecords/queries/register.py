@@ -38,13 +38,14 @@ def titrants(*, q: str = "") -> QuerySet[Titrant]:
     """Titrants with the count of their lots."""
     found = Titrant.objects.select_related("substance", "standard_substance", "standard_titrant").annotate(
         lot_count=Count("lots")
-    )
+    ).order_by("code")
     return containing(found, q, "code", "name")
 
 
 def titrant_lots(*, q: str = "", state: str = "") -> QuerySet[TitrantLot]:
     """Lots, newest first."""
     found = TitrantLot.objects.select_related("titrant", "prepared_by").annotate(attempts=Count("standardizations"))
+    found = found.order_by("-prepared_on", "-id")
     return containing(found.filter(state=state) if state else found, q, "number", "titrant__name", "titrant__code", "reagent_lot")
 
 

@@ -21,7 +21,7 @@ def runs() -> QuerySet[Run]:
     ).annotate(
         open_questions=Count("questions", filter=Q(questions__answered_at__isnull=True), distinct=True),
         open_investigations=Count("investigations", filter=~Q(investigations__state="closed"), distinct=True),
-    )  # fmt: skip
+    ).order_by("-started_at", "-id")  # fmt: skip
 
 
 def runs_found(*, q: str = "", state: str = "") -> QuerySet[Run]:

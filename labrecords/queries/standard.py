@@ -14,7 +14,7 @@ def standards() -> QuerySet[ReferenceStandard]:
     """All lots with what a list shows."""
     return ReferenceStandard.objects.select_related("substance", "certificate").annotate(
         uses=Count("standardizations", distinct=True)
-    )
+    ).order_by("number")
 
 
 def standards_found(*, q: str = "", state: str = "") -> QuerySet[ReferenceStandard]:

@@ -18,7 +18,7 @@ def standardizations() -> QuerySet[Standardization]:
     """All standardizations with what a list shows, newest first."""
     return Standardization.objects.select_related(
         "lot__titrant", "reference_standard__substance", "against__lot", "started_by", "calculation"
-    ).annotate(open_questions=Count("questions", filter=Q(questions__answered_at__isnull=True)))
+    ).annotate(open_questions=Count("questions", filter=Q(questions__answered_at__isnull=True))).order_by("-started_at", "-id")
 
 
 def standardizations_found(*, q: str = "", state: str = "") -> QuerySet[Standardization]:

@@ -107,7 +107,7 @@ def _down(
         "above": above or [],
         "resting": resting,
         "batches": sorted(by_batch.values(), key=lambda row: row.batch or "", reverse=True),
-        "states": Counter(row.batch_state for row in by_batch.values()),
+        "states": dict(Counter(row.batch_state for row in by_batch.values())),
         "in_question": sum(row.in_question for row in resting),
     }
     return render(request, "lineage/down.html", context)
