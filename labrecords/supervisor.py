@@ -1,4 +1,4 @@
-"""One command starts the laboratory: database, broker, migrations, demo, worker, beat and site; Ctrl-C stops all.
+"""One command starts database, broker, migrations, demo, worker, beat and site; Ctrl-C stops all.
 
     python -m labrecords.supervisor
 
@@ -12,23 +12,19 @@ import contextlib
 import fcntl
 import hashlib
 import os
+import secrets
 import signal
-import socket
-import subprocess
 import sys
 import time
-import urllib.error
-import urllib.request
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from pathlib import Path
-from typing import Any
 
-from labrecords.local import APP, OWNER, Postgres, Valkey, cluster_dir, die_with_parent
+from labrecords.local import APP, OWNER, Postgres, Valkey, cluster_dir
+from labrecords.local import programs as local
 
-HERE = Path(__file__).resolve().parent.parent
-DATA = Path(os.environ.get("DATA_DIR", str(HERE / ".lab")))
-FIRST_PORT = int(os.environ.get("PORT", "8000"))
+DATA = Path(os.environ.get("DATA_DIR") or local.CHECKOUT / ".lab").resolve()
 STARTED = time.monotonic()
+Stopping = Callable[[], bool]
 
 
 def say(sentence: str) -> None:
@@ -38,19 +34,20 @@ def say(sentence: str) -> None:
 
 def main() -> int:
     """Start everything in order, wait for a signal or a failure, stop everything in order."""
-    stop: dict[str, int] = {}
+    received: list[int] = []
     for number in (signal.SIGINT, signal.SIGTERM, signal.SIGHUP):
-        signal.signal(number, lambda received, frame: stop.setdefault("signal", received))
-    DATA.mkdir(parents=True, exist_ok=True)
-    with contextlib.ExitStack() as stack:
-        if not stack.enter_context(alone()):
-            print(f"The laboratory of this folder runs already, at {(DATA / 'address').read_text().strip()}")
-            return 1
-        try:
-            return run(stack, stop)
-        except (RuntimeError, TimeoutError, subprocess.CalledProcessError) as problem:
-            print(f"The laboratory could not start: {problem}", file=sys.stderr)
-            return 1
+        signal.signal(number, lambda which, frame: received.append(which))
+    try:
+        DATA.mkdir(parents=True, exist_ok=True)
+        with contextlib.ExitStack() as stack:
+            if not stack.enter_context(alone()):
+                return runs_already()
+            run(stack, lambda: bool(received))
+    except (RuntimeError, OSError) as problem:
+        print(f"The laboratory cannot go on: {problem}", file=sys.stderr)
+        return 1
+    say("stopped; the data is kept")
+    return 0
 
 
 @contextlib.contextmanager
@@ -65,149 +62,146 @@ def alone() -> Iterator[bool]:
         yield True
 
 
-def run(stack: contextlib.ExitStack, stop: dict[str, int]) -> int:
-    """The services, the database's content, the programs, and then waiting."""
-    say("starting PostgreSQL and Valkey")
-    postgres = Postgres(cluster_dir(DATA)).start()
-    stack.callback(postgres.stop)
-    valkey = Valkey(DATA / "valkey").start()
-    stack.callback(valkey.stop)
-    prepare(postgres, stop)
-    if stop:
-        return 0
-    port = free_port()
-    programs = start_programs(environment(postgres, APP, broker=valkey.url), port=port)
-    stack.callback(stop_programs, programs)
-    address = f"http://127.0.0.1:{port}/"
-    if not first_page(address, programs, stop):
-        return 0 if stop else failed(programs)
-    (DATA / "address").write_text(address)
-    greet(address)
-    while not stop:
-        if any(program.poll() is not None for program in programs.values()):
-            return failed(programs)
-        time.sleep(0.2)
-    say("stopping")
-    return 0
-
-
-def prepare(postgres: Postgres, stop: dict[str, int]) -> None:
-    """Roles, database, migrations, the demo on the first start, and the files the site serves."""
-    filled = DATA / "filled"
-    postgres.make_roles()
-    if not filled.exists():
-        postgres.drop_database()  # an interrupted first filling is begun again
-        (DATA / "anchors.txt").unlink(missing_ok=True)
-    postgres.make_database()
-    owner = environment(postgres, OWNER, broker="memory://")
-    say("bringing the database up to date")
-    manage("migrate", "-v0", env=owner)
-    if not filled.exists() and not stop:
-        say("filling the demo laboratory (first start only)")
-        manage("fill_demo", env=owner)
-        filled.write_text(time.strftime("%Y-%m-%dT%H:%M:%S\n"))
-    stamp, now = DATA / "static.stamp", static_state()
-    if not stamp.exists() or stamp.read_text() != now:
-        say("collecting the files the site serves")
-        manage("collectstatic", "--noinput", "-v0", env=owner)
-        stamp.write_text(now)
-
-
-def environment(postgres: Postgres, role: str, *, broker: str) -> dict[str, str]:
-    """The settings of the demo laboratory for one role."""
-    return dict(
-        os.environ, DATABASE_URL=postgres.url(role), BROKER_URL=broker, LAB_DEMO="1", DATA_DIR=str(DATA),
-        DJANGO_SETTINGS_MODULE="labrecords.settings", PYTHONUNBUFFERED="1", OMP_NUM_THREADS="1",
-        OPENBLAS_NUM_THREADS="1",
-    )  # fmt: skip
-
-
-def manage(*arguments: str, env: dict[str, str]) -> None:
-    """Run one management command to its end."""
-    command = [sys.executable, "manage.py", *arguments]
-    subprocess.run(command, cwd=HERE, env=env, check=True, preexec_fn=die_with_parent(signal.SIGTERM))
-
-
-def static_state() -> str:
-    """A digest of the names, sizes and times of what is served, so that it is collected only when it changed."""
-    files = sorted(path for path in (HERE / "static").rglob("*") if path.is_file())
-    lines = [f"{path.relative_to(HERE)} {path.stat().st_size} {path.stat().st_mtime_ns}" for path in files]
-    lines.append((HERE / "requirements.lock").read_text() if (HERE / "requirements.lock").exists() else "")
-    return hashlib.sha256("\n".join(lines).encode()).hexdigest()
-
-
-def free_port() -> int:
-    """The first free loopback port from the wanted one on."""
-    for port in range(FIRST_PORT, FIRST_PORT + 100):
-        with socket.socket() as probe:
-            probe.setsockopt(socket.SOL_SOCKET, socket.SO_REUSEADDR, 1)
-            try:
-                probe.bind(("127.0.0.1", port))
-            except OSError:
-                continue
-            return port
-    raise RuntimeError(f"No free port from {FIRST_PORT} to {FIRST_PORT + 99}. Set PORT to another.")
-
-
-def start_programs(env: dict[str, str], *, port: int) -> dict[str, subprocess.Popen[bytes]]:
-    """Site, worker and beat, each in its own process group and with its own log."""
-    python = [sys.executable, "-W", "ignore::UserWarning", "-m"]
-    commands: dict[str, list[str]] = {
-        "site": [*python, "gunicorn", "labrecords.wsgi", "-b", f"127.0.0.1:{port}", "-w", "2", "--threads", "4",
-                 "--graceful-timeout", "5", "--no-control-socket"],
-        "worker": [*python, "celery", "-A", "labrecords", "worker", "-c", "2", "-l", "INFO", "--without-gossip",
-                   "--without-mingle"],
-        "beat": [*python, "celery", "-A", "labrecords", "beat", "-l", "WARNING", "-s", str(DATA / "beat"), "--pidfile="],
-    }  # fmt: skip
-    programs: dict[str, subprocess.Popen[bytes]] = {}
-    for name, command in commands.items():
-        say(f"starting the {name}")
-        programs[name] = _program(name, command, env)
-    return programs
-
-
-def _program(name: str, command: list[str], env: dict[str, Any]) -> subprocess.Popen[bytes]:
-    with open(DATA / f"{name}.log", "ab") as log:
-        return subprocess.Popen(
-            command, cwd=HERE, env=env, stdin=subprocess.DEVNULL, stdout=log, stderr=log, process_group=0,
-            preexec_fn=die_with_parent(signal.SIGTERM),
-        )  # fmt: skip
-
-
-def first_page(address: str, programs: dict[str, subprocess.Popen[bytes]], stop: dict[str, int]) -> bool:
-    """Wait until the site answers its first page."""
-    end = time.monotonic() + 60
-    while time.monotonic() < end and not stop:
-        if any(program.poll() is not None for program in programs.values()):
-            return False
-        try:
-            with urllib.request.urlopen(f"{address}healthz", timeout=5) as answer:
-                if answer.status == 200:
-                    return True
-        except (urllib.error.URLError, OSError):
-            time.sleep(0.1)
-    return False
-
-
-def failed(programs: dict[str, subprocess.Popen[bytes]]) -> int:
-    """Say which program stopped by itself, with the end of its log."""
-    for name, program in programs.items():
-        if program.poll() is not None:
-            print(f"The {name} stopped by itself:\n{(DATA / f'{name}.log').read_text()[-2000:]}", file=sys.stderr)
+def runs_already() -> int:
+    """Say where the other start of this folder is; it is left alone."""
+    address = DATA / "address"
+    if address.exists():
+        print(f"The laboratory of this folder runs already, at {address.read_text().strip()}")
+    else:
+        print("The laboratory of this folder starts or stops in another terminal. Try again in a minute.")
     return 1
 
 
-def stop_programs(programs: dict[str, subprocess.Popen[bytes]]) -> None:
-    """Site, beat, then worker; what the worker has begun it finishes."""
-    for name in ("site", "beat", "worker"):
-        if programs[name].poll() is None:
-            programs[name].terminate()
-    for program in programs.values():
-        try:
-            program.wait(15)
-        except subprocess.TimeoutExpired:
-            os.killpg(program.pid, signal.SIGKILL)
-            program.wait()
+def run(stack: contextlib.ExitStack, stopping: Stopping) -> None:
+    """The services, the database's content, the programs, and then waiting."""
+    address = DATA / "address"
+    address.unlink(missing_ok=True)
+    first = wanted_port()
+    local.end_left_overs(DATA)
+    say("starting PostgreSQL and Valkey")
+    postgres = Postgres(cluster_dir(DATA))
+    stack.callback(postgres.stop)
+    postgres.start()
+    valkey = Valkey(DATA / "valkey")
+    stack.callback(valkey.stop)
+    valkey.start()
+    (DATA / "valkey.pid").write_text(f"{valkey.process.pid if valkey.process else ''}\n")
+    prepare(postgres, stopping)
+    if stopping():
+        return
+    port = local.free_port(first)
+    programs: dict[str, local.Program] = {}
+    stack.callback(local.stop_programs, programs)
+    stack.callback(address.unlink, missing_ok=True)
+    open_site(programs, environment(postgres, APP, broker=valkey.url), port=port, stopping=stopping)
+    while not stopping():
+        postgres.check()
+        valkey.check()
+        local.check_running(programs, data=DATA)
+        time.sleep(0.2)
+    say("stopping")
+
+
+def open_site(
+    programs: dict[str, local.Program], env: local.Environment, *, port: int, stopping: Stopping
+) -> None:
+    """Start the programs, wait for the first page, and say where it is."""
+    for name, command in local.commands(DATA, port=port).items():
+        say(f"starting the {name}")
+        programs[name] = local.start_program(name, command, data=DATA, env=env)
+
+    def still() -> bool:
+        local.check_running(programs, data=DATA)
+        return not stopping()
+
+    address = f"http://127.0.0.1:{port}/"
+    local.first_page(address, still=still)
+    if not stopping():
+        (DATA / "address").write_text(address)
+        greet(address)
+
+
+def wanted_port() -> int:
+    """The port to begin the search at."""
+    value = os.environ.get("PORT") or "8000"
+    if not value.isascii() or not value.isdigit() or not 1024 <= int(value) <= 65535:
+        raise RuntimeError(f"PORT is {value!r}; expected a number from 1024 to 65535.")
+    return int(value)
+
+
+def prepare(postgres: Postgres, stopping: Stopping) -> None:
+    """Roles, database, migrations, the demo on the first start, and the files the site serves."""
+    postgres.make_roles()
+    filled = DATA / "filled"
+    mark = filled.read_text().strip() if filled.exists() else ""
+    complete = bool(mark) and mark == postgres.marked()
+    if not complete:
+        begin_again(postgres)
+    postgres.make_database()
+    owner = environment(postgres, OWNER, broker="memory://")
+    say("bringing the database up to date")
+    local.manage("migrate", "-v0", env=owner, stopping=stopping)
+    if not complete and not stopping():
+        fill(postgres, owner, stopping)
+    if not stopping():
+        collect(owner, stopping)
+
+
+def begin_again(postgres: Postgres) -> None:
+    """An interrupted first filling leaves half a laboratory: it is removed, and filled from the beginning."""
+    if postgres.has_database():
+        say("the demo laboratory was not filled to its end: it is removed and filled again")
+        postgres.drop_database()
+    for name in ("filled", "anchors.txt", "demo-accounts.txt", "secret"):
+        (DATA / name).unlink(missing_ok=True)
+
+
+def fill(postgres: Postgres, owner: local.Environment, stopping: Stopping) -> None:
+    """Fill the demo, then mark database and folder as belonging together."""
+    say("filling the demo laboratory (first start only)")
+    local.manage("fill_demo", env=owner, stopping=stopping)
+    if stopping():
+        return
+    mark = f"filled-{secrets.token_hex(8)}"
+    postgres.mark(mark)
+    (DATA / "filled").write_text(f"{mark}\n")
+
+
+def collect(owner: local.Environment, stopping: Stopping) -> None:
+    """Collect the files the site serves when they have changed."""
+    stamp, now = DATA / "static.stamp", static_state()
+    if stamp.exists() and stamp.read_text() == now:
+        return
+    say("collecting the files the site serves")
+    local.manage("collectstatic", "--noinput", "--clear", "-v0", env=owner, stopping=stopping)
+    if not stopping():
+        stamp.write_text(now)
+
+
+def static_state() -> str:
+    """A digest of the names, sizes and times of what is served, so that it is collected only when changed."""
+    files = sorted(path for path in (local.CHECKOUT / "static").rglob("*") if path.is_file())
+    lines = [f"{path} {path.stat().st_size} {path.stat().st_mtime_ns}" for path in files]
+    lines.append((local.CHECKOUT / "requirements.lock").read_text())
+    return hashlib.sha256("\n".join(lines).encode()).hexdigest()
+
+
+def environment(postgres: Postgres, role: str, *, broker: str) -> local.Environment:
+    """The settings of the demo laboratory for one role."""
+    return dict(
+        os.environ, DATABASE_URL=postgres.url(role), BROKER_URL=broker, LAB_DEMO="1", DATA_DIR=str(DATA),
+        SECRET_KEY=secret(), DJANGO_SETTINGS_MODULE="labrecords.settings", PYTHONUNBUFFERED="1",
+        OMP_NUM_THREADS="1", OPENBLAS_NUM_THREADS="1",
+    )  # fmt: skip
+
+
+def secret() -> str:
+    """This laboratory's own secret, made once, readable by its owner only."""
+    path = DATA / "secret"
+    if not path.exists():
+        with open(os.open(path, os.O_WRONLY | os.O_CREAT | os.O_EXCL, 0o600), "w") as file:
+            file.write(secrets.token_urlsafe(48))
+    return path.read_text()
 
 
 def greet(address: str) -> None:
@@ -216,7 +210,10 @@ def greet(address: str) -> None:
     print(f"\nThe laboratory is open at {address}\n")
     if accounts.exists():
         print(accounts.read_text())
-    print(f"Logs and data are in {DATA}. Ctrl-C stops everything; the next start keeps the data.\n", flush=True)
+    print(f"Logs and data are in {DATA}.")
+    if cluster_dir(DATA).parent != DATA:
+        print(f"The database is in {cluster_dir(DATA)}, where PostgreSQL's own account can reach it.")
+    print("Ctrl-C stops everything; the next start keeps the data.\n", flush=True)
 
 
 if __name__ == "__main__":
