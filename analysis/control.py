@@ -1,20 +1,22 @@
-"""Control charts of individual values: limits from a baseline.
+"""Control charts of individual values and of subgroups: limits from a baseline, listed exclusions left out.
 
 References
 ----------
-ISO 7870-2:2013, clause 6 (individuals and moving range); Montgomery, Introduction to Statistical Quality Control.
+ISO 7870-2:2013, clauses 5 and 6; Montgomery, Introduction to Statistical Quality Control, chapter 6; Burr, J. Qual.
+Technol. 1 (1969) 163-167 (weights for subgroups of unequal size).
 """
 
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
-from functools import lru_cache
 from itertools import pairwise
-from statistics import fmean
+from statistics import fmean, stdev
 
-from scipy import integrate, stats
+from analysis.control_constants import c4, d2, d3
+
+__all__ = ["IndividualsLimits", "SubgroupLimits", "d2", "d3", "individuals_limits", "subgroup_limits"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -24,7 +26,7 @@ class IndividualsLimits:
     Attributes
     ----------
     values : tuple of float
-        The baseline.
+        The baseline, excluded points included.
     centre, sigma : float
         Mean, and standard deviation from the mean moving range over d2(2).
     mean_moving_range : float
@@ -32,6 +34,8 @@ class IndividualsLimits:
         centre - 3 sigma and centre + 3 sigma.
     moving_range_upper : float
         Upper limit of the moving range, D4 times its mean.
+    excluded : dict of int to str
+        Places of the points left out, each with its reason.
     """
 
     values: tuple[float, ...]
@@ -41,45 +45,172 @@ class IndividualsLimits:
     lower: float
     upper: float
     moving_range_upper: float
+    excluded: dict[int, str]
 
 
-def individuals_limits(values: Sequence[float]) -> IndividualsLimits:
+@dataclass(frozen=True, slots=True)
+class SubgroupLimits:
+    """Limits of an X-bar chart with its chart of ranges or standard deviations, one pair of limits per subgroup.
+
+    Attributes
+    ----------
+    spread : str
+        range or sd.
+    sizes : tuple of int
+    means, spreads : tuple of float
+        What is plotted, one number per subgroup.
+    centre, sigma : float
+        Mean of all baseline values; standard deviation within subgroups.
+    mean_limits, spread_limits : tuple of (lower, upper)
+    spread_centres : tuple of float
+        Expected range or standard deviation of each subgroup.
+    excluded : dict of int to str
+    """
+
+    spread: str
+    sizes: tuple[int, ...]
+    means: tuple[float, ...]
+    spreads: tuple[float, ...]
+    centre: float
+    sigma: float
+    mean_limits: tuple[tuple[float, float], ...]
+    spread_limits: tuple[tuple[float, float], ...]
+    spread_centres: tuple[float, ...]
+    excluded: dict[int, str]
+
+
+def individuals_limits(values: Sequence[float], *, excluded: Mapping[int, str] | None = None) -> IndividualsLimits:
     """Centre line and limits of individual values from their mean moving range.
+
+    An excluded point takes no part, and neither do the two moving ranges that touch it.
+
+    Parameters
+    ----------
+    values : sequence of float
+        The baseline, in order.
+    excluded : mapping of int to str, optional
+        Places (from 0) of points left out, each with its reason.
 
     Raises
     ------
     ValueError
-        When fewer than two values are given, one is not finite, or all are the same.
+        When fewer than two neighbouring values are left, one is not finite, or all are the same.
     """
     if len(values) < 2:
         raise ValueError(f"{len(values)} values are given; at least 2 are needed for limits.")
-    for place, value in enumerate(values, start=1):
-        if not math.isfinite(value):
-            raise ValueError(f"Value {place} is {value}; a finite number is expected.")
-    ranges = [abs(after - before) for before, after in pairwise(values)]
-    mean_range = fmean(ranges)
+    _finite(values, where="Value")
+    left_out = _exclusions(excluded, count=len(values), what="value")
+    kept = [value for place, value in enumerate(values) if place not in left_out]
+    ranges = [abs(b - a) for (i, a), (j, b) in pairwise(enumerate(values)) if not {i, j} & left_out.keys()]
+    if not ranges:
+        raise ValueError("No two neighbouring values are left; at least 2 are needed for limits.")
+    return limits_from_means(tuple(values), centre=fmean(kept), mean_range=fmean(ranges), excluded=left_out)
+
+
+def limits_from_means(
+    values: tuple[float, ...], *, centre: float, mean_range: float, excluded: Mapping[int, str]
+) -> IndividualsLimits:
+    """Limits from a mean and a mean moving range, however they were gathered; ValueError when nothing varies."""
     if mean_range == 0:
         raise ValueError("All values are the same; no limits can be set from them.")
-    centre, sigma = fmean(values), mean_range / d2(2)
+    sigma = mean_range / d2(2)
     widest = mean_range * (1 + 3 * d3(2) / d2(2))
-    return IndividualsLimits(tuple(values), centre, sigma, mean_range, centre - 3 * sigma, centre + 3 * sigma, widest)
+    return IndividualsLimits(
+        values, centre, sigma, mean_range, centre - 3 * sigma, centre + 3 * sigma, widest, dict(excluded)
+    )
 
 
-@lru_cache(maxsize=32)
-def d2(n: int) -> float:
-    """Mean range of n standard normal values: the integral of 1 - (1 - Phi)^n - Phi^n."""
-    return float(integrate.quad(lambda x: 1 - stats.norm.sf(x) ** n - stats.norm.cdf(x) ** n, -8, 8, epsabs=1e-11)[0])
+def subgroup_limits(
+    subgroups: Sequence[Sequence[float]], *, spread: str, excluded: Mapping[int, str] | None = None
+) -> SubgroupLimits:
+    """Limits of an X-bar chart with ranges or standard deviations; the subgroups may differ in size.
+
+    Sigma is the weighted mean of R/d2 (or s/c4) with the weights of least variance, which for equal sizes is the mean
+    range over d2 (or the mean s over c4).
+
+    Parameters
+    ----------
+    subgroups : sequence of sequences of float
+    spread : str
+        "range" or "sd".
+    excluded : mapping of int to str, optional
+        Places (from 0) of subgroups left out of the baseline, each with its reason; they stay on the chart.
+
+    Raises
+    ------
+    ValueError
+        When a subgroup has fewer than two values, none is left, or nothing varies.
+    """
+    measure = _measure(spread)
+    for place, subgroup in enumerate(subgroups, start=1):
+        if len(subgroup) < 2:
+            raise ValueError(f"Subgroup {place} holds {len(subgroup)} values; at least 2 are needed.")
+        _finite(subgroup, where=f"Subgroup {place}, value")
+    left_out = _exclusions(excluded, count=len(subgroups), what="subgroup")
+    kept = [subgroup for place, subgroup in enumerate(subgroups) if place not in left_out]
+    if not kept:
+        raise ValueError("No subgroup is left; at least 1 is needed for limits.")
+    centre = fmean([value for subgroup in kept for value in subgroup])
+    sigma = _sigma_within(kept, measure=measure)
+    return _subgroup_chart(subgroups, spread=spread, measure=measure, centre=centre, sigma=sigma, excluded=left_out)
 
 
-@lru_cache(maxsize=32)
-def d3(n: int) -> float:
-    """Standard deviation of the range of n standard normal values, by integration of its second moment."""
+@dataclass(frozen=True, slots=True)
+class _Measure:
+    """A measure of spread with its mean and standard deviation for n standard normal values."""
 
-    def second(y: float, x: float) -> float:
-        low, high = stats.norm.cdf(x), stats.norm.cdf(y)
-        return float(1 - high**n - (1 - low) ** n + (high - low) ** n)
+    of: Callable[[Sequence[float]], float]
+    mean: Callable[[int], float]
+    sd: Callable[[int], float]
 
-    if n == 2:  # the range is |N(0, 2)|: its variance is 2 - 4/pi
-        return math.sqrt(2 - 4 / math.pi)
-    moment = 2 * integrate.dblquad(second, -7, 7, lambda x: x, lambda x: 7.0, epsabs=1e-7)[0]
-    return math.sqrt(moment - d2(n) ** 2)
+
+def _measure(spread: str) -> _Measure:
+    if spread == "range":
+        return _Measure(lambda values: max(values) - min(values), d2, d3)
+    if spread == "sd":
+        return _Measure(stdev, c4, lambda n: math.sqrt(1 - c4(n) ** 2))
+    raise ValueError(f"Spread is {spread!r}; expected range or sd.")
+
+
+def _sigma_within(subgroups: Sequence[Sequence[float]], *, measure: _Measure) -> float:
+    weights = [(measure.mean(len(each)) / measure.sd(len(each))) ** 2 for each in subgroups]
+    estimates = [measure.of(each) / measure.mean(len(each)) for each in subgroups]
+    sigma = math.fsum(w * e for w, e in zip(weights, estimates, strict=True)) / math.fsum(weights)
+    if sigma == 0:
+        raise ValueError("No subgroup has any spread; no limits can be set from them.")
+    return sigma
+
+
+def _subgroup_chart(
+    subgroups: Sequence[Sequence[float]],
+    *,
+    spread: str,
+    measure: _Measure,
+    centre: float,
+    sigma: float,
+    excluded: dict[int, str],
+) -> SubgroupLimits:
+    sizes = tuple(len(each) for each in subgroups)
+    half = [3 * sigma / math.sqrt(n) for n in sizes]
+    middles = tuple(measure.mean(n) * sigma for n in sizes)
+    widths = [3 * measure.sd(n) * sigma for n in sizes]
+    return SubgroupLimits(
+        spread, sizes, tuple(fmean(each) for each in subgroups), tuple(measure.of(each) for each in subgroups),
+        centre, sigma, tuple((centre - h, centre + h) for h in half),
+        tuple((max(0.0, m - w), m + w) for m, w in zip(middles, widths, strict=True)), middles, excluded,
+    )  # fmt: skip
+
+
+def _exclusions(excluded: Mapping[int, str] | None, *, count: int, what: str) -> dict[int, str]:
+    for place, reason in (excluded or {}).items():
+        if not 0 <= place < count:
+            raise ValueError(f"Excluded {what} is at place {place}; expected 0 to {count - 1}.")
+        if not reason.strip():
+            raise ValueError(f"The {what} at place {place} is excluded without a reason; a sentence is expected.")
+    return dict(excluded or {})
+
+
+def _finite(values: Sequence[float], *, where: str) -> None:
+    for place, value in enumerate(values, start=1):
+        if not math.isfinite(value):
+            raise ValueError(f"{where} {place} is {value}; a finite number is expected.")
