@@ -46,7 +46,7 @@ def commands(data: Path, *, port: int) -> dict[str, list[str]]:
     celery = [*PYTHON, "-m", "celery", "-A", "labrecords"]
     return {
         "site": [*PYTHON, "-m", "gunicorn", "labrecords.wsgi", "-b", f"127.0.0.1:{port}", "-w", "2",
-                 "--threads", "4", "--graceful-timeout", "5", "--no-control-socket"],
+                 "--threads", "4", "--preload", "--graceful-timeout", "5", "--no-control-socket"],
         "worker": [*celery, "worker", "-c", "2", "-l", "INFO", "--without-gossip", "--without-mingle"],
         "beat": [*celery, "beat", "-l", "WARNING", "-s", str(data / "beat"), "--pidfile="],
     }  # fmt: skip
