@@ -2,17 +2,17 @@
 
 References
 ----------
-JCGM 106:2012 (conformity assessment); ASTM E29 and the general notices of pharmacopoeias (rounding to the limit's
-places before comparison); ILAC-G8:09/2019 (guard bands).
+JCGM 106:2012 (conformity assessment); ASTM E29 and the general notices of pharmacopoeias (rounding to the
+limit's places before comparison); ILAC-G8:09/2019 (guard bands).
 """
 
 from __future__ import annotations
 
 import math
 from dataclasses import dataclass
-from decimal import ROUND_HALF_EVEN, ROUND_HALF_UP, Decimal
+from decimal import ROUND_HALF_EVEN, ROUND_HALF_UP, Decimal, InvalidOperation
 
-from scipy import stats
+from scipy import special
 
 ROUNDINGS = {"half_up": ROUND_HALF_UP, "half_even": ROUND_HALF_EVEN}
 
@@ -27,6 +27,8 @@ class Verdict:
         conforms, does_not_conform or inconclusive.
     value, rounded, lower, upper
         The unrounded value, the rounded one and the limits.
+    lower_acceptance, upper_acceptance
+        The limits a guard band further in; the limits themselves for simple acceptance.
     guard : float
         Width of the guard band [unit of the value]; 0 for simple acceptance.
     probability : float
@@ -40,6 +42,8 @@ class Verdict:
     rounded: Decimal
     lower: Decimal | None
     upper: Decimal | None
+    lower_acceptance: Decimal | None
+    upper_acceptance: Decimal | None
     guard: float
     probability: float
     sentence: str
@@ -73,7 +77,9 @@ def round_significant(value: float | Decimal, *, figures: int, rounding: str) ->
     if number == 0:
         return Decimal(0)
     if not number.is_finite() or rounding not in ROUNDINGS:
-        raise ValueError(f"Value is {value} and rounding {rounding!r}; a finite number, half_up or half_even expected.")
+        raise ValueError(
+            f"Value is {value} and rounding {rounding!r}; a finite number, half_up or half_even expected."
+        )
     return number.quantize(Decimal(1).scaleb(number.adjusted() - figures + 1), rounding=ROUNDINGS[rounding])
 
 
@@ -86,13 +92,19 @@ def probability_within(
     ----------
     JCGM 106:2012, equations 16 to 18 (a uniform prior).
     """
-    if not standard_uncertainty >= 0:
-        raise ValueError(f"Standard uncertainty is {standard_uncertainty}; a number not below 0 is expected.")
+    if not (standard_uncertainty >= 0 and math.isfinite(standard_uncertainty)):
+        raise ValueError(
+            f"Standard uncertainty is {standard_uncertainty}; a finite number not below 0 is expected."
+        )
+    if not math.isfinite(value):
+        raise ValueError(f"Value is {value}; a finite number is expected.")
     low, high = -math.inf if lower is None else lower, math.inf if upper is None else upper
     if standard_uncertainty == 0:
         return 1.0 if low <= value <= high else 0.0
-    below_high = stats.norm.cdf((high - value) / standard_uncertainty)
-    return float(below_high - stats.norm.cdf((low - value) / standard_uncertainty))
+    above, below = (high - value) / standard_uncertainty, (low - value) / standard_uncertainty
+    if below > 0:  # both tails are on the far side: subtract the small ones, so that no digit is lost
+        above, below = -below, -above
+    return float(special.ndtr(above) - special.ndtr(below))
 
 
 def verdict(
@@ -109,46 +121,79 @@ def verdict(
 ) -> Verdict:
     """Compare a result with limits by simple acceptance or with a guard band.
 
-    Simple acceptance rounds the value to the limit's places and compares. With a guard band g = factor * U the value
-    conforms only g inside the limits; between the guard band and the limit it is inconclusive; outside the limit,
-    after rounding, it does not conform.
+    Simple acceptance rounds the value to the limit's places and compares. With a guard band g = factor * U
+    the value conforms only g inside the limits; between the guard band and the limit it is inconclusive;
+    outside the limit, after rounding, it does not conform.
+
+    Parameters
+    ----------
+    value, standard_uncertainty, expanded : float
+        The result, unrounded, with u and U [unit of the result].
+    lower, upper : str or None
+        Limits as they were typed [unit of the result].
+    places : int
+        Decimals to which the result is rounded for the comparison.
+    rounding, rule : str
+        half_up or half_even; simple or guard.
+    guard_factor : str
+        r of g = r U.
 
     Raises
     ------
     ValueError
         When there is no limit, the limits are out of order, or a rule is not known.
+
+    References
+    ----------
+    JCGM 106:2012, clause 8; ILAC-G8:09/2019, clause 4.2.
     """
-    low, high = _limit(lower), _limit(upper)
-    if low is None and high is None:
-        raise ValueError("Lower and upper limit are both empty; at least one is expected.")
-    if low is not None and high is not None and low >= high:
-        raise ValueError(f"Lower limit is {low} and upper limit {high}; the lower must be below the upper.")
+    low, high = _limits(lower, upper)
     if rule not in ("simple", "guard"):
         raise ValueError(f"Rule is {rule!r}; expected simple or guard.")
     rounded = round_places(value, places=places, rounding=rounding)
-    guard = float(guard_factor) * expanded if rule == "guard" else 0.0
-    outcome = _outcome(value, rounded, low, high, guard=guard)
+    guard = _guard(expanded, guard_factor) if rule == "guard" else Decimal(0)
+    accept = (None if low is None else low + guard, None if high is None else high - guard)
+    outcome = _outcome(Decimal(repr(float(value))), rounded, (low, high), accept, guard=guard)
     probability = probability_within(
         value, standard_uncertainty=standard_uncertainty, lower=_float(low), upper=_float(high)
     )
-    return Verdict(outcome, value, rounded, low, high, guard, probability, _sentence(outcome, rounded, low, high, guard))
+    sentence = _sentence(outcome, rounded, (low, high), accept, guard=guard)
+    return Verdict(outcome, value, rounded, low, high, *accept, float(guard), probability, sentence)
 
 
-def _outcome(value: float, rounded: Decimal, low: Decimal | None, high: Decimal | None, *, guard: float) -> str:
+Pair = tuple[Decimal | None, Decimal | None]
+
+
+def _outcome(value: Decimal, rounded: Decimal, limits: Pair, accept: Pair, *, guard: Decimal) -> str:
+    low, high = limits
     if (low is not None and rounded < low) or (high is not None and rounded > high):
         return "does_not_conform"
-    near_low = low is not None and guard > 0 and value < float(low) + guard
-    near_high = high is not None and guard > 0 and value > float(high) - guard
-    return "inconclusive" if near_low or near_high else "conforms"
+    if guard == 0:
+        return "conforms"
+    is_near = (accept[0] is not None and value < accept[0]) or (accept[1] is not None and value > accept[1])
+    return "inconclusive" if is_near else "conforms"
 
 
-def _sentence(outcome: str, rounded: Decimal, low: Decimal | None, high: Decimal | None, guard: float) -> str:
+def _sentence(outcome: str, rounded: Decimal, limits: Pair, accept: Pair, *, guard: Decimal) -> str:
+    low, high = limits
     if outcome == "does_not_conform":
-        side = f"below the lower limit {low}" if low is not None and rounded < low else f"above the upper limit {high}"
+        side = (
+            f"below the lower limit {low}"
+            if low is not None and rounded < low
+            else f"above the upper limit {high}"
+        )
         return f"{rounded} after rounding is {side}."
     if outcome == "inconclusive":
-        return f"{rounded} after rounding is inside the limits but within the guard band of {guard:.2g}."
-    return f"{rounded} after rounding is within {_words(low, high)}{' and outside the guard band' if guard else ''}."
+        narrow = accept[0] is not None and accept[1] is not None and accept[0] > accept[1]
+        never = (
+            " The guard bands of both limits meet: no result can conform with this uncertainty."
+            if narrow
+            else ""
+        )
+        band = f"within the guard band of {float(guard):.2g}"
+        return f"{rounded} after rounding is inside the limits but {band}.{never}"
+    beside = " and outside the guard band" if guard else ""
+    return f"{rounded} after rounding is within {_words(low, high)}{beside}."
 
 
 def _words(low: Decimal | None, high: Decimal | None) -> str:
@@ -157,8 +202,35 @@ def _words(low: Decimal | None, high: Decimal | None) -> str:
     return f"the lower limit {low}" if high is None else f"the limits {low} to {high}"
 
 
-def _limit(text: str | None) -> Decimal | None:
-    return None if text is None else Decimal(text)
+def _guard(expanded: float, factor: str) -> Decimal:
+    if not (expanded >= 0 and math.isfinite(expanded)):
+        raise ValueError(f"Expanded uncertainty is {expanded}; a finite number not below 0 is expected.")
+    times = _limit(factor, name="Guard factor")
+    assert times is not None
+    if times < 0:
+        raise ValueError(f"Guard factor is {factor}; a number not below 0 is expected.")
+    return times * Decimal(repr(float(expanded)))
+
+
+def _limits(lower: str | None, upper: str | None) -> Pair:
+    low, high = _limit(lower, name="Lower limit"), _limit(upper, name="Upper limit")
+    if low is None and high is None:
+        raise ValueError("Lower and upper limit are both empty; at least one is expected.")
+    if low is not None and high is not None and low >= high:
+        raise ValueError(f"Lower limit is {low} and upper limit {high}; the lower must be below the upper.")
+    return low, high
+
+
+def _limit(text: str | None, *, name: str) -> Decimal | None:
+    if text is None:
+        return None
+    try:
+        number = Decimal(text)
+    except InvalidOperation as problem:
+        raise ValueError(f"{name} is {text!r}; a decimal number is expected.") from problem
+    if not number.is_finite():
+        raise ValueError(f"{name} is {text}; a finite number is expected.")
+    return number
 
 
 def _float(limit: Decimal | None) -> float | None:

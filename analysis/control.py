@@ -2,8 +2,8 @@
 
 References
 ----------
-ISO 7870-2:2013, clauses 5 and 6; Montgomery, Introduction to Statistical Quality Control, chapter 6; Burr, J. Qual.
-Technol. 1 (1969) 163-167 (weights for subgroups of unequal size).
+ISO 7870-2:2013, clauses 5 and 6; Montgomery, Introduction to Statistical Quality Control, chapter 6; Burr, J.
+Qual. Technol. 1 (1969) 163-167 (weights for subgroups of unequal size).
 """
 
 from __future__ import annotations
@@ -50,7 +50,8 @@ class IndividualsLimits:
 
 @dataclass(frozen=True, slots=True)
 class SubgroupLimits:
-    """Limits of an X-bar chart with its chart of ranges or standard deviations, one pair of limits per subgroup.
+    """Limits of an X-bar chart with its chart of ranges or standard deviations, one pair of limits per
+    subgroup.
 
     Attributes
     ----------
@@ -79,7 +80,9 @@ class SubgroupLimits:
     excluded: dict[int, str]
 
 
-def individuals_limits(values: Sequence[float], *, excluded: Mapping[int, str] | None = None) -> IndividualsLimits:
+def individuals_limits(
+    values: Sequence[float], *, excluded: Mapping[int, str] | None = None
+) -> IndividualsLimits:
     """Centre line and limits of individual values from their mean moving range.
 
     An excluded point takes no part, and neither do the two moving ranges that touch it.
@@ -110,7 +113,7 @@ def individuals_limits(values: Sequence[float], *, excluded: Mapping[int, str] |
 def limits_from_means(
     values: tuple[float, ...], *, centre: float, mean_range: float, excluded: Mapping[int, str]
 ) -> IndividualsLimits:
-    """Limits from a mean and a mean moving range, however they were gathered; ValueError when nothing varies."""
+    """Limits from a mean and a mean moving range; ValueError when nothing varies."""
     if mean_range == 0:
         raise ValueError("All values are the same; no limits can be set from them.")
     sigma = mean_range / d2(2)
@@ -125,8 +128,8 @@ def subgroup_limits(
 ) -> SubgroupLimits:
     """Limits of an X-bar chart with ranges or standard deviations; the subgroups may differ in size.
 
-    Sigma is the weighted mean of R/d2 (or s/c4) with the weights of least variance, which for equal sizes is the mean
-    range over d2 (or the mean s over c4).
+    Sigma is the weighted mean of R/d2 (or s/c4) with the weights of least variance, which for equal sizes is
+    the mean range over d2 (or the mean s over c4).
 
     Parameters
     ----------
@@ -152,7 +155,9 @@ def subgroup_limits(
         raise ValueError("No subgroup is left; at least 1 is needed for limits.")
     centre = fmean([value for subgroup in kept for value in subgroup])
     sigma = _sigma_within(kept, measure=measure)
-    return _subgroup_chart(subgroups, spread=spread, measure=measure, centre=centre, sigma=sigma, excluded=left_out)
+    return _subgroup_chart(
+        subgroups, spread=spread, measure=measure, centre=centre, sigma=sigma, excluded=left_out
+    )
 
 
 @dataclass(frozen=True, slots=True)
@@ -195,7 +200,8 @@ def _subgroup_chart(
     middles = tuple(measure.mean(n) * sigma for n in sizes)
     widths = [3 * measure.sd(n) * sigma for n in sizes]
     return SubgroupLimits(
-        spread, sizes, tuple(fmean(each) for each in subgroups), tuple(measure.of(each) for each in subgroups),
+        spread, sizes, tuple(fmean(each) for each in subgroups),
+        tuple(measure.of(each) for each in subgroups),
         centre, sigma, tuple((centre - h, centre + h) for h in half),
         tuple((max(0.0, m - w), m + w) for m, w in zip(middles, widths, strict=True)), middles, excluded,
     )  # fmt: skip
@@ -206,7 +212,9 @@ def _exclusions(excluded: Mapping[int, str] | None, *, count: int, what: str) ->
         if not 0 <= place < count:
             raise ValueError(f"Excluded {what} is at place {place}; expected 0 to {count - 1}.")
         if not reason.strip():
-            raise ValueError(f"The {what} at place {place} is excluded without a reason; a sentence is expected.")
+            raise ValueError(
+                f"The {what} at place {place} is excluded without a reason; a sentence is expected."
+            )
     return dict(excluded or {})
 
 

@@ -2,8 +2,8 @@
 
 References
 ----------
-Tippett, Biometrika 17 (1925) 364-387 (range of a normal sample); ASTM E2587; Montgomery, Introduction to Statistical
-Quality Control, appendix VI (the tables that the tests compare with).
+Tippett, Biometrika 17 (1925) 364-387 (range of a normal sample); ASTM E2587; Montgomery, Introduction to
+Statistical Quality Control, appendix VI (the tables that the tests compare with).
 """
 
 from __future__ import annotations
@@ -57,7 +57,7 @@ def chart_constants(n: int) -> ChartConstants:
 
 @lru_cache(maxsize=256)
 def c4(n: int) -> float:
-    """Mean of the sample standard deviation of n standard normal values: sqrt(2/(n-1)) G(n/2) / G((n-1)/2)."""
+    """Mean sample standard deviation of n standard normal values: sqrt(2/(n-1)) G(n/2) / G((n-1)/2)."""
     _check(n)
     return math.sqrt(2 / (n - 1)) * math.exp(math.lgamma(n / 2) - math.lgamma((n - 1) / 2))
 
@@ -93,4 +93,6 @@ def legendre(count: int) -> tuple[FloatArray, FloatArray]:
 
 def _check(n: int) -> None:
     if n < 2:
-        raise ValueError(f"Subgroups hold {n} values; at least 2 are needed for a range or a standard deviation.")
+        raise ValueError(
+            f"Subgroups hold {n} values; at least 2 are needed for a range or a standard deviation."
+        )

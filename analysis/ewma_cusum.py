@@ -2,8 +2,8 @@
 
 References
 ----------
-Roberts, Technometrics 1 (1959) 239-250; Page, Biometrika 41 (1954) 100-115; Lucas, Crosier, Technometrics 24 (1982)
-199-205 (head start); Montgomery, Introduction to Statistical Quality Control, chapter 9.
+Roberts, Technometrics 1 (1959) 239-250; Page, Biometrika 41 (1954) 100-115; Lucas, Crosier, Technometrics 24
+(1982) 199-205 (head start); Montgomery, Introduction to Statistical Quality Control, chapter 9.
 """
 
 from __future__ import annotations
@@ -104,11 +104,13 @@ def ewma(
     grown = np.ones(x.size) if is_steady else 1 - (1 - weight) ** (2 * age)
     half = width * sigma * np.sqrt(weight / (2 - weight) * grown)
     out = np.flatnonzero(np.abs(z - target) > half)
-    return Ewma(z, target - half, target + half, target, sigma, weight, width, tuple(int(place) for place in out))
+    return Ewma(
+        z, target - half, target + half, target, sigma, weight, width, tuple(int(place) for place in out)
+    )
 
 
 def ewma_from(x: FloatArray, *, previous: float, weight: float) -> FloatArray:
-    """The averages after each of some points, going on from a previous average: one step or a whole series."""
+    """The averages after each of some points, going on from a previous average."""
     if not x.size:
         return x.copy()
     z, _ = signal.lfilter([weight], [1.0, weight - 1.0], x, zi=[(1.0 - weight) * previous])
@@ -153,7 +155,7 @@ def cusum(
 
 
 def one_sided(steps: FloatArray, *, total: float, least: float) -> tuple[FloatArray, tuple[float, float]]:
-    """One side of a CUSUM from its running total and the least of it so far, with both as they are afterwards."""
+    """One side of a CUSUM from its running total and the least of it, with both as they are afterwards."""
     if not steps.size:
         return steps.copy(), (total, least)
     sums = np.add.accumulate(np.concatenate([[total], steps]))[1:]

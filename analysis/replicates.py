@@ -5,9 +5,12 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 from statistics import fmean, stdev
 
-EDGE = 1e-9  # titres are differences of decimals: 10.05 - 9.95 is a little more than 0.10 in binary
+EDGE = (
+    1e-12  # relative: titres are differences of decimals, 10.05 - 9.95 is a little more than 0.10 in binary
+)
 
 
 @dataclass(frozen=True, slots=True)
@@ -49,8 +52,8 @@ class Spread:
 def concordant_set(values: Sequence[float], *, limit: float) -> ConcordantSet:
     """The largest set of values whose range is within the limit (common practice of titrimetry).
 
-    Of sets of the same size the one with the smallest range counts; of those with the same range the one whose
-    values were obtained first.
+    Of sets of the same size the one with the smallest range counts; of those with the same range the one
+    whose values were obtained first.
 
     Parameters
     ----------
@@ -71,10 +74,11 @@ def concordant_set(values: Sequence[float], *, limit: float) -> ConcordantSet:
     windows = _windows(order, values, limit=limit)
     largest = max(len(window) for window in windows)
     best = [window for window in windows if len(window) == largest]
-    chosen = min(best, key=lambda window: (round(_range(window, values), 9), sorted(window)))
+    chosen = min(best, key=lambda window: (round(_range(window, values) / limit, 9), sorted(window)))
     sentence = ""
     if len(best) > 1 and largest > 1:
-        sentence = f"{len(best)} sets of {largest} titres agree; the one with the smallest range counts, then the earliest."
+        how = "the one with the smallest range counts, then the earliest"
+        sentence = f"{len(best)} sets of {largest} titres agree; {how}."
     return ConcordantSet(tuple(values), limit, tuple(sorted(chosen)), _range(chosen, values), sentence)
 
 
@@ -86,11 +90,35 @@ def spread(values: Sequence[float]) -> Spread:
     return Spread(n=len(values), mean=mean, sd=sd, rsd_percent=rsd, range=max(values) - min(values))
 
 
+def lag_1_autocorrelation(values: Sequence[float]) -> float:
+    """Correlation of neighbouring values about the common mean: drift within a series shows in it.
+
+    Raises
+    ------
+    ValueError
+        When fewer than three values are given, or all are the same.
+
+    References
+    ----------
+    NIST/SEMATECH e-Handbook of Statistical Methods 1.3.5.12.
+    """
+    _check(values)
+    mean = fmean(values)
+    away = [value - mean for value in values]
+    whole = math.fsum(a * a for a in away)
+    if len(values) < 3 or max(values) == min(values):
+        raise ValueError(
+            f"{len(values)} values are given; at least 3 that are not all the same are expected."
+        )
+    return math.fsum(a * b for a, b in pairwise(away)) / whole
+
+
 def _windows(order: Sequence[int], values: Sequence[float], *, limit: float) -> list[tuple[int, ...]]:
     found, last = [], 0
+    widest = limit + EDGE * max(abs(value) for value in values)
     for first in range(len(order)):
         last = max(last, first)
-        while last + 1 < len(order) and values[order[last + 1]] - values[order[first]] <= limit + EDGE:
+        while last + 1 < len(order) and values[order[last + 1]] - values[order[first]] <= widest:
             last += 1
         found.append(tuple(order[first : last + 1]))
     return found

@@ -1,7 +1,7 @@
 """Average run length of a chart of single points under several run rules at once, by a Markov chain.
 
-Only rules that look at zones (how far, on which side) can be solved so; rising, falling and alternating points cannot
-and are refused.
+Only rules that look at zones (how far, on which side) can be solved so; rising, falling and alternating
+points cannot and are refused.
 
 References
 ----------
@@ -13,6 +13,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from scipy import special
@@ -24,17 +25,12 @@ LARGEST = 200_000  # states; more are a set of rules that nobody would read
 
 @dataclass(frozen=True, slots=True)
 class ZoneRule:
-    """At least ``count`` of ``within`` points in a row between two heights, in sigma; its mirror image is a second one."""
+    """At least ``count`` of ``within`` points in a row between two heights, in sigma."""
 
     count: int
     within: int
     low: float
     high: float
-
-    @property
-    def mirrored(self) -> ZoneRule:
-        """The same rule below the centre line."""
-        return ZoneRule(self.count, self.within, -self.high, -self.low)
 
 
 FAR = math.inf
@@ -68,7 +64,9 @@ def rules_run_length(rules: Sequence[str], *, shift: float = 0.0) -> float:
         When no rule is named, one cannot be solved so, or the shift is not finite.
     """
     if not rules or not math.isfinite(shift):
-        raise ValueError(f"Rules are {list(rules)} and shift {shift}; at least one rule and a finite shift are expected.")
+        raise ValueError(
+            f"Rules are {list(rules)} and shift {shift}; at least one rule and a finite shift are expected."
+        )
     unknown = [name for name in rules if name not in ZONE_RULES]
     if unknown:
         raise ValueError(f"Rule is {unknown[0]!r}; the run length can be solved for {'; '.join(ZONE_RULES)}.")
@@ -83,7 +81,10 @@ def _zone_probabilities(shift: float) -> np.ndarray:
 
 def _reachable(parts: Sequence[ZoneRule]) -> list[list[int]]:
     """For each state, from the first on, the state after a point in each zone; -1 for a signal."""
-    inside = [[part.low <= low and high <= part.high for low, high in zip(CUTS, CUTS[1:], strict=False)] for part in parts]
+    inside = [
+        [part.low <= low and high <= part.high for low, high in pairwise(CUTS)]
+        for part in parts
+    ]
     start: State = (0,) * len(parts)
     number, order, steps = {start: 0}, [start], []
     for state in order:  # grows while it is read
@@ -120,7 +121,9 @@ def _useful(bits: int, part: ZoneRule) -> int:
 
 
 def _solved(steps: Sequence[Sequence[int]], probabilities: np.ndarray) -> float:
-    rows, columns, entries = [], [], []
+    rows: list[int] = []
+    columns: list[int] = []
+    entries: list[float] = []
     for place, row in enumerate(steps):
         for zone, after in enumerate(row):
             if after >= 0:
@@ -128,5 +131,5 @@ def _solved(steps: Sequence[Sequence[int]], probabilities: np.ndarray) -> float:
                 columns.append(after)
                 entries.append(probabilities[zone])
     size = len(steps)
-    chain = coo_matrix((entries, (rows, columns)), shape=(size, size)).tocsc()
+    chain = coo_matrix((np.array(entries), (np.array(rows), np.array(columns))), shape=(size, size)).tocsc()
     return float(spsolve((eye(size, format="csc") - chain).tocsc(), np.ones(size))[0])

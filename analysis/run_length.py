@@ -1,11 +1,12 @@
 """Average run lengths of control charts, solved and not simulated.
 
-Shifts are in standard deviations of single points; the run length counts points up to and including the signal.
+Shifts are in standard deviations of single points; the run length counts points up to and including the
+signal.
 
 References
 ----------
-Crowder, Technometrics 29 (1987) 401-407 (EWMA); Page, Biometrika 41 (1954) 100-115, Goel, Wu, Technometrics 13 (1971)
-221-230 (CUSUM); Siegmund, Sequential Analysis (1985).
+Crowder, Technometrics 29 (1987) 401-407 (EWMA); Page, Biometrika 41 (1954) 100-115, Goel, Wu, Technometrics
+13 (1971) 221-230 (CUSUM); Siegmund, Sequential Analysis (1985).
 """
 
 from __future__ import annotations
@@ -35,8 +36,8 @@ def shewhart_run_length(*, shift: float = 0.0, width: float = 3.0) -> float:
 def ewma_run_length(*, weight: float, width: float, shift: float = 0.0) -> float:
     """Average run length of an EWMA chart with steady limits, started at its target.
 
-    Solves L(u) = 1 + (1/lambda) integral of L(y) phi((y - (1 - lambda) u) / lambda - shift) dy between the limits by
-    Gauss-Legendre quadrature.
+    Solves L(u) = 1 + (1/lambda) integral of L(y) phi((y - (1 - lambda) u) / lambda - shift) dy between the
+    limits by Gauss-Legendre quadrature.
 
     Parameters
     ----------
@@ -60,11 +61,13 @@ def ewma_run_length(*, weight: float, width: float, shift: float = 0.0) -> float
     return float(1 + (edge * weights * _density(y / weight - shift) / weight) @ lengths)
 
 
-def cusum_run_length(*, reference: float, interval: float, shift: float = 0.0, sides: int = 2, head_start: float = 0.0) -> float:
+def cusum_run_length(
+    *, reference: float, interval: float, shift: float = 0.0, sides: int = 2, head_start: float = 0.0
+) -> float:
     """Average run length of a tabular CUSUM with reference value k and decision interval h.
 
-    One side solves L(u) = 1 + L(0) Phi(k - u - shift) + integral of L(y) phi(y + k - u - shift) dy over 0 to h; two
-    sides combine as 1/L = 1/L+ + 1/L-, with the terms of a head start.
+    One side solves L(u) = 1 + L(0) Phi(k - u - shift) + integral of L(y) phi(y + k - u - shift) dy over 0 to
+    h; two sides combine as 1/L = 1/L+ + 1/L-, with the terms of a head start.
 
     Parameters
     ----------
@@ -95,7 +98,8 @@ def siegmund_run_length(*, reference: float, interval: float, shift: float = 0.0
 
     References
     ----------
-    Siegmund, Sequential Analysis (1985); Montgomery, Introduction to Statistical Quality Control, equation 9.6.
+    Siegmund, Sequential Analysis (1985); Montgomery, Introduction to Statistical Quality Control, equation
+    9.6.
     """
     _check_shift(shift)
     check_cusum(reference, interval=interval)
@@ -106,11 +110,13 @@ def siegmund_run_length(*, reference: float, interval: float, shift: float = 0.0
 def ewma_width_for(run_length: float, *, weight: float) -> float:
     """The width L of an EWMA chart whose average run length without a shift is the one wanted."""
     _check_wanted(run_length)
-    return float(optimize.brentq(lambda width: ewma_run_length(weight=weight, width=width) - run_length, 0.05, 5.0))
+    return float(
+        optimize.brentq(lambda width: ewma_run_length(weight=weight, width=width) - run_length, 0.05, 5.0)
+    )
 
 
 def cusum_interval_for(run_length: float, *, reference: float) -> float:
-    """The decision interval h of a two-sided CUSUM whose average run length without a shift is the one wanted."""
+    """The decision interval h of a two-sided CUSUM for a wanted average run length without a shift."""
     _check_wanted(run_length)
 
     def difference(interval: float) -> float:
@@ -129,7 +135,9 @@ def _one_sided(reference: float, *, interval: float, shift: float, start: float)
     matrix[:, 0] = special.ndtr(reference - states - shift)
     matrix[:, 1:] = w * _density(y + reference - states[:, None] - shift)
     lengths = np.linalg.solve(np.eye(states.size) - matrix, np.ones(states.size))
-    row = np.concatenate([[special.ndtr(reference - start - shift)], w * _density(y + reference - start - shift)])
+    row = np.concatenate(
+        [[special.ndtr(reference - start - shift)], w * _density(y + reference - start - shift)]
+    )
     return float(lengths[0]), float(1 + row @ lengths)
 
 

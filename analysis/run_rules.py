@@ -1,12 +1,12 @@
 """Run rules of control charts, each named by what it says, each switchable.
 
-A point exactly on the centre line lies on neither side, and a point that repeats the one before neither rises nor
-falls. A rule of the kind "two of three" is broken at a point that is itself one of the two.
+A point exactly on the centre line lies on neither side, and a point that repeats the one before neither rises
+nor falls. A rule of the kind "two of three" is broken at a point that is itself one of the two.
 
 References
 ----------
-ISO 7870-2:2013, annex B; Western Electric, Statistical Quality Control Handbook (1956); Nelson, J. Qual. Technol. 16
-(1984) 237-239.
+ISO 7870-2:2013, annex B; Western Electric, Statistical Quality Control Handbook (1956); Nelson, J. Qual.
+Technol. 16 (1984) 237-239.
 """
 
 from __future__ import annotations
@@ -24,7 +24,7 @@ REACH = 15  # points that the longest rule looks at
 
 
 def in_a_row(flags: BoolArray, *, count: int) -> BoolArray:
-    """True where at least ``count`` flagged points in a row end; windows are doubled, so that few passes are made."""
+    """True where at least ``count`` flagged points in a row end; windows are doubled to save passes."""
     run, length = flags.copy(), 1
     while length < count:
         step = min(length, count - length)
@@ -92,7 +92,7 @@ RULES: dict[str, Rule] = {
     "fifteen points within one sigma": partial(hugging, count=15),
     "eight points beyond one sigma": partial(avoiding, count=8),
 }
-# The same ideas with the counts of other handbooks: a laboratory chooses between them, it does not add them up.
+# The same ideas with the counts of other handbooks: a laboratory chooses between them.
 OTHER_RULES: dict[str, Rule] = {
     "one point beyond two sigma": partial(beyond, sigmas=2.0),
     "seven points in a row on one side": partial(on_one_side, count=7),
@@ -154,7 +154,9 @@ def _standardized(values: Sequence[float] | FloatArray, *, centre: float, sigma:
     given = np.asarray(values, dtype=float)
     wrong = np.flatnonzero(~np.isfinite(given))
     if wrong.size:
-        raise ValueError(f"Value {wrong[0] + 1} of the chart is {given[wrong[0]]}; a finite number is expected.")
+        raise ValueError(
+            f"Value {wrong[0] + 1} of the chart is {given[wrong[0]]}; a finite number is expected."
+        )
     return np.asarray((given - centre) / sigma)
 
 

@@ -1,7 +1,8 @@
-"""Charts brought up to date point by point: every number is identical, bit for bit, to that of the whole series.
+"""Charts brought up to date point by point: every number is identical, bit for bit, to that of the whole
+series.
 
-Sums are kept exactly (as fractions) and rounded once, as the batch functions do; the averages and sums with memory go
-on from their last state by the same operations.
+Sums are kept exactly (as fractions) and rounded once, as the batch functions do; the averages and sums with
+memory go on from their last state by the same operations.
 """
 
 from __future__ import annotations
@@ -32,7 +33,11 @@ class RunningBaseline:
         checked_series([value], sigma=1.0, target=0.0)
         moved = Fraction(0) if self.last is None else Fraction(abs(value - self.last))
         return RunningBaseline(
-            self.count + 1, self.total + Fraction(value), self.range_total + moved, value, (*self.values, value)
+            self.count + 1,
+            self.total + Fraction(value),
+            self.range_total + moved,
+            value,
+            (*self.values, value),
         )
 
     def limits(self) -> IndividualsLimits:
@@ -77,7 +82,9 @@ class RunningChart:
         average = ewma_from(x, previous=before, weight=self.weight)[-1]
         start = (self.head_start, 0.0)
         upper, up = one_sided(z - self.reference, total=(self.up or start)[0], least=(self.up or start)[1])
-        lower, down = one_sided(-z - self.reference, total=(self.down or start)[0], least=(self.down or start)[1])
+        lower, down = one_sided(
+            -z - self.reference, total=(self.down or start)[0], least=(self.down or start)[1]
+        )
         tail = (*self.tail, value)[-REACH:]
         broken = signals_at_last(tail, centre=self.centre, sigma=self.sigma, rules=self.rules)
         return replace(
