@@ -90,7 +90,7 @@ def evaluate_curve(curve: Curve, *, settings: CurveSettings) -> CurveEvaluation:
     agreement = _agreement(decided, checked)
     flags += _flags_of_endpoints(curve, settings, near, decided, checked, agreement, fit, problems)
     needs = (agreement is not None and agreement > settings.agreement_limit) or _is_doubtful(settings, near, fit, checked)
-    model = (fit.model_volume, curve.reading) if fit else None
+    model = (curve.volume, fit.fitted) if fit else None
     return CurveEvaluation(
         curve, settings, found, decided, checked, agreement, needs, tuple(flags), first_derivative(curve), model,
         fit.residuals if fit else None,

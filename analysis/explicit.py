@@ -1,12 +1,10 @@
-"""Explicit models: the volume of titrant at which a reading is reached.
+"""Balances of precipitation, redox and complexometric titrations, in the same form as the acid-base one.
 
-For acid-base systems the charge balance is solved for the volume at a given pH; for silver halides the mass balance
-at a given potential. Both are one formula, so a fit needs no root finding.
+Each is explicit in the volume: V = V(x), so that a curve of the model needs no root finding, and a fit none either.
 
 References
 ----------
-de Levie, J. Chem. Educ. 70 (1993) 209-217 (the progress of a titration as an explicit function of pH);
-Davies, Ion Association (1962): log g = -A z^2 (sqrt(I)/(1+sqrt(I)) - 0.3 I).
+de Levie, Aqueous Acid-Base Equilibria and Titrations (Oxford 1999) and J. Chem. Educ. 70 (1993) 209-217.
 """
 
 from __future__ import annotations
@@ -14,109 +12,137 @@ from __future__ import annotations
 import numpy as np
 import numpy.typing as npt
 
-from analysis.system import Analyte, System
+from analysis.activity import LN_10, nernst
+from analysis.balance import Balance, Parameter, PriorOf
+from analysis.system import System
 
 FloatArray = npt.NDArray[np.float64]
-PKW = 13.995  # 25 degC, Harned and Owen
-CARBONIC = Analyte(name="carbonate", pKa=(6.352, 10.329), charge=0)
-DAVIES_A = 0.509
-NERNST = 59.16  # mV at 25 degC
+NERNST = nernst(25.0)  # mV
 
 
-def log_gamma(ionic_strength: FloatArray, charge: float = 1.0) -> FloatArray:
-    """log10 of the activity coefficient of an ion of a charge, after Davies (good to about 0.5 mol/L)."""
-    root = np.sqrt(ionic_strength)
-    return np.asarray(-DAVIES_A * charge**2 * (root / (1 + root) - 0.3 * ionic_strength))
+class Precipitation:
+    """Silver halides; x is pAg for a silver titrant and pX for a halide titrant.
 
-
-def mean_charge(pH: FloatArray, analyte: Analyte, *, log_gamma_1: FloatArray | float = 0.0, shift: float = 0.0) -> FloatArray:
-    """Mean charge of an analyte with its pKa corrected for activity and by ``shift``.
-
-    The step from charge z to z - 1 has the mixed constant pKa + (1 - 2 z) log g1. A strong acid, which has no pKa,
-    has lost its proton.
+    F = sum max(0, E_i - Ks_i / (a c) W) + a W / c - V, a the activity of the titrant's ion, W = V0 + V. The least
+    soluble halide is taken as present from the start, so that the first reading is defined. A halide that has not
+    begun to precipitate stands with 0: the curve has its true corners.
     """
-    if not analyte.pKa:
-        return np.full_like(pH, analyte.charge - 1.0)
-    rows = [pH - (pKa + shift + (1 - 2 * (analyte.charge - k)) * log_gamma_1) for k, pKa in enumerate(analyte.pKa)]
-    logs = np.concatenate([np.zeros((1, *pH.shape)), np.cumsum(rows, axis=0) * np.log(10)])
-    weights = np.exp(logs - logs.max(axis=0))
-    lost = (weights * np.arange(len(analyte.pKa) + 1)[:, None]).sum(axis=0) / weights.sum(axis=0)
-    return np.asarray(analyte.charge - lost)
+
+    def __init__(self, system: System, *, prior: PriorOf) -> None:
+        self.system, self.count = system, len(system.analytes)
+        sd = prior("pKs")
+        self.parameters = tuple(Parameter(f"pKs of {item.name}", "pKs", sd) for item in system.analytes) if sd is not None else ()
+        self.limits = (-1.0, 25.0)
+        self.least = max(range(self.count), key=lambda k: system.analytes[k].pKs or 0.0)
+
+    def medium(self, x: FloatArray, volume: FloatArray, theta: FloatArray) -> None:
+        """None: the formal constants of the medium are used."""
+
+    def balance(self, x: FloatArray, volume: FloatArray, theta: FloatArray, medium: None) -> Balance:
+        """F and its derivatives by x, volume and parameters."""
+        c, whole = self.system.titrant_concentration, volume + self.system.sample_volume
+        free = np.exp(-LN_10 * x) / c
+        value, by_x, by_volume = free * whole - volume, free * whole, free - 1.0
+        columns: list[FloatArray] = []
+        constants: list[FloatArray] = []
+        for k, item in enumerate(self.system.analytes):
+            pKs = float(item.pKs or 0.0) + (theta[:, self.count + k, None] if self.parameters else 0.0)
+            halide = np.exp(-LN_10 * (pKs - x)) / c
+            solid = theta[:, k, None] - halide * whole
+            there = np.ones_like(solid) if k == self.least else (solid > 0).astype(float)
+            value += there * solid
+            by_x += there * halide * whole
+            by_volume -= there * halide
+            columns.append(there)
+            constants.append(LN_10 * there * halide * whole)
+        return Balance(value, -LN_10 * by_x, by_volume, columns + (constants if self.parameters else []))
 
 
-def analyte_charge(pH: FloatArray, analyte: Analyte, system: System, *, log_gamma_1: FloatArray | float = 0.0, shift: float = 0.0) -> FloatArray:
-    """Mean charge of an analyte with its counter-ions, per mol.
+class Redox:
+    """Electron transfer; x is the potential over the Nernst slope, turned round for a reducing titrant.
 
-    An acid comes with the counter-ions of its fully protonated form; a base, titrated with acid, as the salt of its
-    fully deprotonated form; a strong base counts its cation.
+    F = V r(x) - sum E_i a_i(x): the share r of the titrant that has reacted, the share a_i of each analyte.
     """
-    if system.titrant == "acid" and not analyte.pKa:
-        return np.ones_like(pH)
-    counter = -analyte.charge if system.titrant == "base" else len(analyte.pKa) - analyte.charge
-    return mean_charge(pH, analyte, log_gamma_1=log_gamma_1, shift=shift) + counter
+
+    def __init__(self, system: System, *, prior: PriorOf) -> None:
+        self.system, self.count = system, len(system.analytes)
+        self.slope = nernst(system.temperature)
+        self.turn = 1.0 if system.titrant == "oxidant" else -1.0
+        sd = prior("potential")
+        names = [item.name for item in system.analytes] + ["the titrant"]
+        self.parameters = tuple(Parameter(f"potential of {name}", "potential", sd) for name in names) if sd is not None else ()
+        potentials = [self.turn * float(item.potential or 0.0) / self.slope for item in system.analytes]
+        self.potentials = [*potentials, self.turn * float(system.titrant_potential or 0.0) / self.slope]
+        self.limits = (min(self.potentials) - 12.0, max(self.potentials) + 12.0)
+
+    def medium(self, x: FloatArray, volume: FloatArray, theta: FloatArray) -> None:
+        """None: the formal potentials of the medium are used."""
+
+    def balance(self, x: FloatArray, volume: FloatArray, theta: FloatArray, medium: None) -> Balance:
+        """F and its derivatives by x, volume and parameters."""
+        system = self.system
+        reacted = 1.0 / (1.0 + np.exp(LN_10 * system.titrant_electrons * (x - self._potential(self.count, theta))))
+        change = LN_10 * system.titrant_electrons * volume * reacted * (1 - reacted)
+        value, by_x = volume * reacted, -change
+        columns: list[FloatArray] = []
+        constants: list[FloatArray] = []
+        for k, item in enumerate(system.analytes):
+            share = 1.0 / (1.0 + np.exp(-LN_10 * item.electrons * (x - self._potential(k, theta))))
+            moved = LN_10 * item.electrons * theta[:, k, None] * share * (1 - share)
+            value -= theta[:, k, None] * share
+            by_x -= moved
+            columns.append(-share)
+            constants.append(moved)
+        return Balance(value, by_x, reacted, columns + ([*constants, change] if self.parameters else []))
+
+    def _potential(self, k: int, theta: FloatArray) -> FloatArray | float:
+        return self.potentials[k] + (theta[:, self.count + k, None] if self.parameters else 0.0)
 
 
-def acid_base_volume(
-    pH: FloatArray, amounts: FloatArray, system: System, *, shifts: FloatArray | None = None, carbonate: float = 0.0,
-    ionic_strength: FloatArray | None = None,
-) -> FloatArray:  # fmt: skip
-    """Volume [mL] of titrant at which a pH is reached.
+class Complex:
+    """A metal ion and a ligand 1:1 with a conditional constant K; x is pM.
 
-    V = -[sum n (q + s) + V0 D] / [t c + D + c_CO2 q_CO2], with D = [H+] - [OH-].
+    F = V - (E - [M] W / c) (1 + 1 / (K [M])).
+    """
+
+    def __init__(self, system: System, *, prior: PriorOf) -> None:
+        self.system, self.count = system, 1
+        sd = prior("log_K")
+        self.parameters = (Parameter(f"log K of {system.analytes[0].name}", "log_K", sd),) if sd is not None else ()
+        self.log_K = float(system.analytes[0].log_K or 0.0)
+        self.limits = (-1.0, self.log_K + 8.0)
+
+    def medium(self, x: FloatArray, volume: FloatArray, theta: FloatArray) -> None:
+        """None: the conditional constant holds for the medium."""
+
+    def balance(self, x: FloatArray, volume: FloatArray, theta: FloatArray, medium: None) -> Balance:
+        """F and its derivatives by x, volume and parameters."""
+        c, whole = self.system.titrant_concentration, volume + self.system.sample_volume
+        metal = np.exp(-LN_10 * x)
+        log_K = self.log_K + (theta[:, 1, None] if self.parameters else 0.0)
+        ratio = np.exp(LN_10 * (x - log_K))
+        bound = theta[:, 0, None] - metal * whole / c
+        by_x = -LN_10 * (metal * whole / c * (1 + ratio) + bound * ratio)
+        columns = [-(1 + ratio), LN_10 * bound * ratio]
+        return Balance(
+            volume - bound * (1 + ratio), by_x, 1 + metal / c * (1 + ratio), columns[: 1 + len(self.parameters)]
+        )
+
+
+def conditional_constant(log_K: float, *, pH: float, pKa: tuple[float, ...], log_alpha_metal: float = 0.0) -> float:
+    """Logarithm of the conditional constant of a complex at a pH.
 
     Parameters
     ----------
-    pH : array
-        On the activity scale.
-    amounts : array
-        Amount of each analyte [mmol].
-    system : System
-    shifts : array, optional
-        Correction of the pKa values of each analyte.
-    carbonate : float
-        Carbonate in a base titrant [mol/L].
-    ionic_strength : array, optional
-        [mol/L] at each point; without it concentrations stand for activities.
+    log_K : float
+        Logarithm of the constant with the fully deprotonated ligand.
+    pH : float
+    pKa : tuple of float
+        Of the ligand, most acidic first.
+    log_alpha_metal : float
+        log10 of the whole of the metal that is not complexed over its free ion (side reactions), 0 without.
     """
-    gamma = log_gamma(ionic_strength) if ionic_strength is not None else np.zeros_like(pH)
-    excess = 10 ** (-pH - gamma) - 10 ** (pH - PKW - gamma)
-    sign = 1.0 if system.titrant == "base" else -1.0
-    charge = np.zeros_like(pH)
-    for place, analyte in enumerate(system.analytes):
-        shift = 0.0 if shifts is None else float(shifts[place])
-        charge += amounts[place] * analyte_charge(pH, analyte, system, log_gamma_1=gamma, shift=shift)
-    dissolved = carbonate * mean_charge(pH, CARBONIC, log_gamma_1=gamma) if carbonate else 0.0
-    return np.asarray(
-        -(charge + system.sample_volume * excess) / (sign * system.titrant_concentration + excess + dissolved)
-    )
-
-
-def silver_halide_volume(
-    potential: FloatArray, amount: float, system: System, *, standard: float, slope: float, pKs: float
-) -> FloatArray:
-    """Volume [mL] of silver titrant at which a silver electrode reads a potential [mV].
-
-    [Ag] = 10^((E - E0)/S); V = [n + V0 ([Ag] - Ks/[Ag])] / [c - ([Ag] - Ks/[Ag])] (mass balance of silver and halide).
-    """
-    silver = 10 ** ((potential - standard) / slope)
-    excess = silver - 10 ** (-pKs) / silver
-    return np.asarray((amount + system.sample_volume * excess) / (system.titrant_concentration - excess))
-
-
-def ionic_strength(system: System, *, volume: FloatArray, amounts: FloatArray) -> FloatArray:
-    """Ionic strength [mol/L] along a titration, from the salt that is there: titrant's ions, or the sample's own.
-
-    The titrant's ion, the strong acids and the cations of salts titrated with acid are counted, monovalent.
-    """
-    own = sum(
-        amount * (1.0 if not analyte.pKa else (len(analyte.pKa) if system.titrant == "acid" else 0.0))
-        for amount, analyte in zip(amounts, system.analytes, strict=True)
-    )
-    whole = system.sample_volume + volume
-    return np.maximum(np.maximum(system.titrant_concentration * volume, own) / whole, 1e-6)
-
-
-def equivalents(analyte: Analyte, system: System, *, step: int | None = None) -> int:
-    """Protons an analyte gives (to a base titrant) or takes (from an acid) up to an endpoint; one for a strong one."""
-    whole = len(analyte.pKa) or 1
-    return whole if step is None else min(step, whole)
+    weights = [1.0]
+    for value in sorted(pKa):
+        weights.append(weights[-1] * 10.0 ** (pH - value))
+    return float(log_K + np.log10(weights[-1] / sum(weights)) - log_alpha_metal)

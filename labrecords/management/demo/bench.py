@@ -10,7 +10,7 @@ from typing import Any
 
 import numpy as np
 
-from analysis.simulate import grid, recorded, simulate_acid_base, simulate_silver
+from analysis.simulate import grid, simulate_curve
 from analysis.system import System
 from labrecords.imports.curve import curve_fields, extract_curve
 from labrecords.imports.mapping import propose_mapping
@@ -97,8 +97,10 @@ class Bench:
         system = System.from_json(ACETIC | {"titrant_concentration": self.true[titrant], "sample_volume": 60.0})
         near = amount / self.true[titrant]
         volume = grid(end=near * 1.5, near=near, coarse=0.5, fine=0.1)
-        pH = simulate_acid_base(system, amounts=np.array([amount]), volumes=volume)
-        return volume, recorded(pH, generator=self.generator, noise=0.006, offset=self.noise(0.015), slope=0.99)
+        return volume, simulate_curve(
+            system, amounts=np.array([amount]), volumes=volume, generator=self.generator, noise=0.006,
+            offset=self.noise(0.015), slope=0.99,
+        )  # fmt: skip
 
     def effluent_curve(self, alkalinity: float, titrant: str) -> tuple[np.ndarray, np.ndarray]:
         """pH curve of 100 mL of effluent [mg/L as CaCO3]."""
@@ -106,8 +108,10 @@ class Bench:
         system = System.from_json(EFFLUENT | {"titrant_concentration": self.true[titrant], "sample_volume": 100.0})
         near = amount / self.true[titrant]
         volume = grid(end=near * 1.4 + 0.6, near=near, coarse=0.25, fine=0.05, width=0.5)
-        pH = simulate_acid_base(system, amounts=np.array([amount]), volumes=volume)
-        return volume, recorded(pH, generator=self.generator, noise=0.008, offset=self.noise(0.01))
+        return volume, simulate_curve(
+            system, amounts=np.array([amount]), volumes=volume, generator=self.generator, noise=0.008,
+            offset=self.noise(0.01),
+        )  # fmt: skip
 
     def brine_curve(self, content: float, titrant: str) -> tuple[np.ndarray, np.ndarray]:
         """Potential curve of 10 mL of brine [g/L] diluted 5 to 100 mL."""
@@ -115,8 +119,10 @@ class Bench:
         system = System.from_json(CHLORIDE | {"titrant_concentration": self.true[titrant], "sample_volume": 60.0})
         near = amount / self.true[titrant]
         volume = grid(end=near * 1.5, near=near, coarse=0.4, fine=0.1)
-        potential = simulate_silver(system, amount=amount, volumes=volume)
-        return volume, recorded(potential, generator=self.generator, noise=0.5, offset=self.noise(3), centre=300.0)
+        return volume, simulate_curve(
+            system, amounts=np.array([amount]), volumes=volume, standard=550.0, generator=self.generator, noise=0.5,
+            offset=self.noise(3),
+        )  # fmt: skip
 
 
 def curve_file(volume: np.ndarray, reading: np.ndarray, *, header: tuple[str, str], comma: bool) -> bytes:

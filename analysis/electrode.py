@@ -1,0 +1,102 @@
+"""From what an electrode shows to the x it stands in: offset, slope, drift and the lag of its response.
+
+x_obs = c + [x_lin - c - offset - drift (i/(P-1) - 1/2) + lag (x_lin,i - x_lin,i-1)] / (1 + slope)
+
+x_lin is the reading in decimal units (pH as it is; mV over the Nernst slope), c where slope turns about (pH 7, or the
+middle of a curve in mV). A lag of l means that each reading has gone 1/(1 + l) of the way from the one before.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+import numpy.typing as npt
+
+from analysis.balance import Parameter, PriorOf
+
+FloatArray = npt.NDArray[np.float64]
+GROUPS = ("offset", "slope", "lag", "drift")
+NAMES = {"offset": "electrode offset", "slope": "electrode slope", "lag": "response lag", "drift": "drift"}
+
+
+@dataclass(frozen=True, slots=True)
+class Electrode:
+    """The electrode of a set of curves: readings in decimal units, and which parameters are fitted from ``first`` on."""
+
+    linear: FloatArray
+    centre: FloatArray
+    first: int
+    parameters: tuple[Parameter, ...]
+    moments: FloatArray
+    behind: FloatArray
+
+    def take(self, rows: npt.NDArray[np.intp]) -> Electrode:
+        """The electrode of some of the curves."""
+        return Electrode(
+            self.linear[rows], self.centre[rows], self.first, self.parameters, self.moments[rows], self.behind[rows]
+        )
+
+    def read(self, theta: FloatArray) -> tuple[FloatArray, list[FloatArray]]:
+        """x at each point for these parameters, and dx/d(parameter) in the order of the parameters."""
+        at = {item.group: self.first + k for k, item in enumerate(self.parameters)}
+        away = self.linear - self.centre
+        if "offset" in at:
+            away = away - theta[:, at["offset"], None]
+        if "drift" in at:
+            away = away - theta[:, at["drift"], None] * self.moments
+        if "lag" in at:
+            away = away + theta[:, at["lag"], None] * self.behind
+        turned = np.ones((away.shape[0], 1))
+        if "slope" in at:
+            turned = 1.0 / (1.0 + theta[:, at["slope"], None])
+            away = away * turned
+        return away + self.centre, [self._column(item.group, away, turned) for item in self.parameters]
+
+    def _column(self, group: str, away: FloatArray, turned: FloatArray) -> FloatArray:
+        if group == "offset":
+            return -turned
+        if group == "slope":
+            return -away * turned
+        return self.behind * turned if group == "lag" else self.moments * -turned
+
+
+def electrode(
+    linear: FloatArray, *, points: FloatArray, prior: PriorOf, first: int, centre: FloatArray | float, free_offset: bool = False
+) -> Electrode:
+    """The electrode for readings in decimal units, curves by points.
+
+    Parameters
+    ----------
+    linear : array
+    points : array
+        Number of points of each curve; the rest of a row is padding.
+    prior : PriorOf
+    first : int
+        Column of the first parameter.
+    centre : array or float
+    free_offset : bool
+        Whether the offset has no prior: a standard potential nobody knows.
+    """
+    found = []
+    for group in GROUPS:
+        sd = prior(group)
+        if group == "offset" and free_offset:
+            found.append(Parameter("standard potential", group, np.inf))
+        elif sd is not None:
+            found.append(Parameter(NAMES[group], group, sd))
+    behind = np.zeros_like(linear)
+    behind[:, 1:] = linear[:, 1:] - linear[:, :-1]
+    moments = np.arange(linear.shape[1]) / (points[:, None] - 1.0) - 0.5
+    centres = np.broadcast_to(np.asarray(centre, dtype=float), (linear.shape[0],))[:, None]
+    return Electrode(linear, centres, first, tuple(found), moments, behind)
+
+
+def displayed(
+    x: FloatArray, *, centre: float = 7.0, offset: float = 0.0, slope: float = 0.0, drift: float = 0.0, lag: float = 0.0
+) -> FloatArray:
+    """What such an electrode shows [decimal units] for the true x, curves by points: the way back, used to simulate."""
+    shown = centre + (1 + slope) * (x - centre) + offset + drift * (np.arange(x.shape[-1]) / max(x.shape[-1] - 1, 1) - 0.5)
+    for i in range(1, x.shape[-1] if lag else 0):
+        shown[..., i] = (shown[..., i] + lag * shown[..., i - 1]) / (1 + lag)
+    return np.asarray(shown)

@@ -1,0 +1,193 @@
+"""Maximum likelihood of a balance with errors in readings and volumes, for many curves at once.
+
+Each point has its own true (x, V), kept on the balance F(x, V; theta) = 0. Linearized about the present estimate,
+the misclosure w = F + F_x (x_obs - x) + F_V (V_obs - V) has the variance Q = (F_x s_x)^2 + (F_V s_V)^2; theta moves by
+one weighted normal-equation solve, and each (x, V) is put where the observation projects onto the new balance. At a
+steep jump that is near the reading, in a buffer near the volume: no pH is ever solved for, and nothing gets stuck.
+The first steps keep (x, V) at what was observed: the fit in the volume domain, linear in the amounts.
+
+References
+----------
+Britt and Luecke, Technometrics 15 (1973) 233-247: the estimation of parameters in implicit models.
+Huber, Ann. Math. Statist. 35 (1964) 73-101: weights min(1, k s/|r|).
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+import numpy.typing as npt
+
+from analysis.balance import Chemistry
+from analysis.electrode import Electrode
+
+FloatArray = npt.NDArray[np.float64]
+HELD, PLAIN, HUBER = 2, 3, 1.5
+HUBER_SHARE = 0.8663855974622838  # P(|z| < 1.5), which is also E[z psi(z)]
+MEDIUM_UNTIL = 4
+WIDEST = 1.5  # decimal units x may be put from its reading in one step
+
+
+@dataclass(frozen=True, slots=True)
+class Observed:
+    """Curves by points: volumes [mL], the electrode, standard deviations, and 1 for a point, 0 for padding."""
+
+    volume: FloatArray
+    electrode: Electrode
+    x_sd: FloatArray
+    volume_sd: float
+    mask: FloatArray | None
+
+    def take(self, rows: npt.NDArray[np.intp]) -> Observed:
+        """Some of the curves."""
+        mask = None if self.mask is None else self.mask[rows]
+        return Observed(self.volume[rows], self.electrode.take(rows), self.x_sd[rows], self.volume_sd, mask)
+
+
+@dataclass(frozen=True, slots=True)
+class Optimum:
+    """Where the likelihood is largest: parameters, their information matrix, standardized residuals and weights."""
+
+    theta: FloatArray
+    information: FloatArray
+    z: FloatArray
+    weight: FloatArray
+    x: FloatArray
+    decrement: FloatArray
+    x_sd: FloatArray
+
+
+def maximise(
+    chemistry: Chemistry, observed: Observed, *, start: FloatArray, centre: FloatArray, precision: FloatArray,
+    tolerance: float, most: int, robust: bool, least_sd: float | None,
+) -> Optimum:  # fmt: skip
+    """Gauss-Newton until the step is below ``tolerance`` standard uncertainties in every curve, or ``most`` steps.
+
+    Parameters
+    ----------
+    start, centre : array
+        Parameters to start from, and the centres of their priors; curves by parameters.
+    precision : array
+        1/variance of the prior of each parameter; 0 without.
+    least_sd : float, optional
+        Least standard deviation of x; given where the scatter of the readings is to be told by the residuals, within
+        a factor of two of what was observed.
+    """
+    theta, volume, medium, x_sd = start, observed.volume, None, observed.x_sd
+    x = observed.electrode.read(theta)[0]
+    for step in range(most):
+        if step < MEDIUM_UNTIL:
+            medium = chemistry.medium(x, volume, theta)
+        rows, slopes, root = _rows(chemistry, observed, x, volume, theta, medium, x_sd)
+        weight = _weights(rows[:, -1], observed.mask) if robust and step >= PLAIN else None
+        information, gradient = _normal(rows, weight, theta - centre, precision)
+        change = -_solve(information, gradient)
+        decrement = np.sqrt(np.abs((gradient * change).sum(axis=1)))
+        theta = theta + change
+        np.maximum(theta[:, : chemistry.count], 1e-9, out=theta[:, : chemistry.count])
+        z = np.matmul(change[:, None, :], rows[:, :-1])[:, 0] + rows[:, -1]
+        x, volume = _projected(observed, theta, z, slopes, root, x_sd, held=step + 1 < HELD)
+        if least_sd is not None and step >= PLAIN:
+            factor = _scale(z, weight, information, precision, observed.mask)
+            x_sd = np.clip(x_sd * factor, np.maximum(0.5 * observed.x_sd, least_sd), 2.0 * observed.x_sd)
+        if step >= PLAIN and float(decrement.max()) < tolerance:
+            break
+    weight = weight if weight is not None else _ones(z, observed.mask)
+    return Optimum(theta, information, z, weight, x, decrement, x_sd)
+
+
+def _rows(
+    chemistry: Chemistry, observed: Observed, x: FloatArray, volume: FloatArray, theta: FloatArray, medium: Any,
+    x_sd: FloatArray,
+) -> tuple[FloatArray, tuple[FloatArray, FloatArray], FloatArray]:  # fmt: skip
+    """Design and misclosure over their standard deviation; (F_x, F_V); and 1/sqrt(Q)."""
+    found = chemistry.balance(x, volume, theta, medium)
+    seen, columns = observed.electrode.read(theta)
+    by_x, by_volume = found.by_x, found.by_volume
+    spread, shift = by_x * x_sd, by_volume * observed.volume_sd
+    root = 1.0 / np.sqrt(spread * spread + shift * shift)
+    if observed.mask is not None:
+        root *= observed.mask
+    w = found.value + by_x * (seen - x) + by_volume * (observed.volume - volume)
+    rows = np.empty((x.shape[0], theta.shape[1] + 1, x.shape[1]))
+    for k, column in enumerate(found.columns):
+        np.multiply(column, root, out=rows[:, k])
+    scaled = by_x * root
+    for k, column in enumerate(columns, start=len(found.columns)):
+        np.multiply(column, scaled, out=rows[:, k])
+    np.multiply(w, root, out=rows[:, -1])
+    return rows, (by_x, by_volume), root
+
+
+def _weights(z: FloatArray, mask: FloatArray | None) -> FloatArray:
+    """Huber's weights about a scale that gross errors do not move."""
+    size = np.abs(z)
+    points = z.shape[1] if mask is None else mask.sum(axis=1)
+    scale = np.minimum(size, 4.0).sum(axis=1) / (points * 0.79788)
+    limit = HUBER * np.maximum(scale, 1.0)[:, None]
+    return np.asarray(limit / np.maximum(size, limit))
+
+
+def _scale(
+    z: FloatArray, weight: FloatArray | None, information: FloatArray, precision: FloatArray, mask: FloatArray | None
+) -> FloatArray:
+    """By how much the residuals are wider than was thought."""
+    points = float(z.shape[1]) if mask is None else mask.sum(axis=1)
+    dof = degrees_of_freedom(information, precision, points)
+    squares = (z * z).sum(axis=1) if weight is None else (weight * z * z).sum(axis=1) / HUBER_SHARE
+    return np.asarray(np.sqrt(squares / dof)[:, None])
+
+
+def degrees_of_freedom(information: FloatArray, precision: FloatArray, points: FloatArray | float) -> FloatArray:
+    """Points less the parameters the curve had to tell: a parameter known by its prior counts for nothing."""
+    known = np.clip(np.einsum("bii->bi", inverse(information)) * precision, 0.0, 1.0)
+    return np.asarray(np.maximum(points - (1.0 - known).sum(axis=1), 1.0))
+
+
+def inverse(information: FloatArray) -> FloatArray:
+    """The covariance, worked out with each parameter in its own scale."""
+    scale = np.sqrt(np.einsum("bii->bi", information))
+    scale = np.where(scale > 0, scale, 1.0)
+    unit = information / (scale[:, :, None] * scale[:, None, :])
+    unit[:, np.arange(scale.shape[1]), np.arange(scale.shape[1])] += 1e-15
+    return np.asarray(np.linalg.inv(unit) / (scale[:, :, None] * scale[:, None, :]))
+
+
+def _ones(z: FloatArray, mask: FloatArray | None) -> FloatArray:
+    return np.ones_like(z) if mask is None else mask
+
+
+def _normal(
+    rows: FloatArray, weight: FloatArray | None, away: FloatArray, precision: FloatArray
+) -> tuple[FloatArray, FloatArray]:
+    weighted = rows if weight is None else rows * weight[:, None, :]
+    whole = np.matmul(weighted, rows.transpose(0, 2, 1))
+    count = precision.size
+    information = np.ascontiguousarray(whole[:, :count, :count])
+    information[:, np.arange(count), np.arange(count)] += precision
+    return information, whole[:, :count, -1] + precision * away
+
+
+def _solve(information: FloatArray, gradient: FloatArray) -> FloatArray:
+    """The step, each parameter in its own scale; a parameter the curve says nothing of stays where it is."""
+    scale = np.sqrt(np.einsum("bii->bi", information))
+    scale = np.where(scale > 0, scale, 1.0)
+    unit = information / (scale[:, :, None] * scale[:, None, :])
+    unit[:, np.arange(scale.shape[1]), np.arange(scale.shape[1])] += 1e-13
+    return np.asarray(np.linalg.solve(unit, (gradient / scale)[:, :, None])[:, :, 0] / scale)
+
+
+def _projected(
+    observed: Observed, theta: FloatArray, z: FloatArray, slopes: tuple[FloatArray, FloatArray], root: FloatArray,
+    x_sd: FloatArray, *, held: bool,
+) -> tuple[FloatArray, FloatArray]:  # fmt: skip
+    """Where each observation falls on the balance."""
+    seen, _ = observed.electrode.read(theta)
+    if held:
+        return seen, observed.volume
+    pull = z * root
+    away = slopes[0] * pull * (x_sd * x_sd)
+    np.clip(away, -WIDEST, WIDEST, out=away)
+    return seen - away, observed.volume - slopes[1] * pull * observed.volume_sd**2
