@@ -80,7 +80,12 @@ def round_significant(value: float | Decimal, *, figures: int, rounding: str) ->
         raise ValueError(
             f"Value is {value} and rounding {rounding!r}; a finite number, half_up or half_even expected."
         )
-    return number.quantize(Decimal(1).scaleb(number.adjusted() - figures + 1), rounding=ROUNDINGS[rounding])
+    rounded = number.quantize(
+        Decimal(1).scaleb(number.adjusted() - figures + 1), rounding=ROUNDINGS[rounding]
+    )
+    if rounded.adjusted() == number.adjusted():
+        return rounded
+    return rounded.quantize(Decimal(1).scaleb(rounded.adjusted() - figures + 1))  # 9.995 became 10.00: 10.0
 
 
 def probability_within(

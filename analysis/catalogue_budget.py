@@ -1,0 +1,96 @@
+"""Named calculations: uncertainty budgets of a formula, coverage factors, half-widths."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from typing import Any
+
+from analysis.calculation import Calculation, Field, Inputs, optional
+from analysis.formula import parse_model
+from analysis.uncertainty import Input, coverage_factor, propagate
+
+DIVISORS = {"rectangular": math.sqrt(3), "triangular": math.sqrt(6), "normal": 1.0, "u_shaped": math.sqrt(2)}
+
+
+def standard_uncertainty(part: Mapping[str, Any]) -> float:
+    """u of one source: given as u, or as a half-width with its distribution, times a factor and a number of
+    times.
+
+    Raises
+    ------
+    ValueError
+        When neither is given or the distribution is not known.
+    """
+    if part.get("u") is not None:
+        return float(part["u"])
+    if part.get("half_width") is None:
+        raise ValueError("A source of uncertainty has neither u nor half_width; one of them is expected.")
+    shape = part.get("distribution", "rectangular")
+    if shape not in DIVISORS:
+        raise ValueError(f"Distribution is {shape!r}; expected one of {', '.join(DIVISORS)}.")
+    width = float(part["half_width"]) * float(part.get("sensitivity", 1.0))
+    return width / DIVISORS[shape] * math.sqrt(int(part.get("times", 1)))
+
+
+def _input(name: str, data: Mapping[str, Any]) -> Input:
+    parts = data.get("parts")
+    u = math.hypot(*(standard_uncertainty(part) for part in parts)) if parts else standard_uncertainty(data)
+    freedom = data.get("degrees_of_freedom")
+    return Input(
+        name, data.get("key", name), name, float(data["value"]), u, data.get("unit", ""),
+        degrees_of_freedom=math.inf if freedom is None else float(freedom),
+    )  # fmt: skip
+
+
+def _budget(inputs: Inputs) -> dict[str, Any]:
+    sources = [_input(name, data) for name, data in inputs["inputs"].items()]
+    found = propagate(parse_model(inputs["formula"]), sources)
+    rule, level = inputs.get("coverage", "k2"), float(inputs.get("level", 0.95))
+    k = coverage_factor(found.degrees_of_freedom, rule=rule, level=level)
+    return {
+        "value": found.value, "u": found.u,
+        "relative_percent": 100 * found.u / abs(found.value) if found.value else None,
+        "degrees_of_freedom": None if math.isinf(found.degrees_of_freedom) else found.degrees_of_freedom,
+        "k": k, "U": k * found.u, "inputs_u": {source.name: source.u for source in sources},
+        "contributions": {line.label: abs(line.contribution) for line in found.budget},
+        "shares": {line.label: line.share for line in found.budget},
+    }  # fmt: skip
+
+
+def _combined(inputs: Inputs) -> float:
+    return math.hypot(*(standard_uncertainty(part) for part in inputs["parts"]))
+
+
+def _coverage(inputs: Inputs) -> list[float]:
+    freedom = inputs.get("degrees_of_freedom")
+    known = math.inf if freedom is None else float(freedom)
+    return [coverage_factor(known, rule="effective", level=level) for level in inputs["levels"]]
+
+
+BUDGETS = (
+    Calculation(
+        "uncertainty_budget", "Value and uncertainty of a formula of named inputs",
+        (
+            Field("formula", "", "such as 1000*m*P/(M*V)"),
+            Field(
+                "inputs", "",
+                "by name: value with u, or half_width and distribution (rectangular, triangular, normal, "
+                "u_shaped) with times and sensitivity, or parts (a list of these); degrees_of_freedom; key"
+            ),
+            optional("coverage", "", "k2 (when left out) or effective"),
+            optional("level", "", "0.95 when left out"),
+        ),
+        "value, u, relative_percent, degrees_of_freedom, k, U, inputs_u, contributions, shares", _budget,
+    ),
+    Calculation(
+        "combined_uncertainty", "Standard uncertainty of several independent sources",
+        (Field("parts", "one unit", "a list of u, or half_width with distribution, times and sensitivity"),),
+        "unit of the parts", _combined,
+    ),
+    Calculation(
+        "coverage_factor", "Student's factor for degrees of freedom and levels",
+        (Field("levels", "", "probabilities"), optional("degrees_of_freedom", "", "infinite when left out")),
+        "one factor per level", _coverage,
+    ),
+)  # fmt: skip
