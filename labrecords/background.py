@@ -10,6 +10,8 @@ from django.db import transaction
 from kombu.exceptions import OperationalError
 
 logger = logging.getLogger(__name__)
+# Once more at once, for a connection that went stale while the broker was restarted; no waiting beyond that.
+AGAIN = {"max_retries": 1, "interval_start": 0, "interval_step": 0, "interval_max": 0}
 
 
 def after_commit(task_name: str, **ids: Any) -> None:
@@ -20,7 +22,7 @@ def after_commit(task_name: str, **ids: Any) -> None:
 
     def send() -> None:
         try:
-            current_app.send_task(task_name, kwargs=ids, retry=False)
+            current_app.send_task(task_name, kwargs=ids, retry=True, retry_policy=AGAIN)
         except (OperationalError, OSError) as problem:
             logger.warning("%s %s was not sent, the sweeper will find it: %s", task_name, ids, problem)
 

@@ -1,4 +1,8 @@
-"""The cast: the people of the tests, recorded by the services like anybody else."""
+"""The cast: the people of the tests, recorded by the services like anybody else.
+
+Every test body runs as the application role; ``as_owner`` for what the owner may: tests/support/database.py.
+``worker`` and ``broker_down`` are a real worker and its broker: tests/support/worker.py.
+"""
 
 from __future__ import annotations
 
@@ -8,8 +12,9 @@ from labrecords.models import User
 from labrecords.services.signature import Credentials
 from labrecords.services.user import record_first_administrator, record_user
 from tests.support.database import _flush_as_superuser, as_owner, django_db_setup
+from tests.support.worker import _one_worker, broker_down, worker
 
-__all__ = ["_flush_as_superuser", "as_owner", "django_db_setup"]
+__all__ = ["_flush_as_superuser", "_one_worker", "as_owner", "broker_down", "django_db_setup", "worker"]
 
 PASSWORD = "correct horse 42"
 

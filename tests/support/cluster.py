@@ -1,43 +1,73 @@
-"""A throw-away PostgreSQL for the tests, started before the settings are read.
+"""A throw-away PostgreSQL and Valkey for the tests, started before the settings are read.
 
-A server named by DATABASE_URL is used as it is. The roles and the test database: tests/support/database.py.
+A server named by DATABASE_URL is used as it is: it must know the roles of labrecords/local/postgres.py,
+and the address must be a superuser's. The roles and the test database: tests/support/database.py.
 """
 
 from __future__ import annotations
 
+import contextlib
 import os
+import shutil
 import tempfile
 from pathlib import Path
 from typing import Any
 
 import pytest
 
-from labrecords.local import Postgres
+from labrecords.local import Postgres, Valkey
 
-_server: Postgres | None = None
+_started = contextlib.ExitStack()
+_broker: Valkey | None = None
+
+SETTINGS = {
+    "LAB_DEBUG": "1", "LAB_HASHED_STATIC": "0", "LAB_NAME": "Marram Quay Laboratory", "OMP_NUM_THREADS": "1",
+    "OPENBLAS_NUM_THREADS": "1",
+}  # fmt: skip
 
 
 @pytest.hookimpl(tryfirst=True)
 def pytest_load_initial_conftests(early_config: pytest.Config, parser: Any, args: list[str]) -> None:
-    """Start the server and name it in the environment; the workers of xdist inherit it."""
-    global _server
-    os.environ.setdefault("LAB_DEBUG", "1")
-    os.environ.setdefault("LAB_HASHED_STATIC", "0")
-    os.environ.setdefault("LAB_NAME", "Marram Quay Laboratory")
-    os.environ.setdefault("OMP_NUM_THREADS", "1")
-    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
-    if os.environ.get("DATABASE_URL"):
+    """Start both and name them in the environment; the workers of xdist inherit it."""
+    for name, value in SETTINGS.items():
+        os.environ.setdefault(name, value)
+    number = os.environ.get("PYTEST_XDIST_WORKER", "").removeprefix("gw")
+    if number:  # each has a queue of its own, or one would do the tasks of another
+        os.environ["BROKER_URL"] += f"?virtual_host={int(number) + 1}"
         return
+    os.environ["DATA_DIR"] = str(_folder())
+    if not os.environ.get("DATABASE_URL"):
+        _start_postgres()
+    _start_valkey()
+
+
+def _start_postgres() -> None:
+    server = Postgres(_folder(), throwaway=True)
+    _started.callback(server.stop)
+    server.start().make_roles()
+    os.environ["DATABASE_URL"] = server.url("postgres")
+
+
+def _start_valkey() -> None:
+    global _broker
+    _broker = Valkey(_folder())
+    _started.callback(_broker.stop)
+    os.environ["BROKER_URL"] = _broker.start().url
+
+
+def _folder() -> Path:
     folder = Path(tempfile.mkdtemp(prefix="labtest-", dir="/tmp"))
-    _server = Postgres(folder, throwaway=True).start()
-    _server.make_roles()
-    os.environ["DATABASE_URL"] = _server.url("postgres")
-    os.environ["BROKER_URL"] = "memory://"
+    _started.callback(shutil.rmtree, folder, ignore_errors=True)
+    return folder
+
+
+def broker() -> Valkey:
+    """The broker of this run, for tests that stop and start it; not from a worker of xdist."""
+    if _broker is None:
+        raise RuntimeError("The broker belongs to the main process of xdist. Run this test without -n.")
+    return _broker
 
 
 def pytest_unconfigure(config: pytest.Config) -> None:
-    """Stop the server; nothing is left behind."""
-    global _server
-    if _server is not None:
-        _server.stop()
-        _server = None
+    """Stop both; nothing is left behind."""
+    _started.close()

@@ -1,6 +1,7 @@
 """The test database and its roles.
 
-Every test body runs as the application role ``lab_app``, which owns nothing: what a test can do, the site can do.
+Every test body runs as the application role ``lab_app``, which owns nothing: what a test can do, the site
+can.
 The database is made and migrated as ``lab_owner``.
 """
 
@@ -14,6 +15,8 @@ from typing import Any
 import pytest
 
 from labrecords.local import APP, OWNER
+
+EMPTIED = ("labrecords_", "axes_", "django_session")
 
 
 @pytest.fixture(scope="session")
@@ -38,7 +41,7 @@ def django_db_setup(django_db_blocker: Any) -> Iterator[None]:
 
 @contextmanager
 def _migrated_by_owner() -> Iterator[None]:
-    """Creation needs the superuser, migration the owner: the role is taken when the new database is entered."""
+    """Creation needs the superuser, migration the owner: it is taken when the new database is entered."""
     from django.db import connection
     from django.db.backends.signals import connection_created
 
@@ -65,21 +68,29 @@ def _become(role: str | None) -> None:
 
 @pytest.fixture(scope="session", autouse=True)
 def _flush_as_superuser() -> Iterator[None]:
-    """Tests that commit are cleaned up by the superuser with the triggers off: the site itself could not."""
+    """Tests that commit are cleaned up by the superuser with the triggers off: the site itself could not.
+
+    The framework's own tables stay as the migrations left them, so nothing has to be written into them again.
+    """
+    from django.core.management.commands import flush
     from django.db.backends.postgresql.operations import DatabaseOperations
 
-    original = DatabaseOperations.execute_sql_flush
+    patch = pytest.MonkeyPatch()
+    listed, execute = DatabaseOperations.sql_flush, DatabaseOperations.execute_sql_flush
 
-    def flush(self: Any, sql_list: list[str]) -> None:
-        if not sql_list:
-            return
+    def records_only(self: Any, style: Any, tables: list[str], **options: Any) -> list[str]:
+        return listed(self, style, [table for table in tables if table.startswith(EMPTIED)], **options)
+
+    def as_superuser(self: Any, statements: list[str]) -> None:
         before = ["RESET ROLE", "SET session_replication_role = replica"]
         after = ["SET session_replication_role = DEFAULT", f"SET ROLE {APP}"]
-        original(self, [*before, *sql_list, *after])
+        execute(self, [*before, *statements, *after])
 
-    DatabaseOperations.execute_sql_flush = flush  # type: ignore[method-assign]
+    patch.setattr(DatabaseOperations, "sql_flush", records_only)
+    patch.setattr(DatabaseOperations, "execute_sql_flush", as_superuser)
+    patch.setattr(flush, "emit_post_migrate_signal", lambda *_, **__: None)
     yield
-    DatabaseOperations.execute_sql_flush = original  # type: ignore[method-assign]
+    patch.undo()
 
 
 @pytest.fixture
