@@ -53,7 +53,11 @@ class Calculation:
         missing = [field.name for field in self.fields if field.is_needed and inputs.get(field.name) is None]
         if missing:
             raise ValueError(f"{self.name}: input {missing[0]!r} is missing.")
-        return self.run(inputs)
+        try:
+            return self.run(inputs)
+        except (TypeError, KeyError, AttributeError, IndexError, ArithmeticError) as problem:
+            what = f"{type(problem).__name__} {problem}".strip()
+            raise ValueError(f"{self.name}: an input is not of the kind expected ({what}).") from problem
 
 
 def optional(name: str, unit: str, meaning: str) -> Field:

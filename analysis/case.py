@@ -6,10 +6,10 @@ A case is a JSON object with the keys
 * ``calculation``: a name of the catalogue;
 * ``inputs``: an object with the inputs of that calculation;
 * ``expected``: a number, text, truth value, list, or object of these; an object may leave out outputs;
-* ``tolerance``: the largest absolute difference: one number, or the shape of ``expected`` where numbers
-differ in it; * ``source``: where the expected value comes from;
-* ``provenance``: found (the printed source was seen), memory, mixed, common practice, or a laboratory's own
-word; * ``note`` (may be left out): anything a reader should know.
+* ``tolerance``: the largest absolute difference: one number, or the shape of ``expected``;
+* ``source``: where the expected value comes from;
+* ``provenance``: found (the printed source was seen), memory, mixed, common practice, or one's own word;
+* ``note`` (may be left out): anything a reader should know.
 """
 
 from __future__ import annotations
@@ -92,8 +92,17 @@ def check_case(case: Case) -> CheckedCase:
         found = calculate(case.calculation, case.inputs)
     except ValueError as refusal:
         return CheckedCase(case, None, (f"refused: {refusal}",))
-    misses = tuple(_misses(case.expected, found, case.tolerance, where=""))
-    return CheckedCase(case, found, misses)
+    try:
+        return CheckedCase(case, found, tuple(_misses(case.expected, found, case.tolerance, where="")))
+    except (ValueError, IndexError) as problem:
+        return CheckedCase(case, found, (f"cannot be compared: {problem}",))
+
+
+def asked_part(found: Any, expected: Any) -> Any:
+    """What was found, less the outputs that the case does not ask about."""
+    if isinstance(expected, Mapping) and isinstance(found, Mapping):
+        return {key: asked_part(found.get(key), value) for key, value in expected.items()}
+    return found
 
 
 def _misses(expected: Any, found: Any, tolerance: Any, *, where: str) -> Iterator[str]:
