@@ -2,8 +2,8 @@
 
 References
 ----------
-Davies, Ion Association (Butterworths 1962): log g = -A z^2 (sqrt(I) / (1 + sqrt(I)) - 0.3 I), to about 0.5 mol/L.
-Malmberg and Maryott, J. Res. NBS 56 (1956) 1: static permittivity of water.
+Davies, Ion Association (Butterworths 1962): log g = -A z^2 (sqrt(I) / (1 + sqrt(I)) - 0.3 I), to about 0.5
+mol/L. Malmberg and Maryott, J. Res. NBS 56 (1956) 1: static permittivity of water.
 Harned and Owen, The Physical Chemistry of Electrolytic Solutions (1958): ionization of water.
 """
 
@@ -22,7 +22,9 @@ KELVIN = 273.15
 
 
 def davies_a(temperature: float = 25.0) -> float:
-    """The Debye-Hueckel constant A [(L/mol)^1/2] at a temperature [degC]: (eps T)^-3/2 from its value at 25 degC."""
+    """The Debye-Hueckel constant A [(L/mol)^1/2] at a temperature [degC]: (eps T)^-3/2 from its value at 25
+    degC.
+    """
     at_25 = _permittivity(25.0) * (25.0 + KELVIN)
     return float(DAVIES_A * (at_25 / (_permittivity(temperature) * (temperature + KELVIN))) ** 1.5)
 

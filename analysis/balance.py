@@ -1,7 +1,8 @@
 """What every model of a titration curve is to the fit: one balance F(x, V) = 0, and how it changes.
 
-x is a decimal logarithm read by the electrode (pH, pAg, pM or electrode potential over the Nernst slope), V the
-volume of titrant. F is in mL of titrant, falls with x, is linear in V and in the equivalents of each analyte.
+x is a decimal logarithm read by the electrode (pH, pAg, pM or electrode potential over the Nernst slope), V
+the volume of titrant. F is in mL of titrant, falls with x, is linear in V and in the equivalents of each
+analyte.
 """
 
 from __future__ import annotations
@@ -25,7 +26,9 @@ NUISANCE = tuple(PRIORS)
 
 @dataclass(frozen=True, slots=True)
 class Parameter:
-    """A parameter that is not an amount: its name, the group its prior belongs to, and the prior's deviation."""
+    """A parameter that is not an amount: its name, the group its prior belongs to, and the prior's
+    deviation.
+    """
 
     name: str
     group: str
@@ -65,7 +68,12 @@ class Chemistry(Protocol):
 
 
 def solved(
-    chemistry: Chemistry, volume: FloatArray, theta: FloatArray, medium: Any, *, start: FloatArray | None = None
+    chemistry: Chemistry,
+    volume: FloatArray,
+    theta: FloatArray,
+    medium: Any,
+    *,
+    start: FloatArray | None = None,
 ) -> FloatArray:
     """The x at which the balance is kept, at each volume: damped Newton steps inside a bracket.
 
@@ -86,7 +94,12 @@ def solved(
 
 
 def solved_with_activity(
-    chemistry: Chemistry, volume: FloatArray, theta: FloatArray, *, start: FloatArray | None = None, passes: int = 12
+    chemistry: Chemistry,
+    volume: FloatArray,
+    theta: FloatArray,
+    *,
+    start: FloatArray | None = None,
+    passes: int = 12,
 ) -> FloatArray:
     """As ``solved``, the activity corrections being those of the solution found."""
     x = solved(chemistry, volume, theta, None, start=start)

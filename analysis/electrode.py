@@ -2,8 +2,9 @@
 
 x_obs = c + [x_lin - c - offset - drift (i/(P-1) - 1/2) + lag (x_lin,i - x_lin,i-1)] / (1 + slope)
 
-x_lin is the reading in decimal units (pH as it is; mV over the Nernst slope), c where slope turns about (pH 7, or the
-middle of a curve in mV). A lag of l means that each reading has gone 1/(1 + l) of the way from the one before.
+x_lin is the reading in decimal units (pH as it is; mV over the Nernst slope), c where slope turns about (pH
+7, or the middle of a curve in mV). A lag of l means that each reading has gone 1/(1 + l) of the way from the
+one before.
 """
 
 from __future__ import annotations
@@ -22,7 +23,9 @@ NAMES = {"offset": "electrode offset", "slope": "electrode slope", "lag": "respo
 
 @dataclass(frozen=True, slots=True)
 class Electrode:
-    """The electrode of a set of curves: readings in decimal units, and which parameters are fitted from ``first`` on."""
+    """The electrode of a set of curves: readings in decimal units, and which parameters are fitted from
+    ``first`` on.
+    """
 
     linear: FloatArray
     centre: FloatArray
@@ -34,7 +37,12 @@ class Electrode:
     def take(self, rows: npt.NDArray[np.intp]) -> Electrode:
         """The electrode of some of the curves."""
         return Electrode(
-            self.linear[rows], self.centre[rows], self.first, self.parameters, self.moments[rows], self.behind[rows]
+            self.linear[rows],
+            self.centre[rows],
+            self.first,
+            self.parameters,
+            self.moments[rows],
+            self.behind[rows],
         )
 
     def read(self, theta: FloatArray) -> tuple[FloatArray, list[FloatArray]]:
@@ -62,7 +70,13 @@ class Electrode:
 
 
 def electrode(
-    linear: FloatArray, *, points: FloatArray, prior: PriorOf, first: int, centre: FloatArray | float, free_offset: bool = False
+    linear: FloatArray,
+    *,
+    points: FloatArray,
+    prior: PriorOf,
+    first: int,
+    centre: FloatArray | float,
+    free_offset: bool = False,
 ) -> Electrode:
     """The electrode for readings in decimal units, curves by points.
 
@@ -93,10 +107,15 @@ def electrode(
 
 
 def displayed(
-    x: FloatArray, *, centre: float = 7.0, offset: float = 0.0, slope: float = 0.0, drift: float = 0.0, lag: float = 0.0
+    x: FloatArray, *, centre: float, offset: FloatArray, slope: FloatArray, drift: FloatArray, lag: FloatArray
 ) -> FloatArray:
-    """What such an electrode shows [decimal units] for the true x, curves by points: the way back, used to simulate."""
-    shown = centre + (1 + slope) * (x - centre) + offset + drift * (np.arange(x.shape[-1]) / max(x.shape[-1] - 1, 1) - 0.5)
-    for i in range(1, x.shape[-1] if lag else 0):
-        shown[..., i] = (shown[..., i] + lag * shown[..., i - 1]) / (1 + lag)
+    """What such an electrode shows [decimal units] for the true x, curves by points: the way back, to
+    simulate.
+
+    The parameters are columns, one value for all curves or one for each.
+    """
+    moments = np.arange(x.shape[1]) / max(x.shape[1] - 1, 1) - 0.5
+    shown = centre + (1 + slope) * (x - centre) + offset + drift * moments
+    for i in range(1, x.shape[1] if np.any(lag) else 0):
+        shown[:, i] = (shown[:, i] + lag[:, 0] * shown[:, i - 1]) / (1 + lag[:, 0])
     return np.asarray(shown)

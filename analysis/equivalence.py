@@ -20,8 +20,8 @@ APART_POTENTIAL = 120.0  # mV
 
 @dataclass(frozen=True, slots=True)
 class Step:
-    """One equivalence point: the analyte that is done with, its proton, V = sum of ``share`` times the equivalents of
-    each analyte, and whether the curve jumps there."""
+    """One equivalence point: the analyte that is done with, its proton, V = sum of ``share`` times the
+    equivalents of each analyte, and whether the curve jumps there."""
 
     analyte: str
     proton: int

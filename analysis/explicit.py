@@ -1,6 +1,7 @@
 """Balances of precipitation, redox and complexometric titrations, in the same form as the acid-base one.
 
-Each is explicit in the volume: V = V(x), so that a curve of the model needs no root finding, and a fit none either.
+Each is explicit in the volume: V = V(x), so that a curve of the model needs no root finding, and a fit none
+either.
 
 References
 ----------
@@ -23,15 +24,19 @@ NERNST = nernst(25.0)  # mV
 class Precipitation:
     """Silver halides; x is pAg for a silver titrant and pX for a halide titrant.
 
-    F = sum max(0, E_i - Ks_i / (a c) W) + a W / c - V, a the activity of the titrant's ion, W = V0 + V. The least
-    soluble halide is taken as present from the start, so that the first reading is defined. A halide that has not
-    begun to precipitate stands with 0: the curve has its true corners.
+    F = sum max(0, E_i - Ks_i / (a c) W) + a W / c - V, a the activity of the titrant's ion, W = V0 + V. The
+    least soluble halide is taken as present from the start, so that the first reading is defined. A halide
+    that has not begun to precipitate stands with 0: the curve has its true corners.
     """
 
     def __init__(self, system: System, *, prior: PriorOf) -> None:
         self.system, self.count = system, len(system.analytes)
         sd = prior("pKs")
-        self.parameters = tuple(Parameter(f"pKs of {item.name}", "pKs", sd) for item in system.analytes) if sd is not None else ()
+        self.parameters = (
+            tuple(Parameter(f"pKs of {item.name}", "pKs", sd) for item in system.analytes)
+            if sd is not None
+            else ()
+        )
         self.limits = (-1.0, 25.0)
         self.least = max(range(self.count), key=lambda k: system.analytes[k].pKs or 0.0)
 
@@ -70,7 +75,11 @@ class Redox:
         self.turn = 1.0 if system.titrant == "oxidant" else -1.0
         sd = prior("potential")
         names = [item.name for item in system.analytes] + ["the titrant"]
-        self.parameters = tuple(Parameter(f"potential of {name}", "potential", sd) for name in names) if sd is not None else ()
+        self.parameters = (
+            tuple(Parameter(f"potential of {name}", "potential", sd) for name in names)
+            if sd is not None
+            else ()
+        )
         potentials = [self.turn * float(item.potential or 0.0) / self.slope for item in system.analytes]
         self.potentials = [*potentials, self.turn * float(system.titrant_potential or 0.0) / self.slope]
         self.limits = (min(self.potentials) - 12.0, max(self.potentials) + 12.0)
@@ -81,7 +90,9 @@ class Redox:
     def balance(self, x: FloatArray, volume: FloatArray, theta: FloatArray, medium: None) -> Balance:
         """F and its derivatives by x, volume and parameters."""
         system = self.system
-        reacted = 1.0 / (1.0 + np.exp(LN_10 * system.titrant_electrons * (x - self._potential(self.count, theta))))
+        reacted = 1.0 / (
+            1.0 + np.exp(LN_10 * system.titrant_electrons * (x - self._potential(self.count, theta)))
+        )
         change = LN_10 * system.titrant_electrons * volume * reacted * (1 - reacted)
         value, by_x = volume * reacted, -change
         columns: list[FloatArray] = []
@@ -108,7 +119,9 @@ class Complex:
     def __init__(self, system: System, *, prior: PriorOf) -> None:
         self.system, self.count = system, 1
         sd = prior("log_K")
-        self.parameters = (Parameter(f"log K of {system.analytes[0].name}", "log_K", sd),) if sd is not None else ()
+        self.parameters = (
+            (Parameter(f"log K of {system.analytes[0].name}", "log_K", sd),) if sd is not None else ()
+        )
         self.log_K = float(system.analytes[0].log_K or 0.0)
         self.limits = (-1.0, self.log_K + 8.0)
 
@@ -125,11 +138,16 @@ class Complex:
         by_x = -LN_10 * (metal * whole / c * (1 + ratio) + bound * ratio)
         columns = [-(1 + ratio), LN_10 * bound * ratio]
         return Balance(
-            volume - bound * (1 + ratio), by_x, 1 + metal / c * (1 + ratio), columns[: 1 + len(self.parameters)]
+            volume - bound * (1 + ratio),
+            by_x,
+            1 + metal / c * (1 + ratio),
+            columns[: 1 + len(self.parameters)],
         )
 
 
-def conditional_constant(log_K: float, *, pH: float, pKa: tuple[float, ...], log_alpha_metal: float = 0.0) -> float:
+def conditional_constant(
+    log_K: float, *, pH: float, pKa: tuple[float, ...], log_alpha_metal: float = 0.0
+) -> float:
     """Logarithm of the conditional constant of a complex at a pH.
 
     Parameters

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -13,6 +13,7 @@ from analysis.activity import nernst
 from analysis.balance import NUISANCE, Chemistry, Parameter, PriorOf, prior_of
 from analysis.curve import Curve
 from analysis.electrode import Electrode, electrode
+from analysis.equivalence import equivalence_steps
 from analysis.explicit import Complex, Precipitation, Redox
 from analysis.fit_likelihood import Observed
 from analysis.scatter import scatter
@@ -21,7 +22,13 @@ from analysis.system import System
 FloatArray = npt.NDArray[np.float64]
 VOLUME_SD = 0.003  # mL; without it a point in a steep jump would count for more than a burette can do
 LEAST_SD = {"pH": 0.004, "mV": 0.2}  # an electrode's reading is no better
-MODELS = {"acid_base": AcidBase, "precipitation": Precipitation, "redox": Redox, "complex": Complex}
+MODELS: dict[str, Callable[..., Chemistry]] = {
+    "acid_base": AcidBase,
+    "precipitation": Precipitation,
+    "redox": Redox,
+    "complex": Complex,
+}
+BESIDE = 3  # steps about a jump in which no other is looked for
 GLASS_OFFSET = 0.5  # prior deviation of a pH electrode read in mV [pH]
 
 
@@ -41,6 +48,9 @@ class FitSettings:
         Standard deviation of a delivered volume [mL].
     robust : bool
         Whether single bad readings are given less weight (Huber).
+    centres : mapping
+        What is known of a group beforehand, 0 otherwise: {"slope": -0.015} for an electrode that calibrates
+        at 98.5 %.
     """
 
     nuisance: tuple[str, ...] = NUISANCE
@@ -48,6 +58,7 @@ class FitSettings:
     noise: float | None = None
     volume_sd: float = VOLUME_SD
     robust: bool = True
+    centres: Mapping[str, float] | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,6 +78,8 @@ class Problem:
     is_noise_known: bool
     unit: float  # reading per decimal unit; negative where the reading falls as x rises
     least_sd: float  # of a reading [decimal units]
+    stated_carbonate: float
+    is_convex: bool  # whether the first step, from any guess, leads to the right place
 
     @property
     def precision(self) -> FloatArray:
@@ -74,22 +87,29 @@ class Problem:
         return np.where(np.isfinite(self.priors), self.priors, np.inf) ** -2.0
 
 
-def prepare(curves: Sequence[Curve], *, system: System, guess: float | None, settings: FitSettings) -> Problem:
+def prepare(
+    curves: Sequence[Curve], *, system: System, guess: float | None, settings: FitSettings
+) -> Problem:
     """Check the curves against the system and lay them out."""
     _check(curves, system=system, guess=guess, settings=settings)
     volume, reading, mask, points = _rows(curves)
-    prior = prior_of(settings.nuisance, dict(settings.priors or {}))
+    prior = prior_of((*settings.nuisance, *(settings.centres or {})), dict(settings.priors or {}))
     noise = _noise(volume, reading, mask, curves[0].quantity, settings)
     unit = _unit(system, curves[0].quantity)
     chemistry: Chemistry = MODELS[system.kind](system, prior=prior)
     linear = reading / unit
-    first_guess = _guesses(volume, linear, points, guess)
-    electrode_, offset = _electrode(chemistry, system, curves[0].quantity, prior, volume, linear, points, first_guess)
+    amounts = _first_amounts(system, volume, linear, guess)
+    electrode_, offset = _electrode(
+        chemistry, system, curves[0].quantity, prior, volume, linear, points, amounts.sum(axis=1)
+    )
     observed = Observed(volume, electrode_, noise[:, None] / abs(unit), settings.volume_sd, mask)
     parameters: tuple[Parameter, ...] = (*chemistry.parameters, *electrode_.parameters)
     count = chemistry.count
     centre = np.zeros((len(curves), count + len(parameters)))
-    centre[:, :count] = first_guess[:, None] / count
+    centre[:, :count] = amounts
+    for name, value in (settings.centres or {}).items():
+        for k, item in enumerate(parameters):
+            centre[:, count + k] += value * (item.group == name)
     if offset is not None:
         centre[:, electrode_.first + [item.group for item in electrode_.parameters].index("offset")] = offset
     names = (*(f"V({item.name})" for item in system.analytes), *(item.name for item in parameters))
@@ -98,6 +118,7 @@ def prepare(curves: Sequence[Curve], *, system: System, guess: float | None, set
     return Problem(
         chemistry, observed, reading, centre.copy(), centre, priors, names, groups, points, noise,
         settings.noise is not None, unit, LEAST_SD[curves[0].quantity] / abs(unit),
+        system.carbonate, system.kind == "acid_base",
     )  # fmt: skip
 
 
@@ -122,11 +143,21 @@ def _rows(curves: Sequence[Curve]) -> tuple[FloatArray, FloatArray, FloatArray |
     """Curves as rows; shorter ones are padded with their last point, which the mask leaves out."""
     sizes = np.array([curve.volume.size for curve in curves])
     if sizes.min() == sizes.max():
-        return np.stack([c.volume for c in curves]), np.stack([c.reading for c in curves]), None, sizes.astype(float)
+        return (
+            np.stack([c.volume for c in curves]),
+            np.stack([c.reading for c in curves]),
+            None,
+            sizes.astype(float),
+        )
     take = np.minimum(np.arange(sizes.max())[None, :], sizes[:, None] - 1)
     volume = np.stack([curve.volume[at] for curve, at in zip(curves, take, strict=True)])
     reading = np.stack([curve.reading[at] for curve, at in zip(curves, take, strict=True)])
-    return volume, reading, (np.arange(sizes.max())[None, :] < sizes[:, None]).astype(float), sizes.astype(float)
+    return (
+        volume,
+        reading,
+        (np.arange(sizes.max())[None, :] < sizes[:, None]).astype(float),
+        sizes.astype(float),
+    )
 
 
 def _noise(
@@ -148,21 +179,47 @@ def _unit(system: System, quantity: str) -> float:
     return slope if rises else -slope
 
 
-def _guesses(volume: FloatArray, linear: FloatArray, points: FloatArray, guess: float | None) -> FloatArray:
-    """Where each curve is steepest [mL], its first two steps left out: a curve may begin steeply."""
+def _first_amounts(system: System, volume: FloatArray, linear: FloatArray, guess: float | None) -> FloatArray:
+    """Equivalents of each analyte to start from [mL].
+
+    One jump is looked for in an acid-base curve, whose first step finds the amounts from any start;
+    elsewhere one for each analyte, in the order in which they are done with.
+    """
+    count = len(system.analytes)
+    wanted = 1 if system.kind == "acid_base" else count
+    ends = _steepest(volume, linear, wanted)
     if guess is not None:
-        return np.full(volume.shape[0], float(guess))
+        ends = ends * (guess / ends[:, -1:])
+    if system.kind == "acid_base":
+        return np.repeat(ends / count, count, axis=1)
+    amounts = np.empty_like(ends)
+    before: set[int] = set()
+    for place, step in enumerate(equivalence_steps(system)):
+        (new,) = set(np.flatnonzero(step.share)) - before
+        amounts[:, new] = ends[:, place] - (ends[:, place - 1] if place else 0.0)
+        before.add(int(new))
+    return np.asarray(np.maximum(amounts, 1e-3))
+
+
+def _steepest(volume: FloatArray, linear: FloatArray, wanted: int) -> FloatArray:
+    """Where each curve is steepest [mL], in order; the first two steps are left out, for a curve may begin
+    steeply.
+    """
     step = np.diff(volume, axis=1)
     slope = np.abs(np.diff(linear, axis=1)) / np.where(step > 0, step, np.inf)
     slope[:, :2] = 0.0
-    at = slope.argmax(axis=1)[:, None]
-    middle = 0.5 * (np.take_along_axis(volume, at, 1) + np.take_along_axis(volume, at + 1, 1))
-    return np.asarray(np.maximum(middle[:, 0], 1e-3))
+    places = np.arange(slope.shape[1])[None, :]
+    found = []
+    for _ in range(wanted):
+        at = slope.argmax(axis=1)[:, None]
+        found.append(0.5 * (np.take_along_axis(volume, at, 1) + np.take_along_axis(volume, at + 1, 1)))
+        slope = np.where(np.abs(places - at) <= BESIDE, 0.0, slope)
+    return np.asarray(np.sort(np.maximum(np.concatenate(found, axis=1), 1e-3), axis=1))
 
 
 def _electrode(
-    chemistry: Chemistry, system: System, quantity: str, prior: PriorOf, volume: FloatArray, linear: FloatArray,
-    points: FloatArray, guess: FloatArray,
+    chemistry: Chemistry, system: System, quantity: str, prior: PriorOf, volume: FloatArray,
+    linear: FloatArray, points: FloatArray, guess: FloatArray,
 ) -> tuple[Electrode, FloatArray | None]:  # fmt: skip
     """The electrode, and where its unknown standard potential starts; None where it is known."""
     first = chemistry.count + len(chemistry.parameters)
@@ -170,9 +227,21 @@ def _electrode(
         return electrode(linear, points=points, prior=prior, first=first, centre=7.0), None
     if system.kind == "redox":
         known = prior_of(tuple(set(NUISANCE) - {"offset"}), {})
-        return electrode(linear, points=points, prior=lambda g: prior(g) and known(g), first=first, centre=linear.mean(axis=1)), None
+        return electrode(
+            linear,
+            points=points,
+            prior=lambda g: prior(g) and known(g),
+            first=first,
+            centre=linear.mean(axis=1),
+        ), None
     if system.kind == "acid_base":
-        return electrode(linear + 7.0, points=points, prior=lambda g: GLASS_OFFSET if g == "offset" else prior(g), first=first, centre=7.0), None
+        return electrode(
+            linear + 7.0,
+            points=points,
+            prior=lambda g: GLASS_OFFSET if g == "offset" else prior(g),
+            first=first,
+            centre=7.0,
+        ), None
     x, at = _anchor(system, volume, points, guess)
     offset = np.take_along_axis(linear, at[:, None], 1)[:, 0] - x
     centred = electrode(linear, points=points, prior=prior, first=first, centre=0.0, free_offset=True)
@@ -182,8 +251,12 @@ def _electrode(
 def _anchor(
     system: System, volume: FloatArray, points: FloatArray, guess: FloatArray
 ) -> tuple[FloatArray, npt.NDArray[np.intp]]:
-    """A point whose x can be told: excess titrant at the end of a precipitation, free metal at the start of a complex."""
+    """A point whose x can be told: excess titrant at the end of a precipitation, free metal at the start of
+    a complex.
+    """
     c, rows = system.titrant_concentration, np.arange(volume.shape[0])
-    at = np.zeros(volume.shape[0], dtype=np.intp) if system.kind == "complex" else (points - 1).astype(np.intp)
+    at = (
+        np.zeros(volume.shape[0], dtype=np.intp) if system.kind == "complex" else (points - 1).astype(np.intp)
+    )
     away = np.maximum(np.abs(volume[rows, at] - guess), 0.02 * guess)
     return -np.log10(c * away / (system.sample_volume + volume[rows, at])), at

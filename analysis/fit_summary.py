@@ -1,6 +1,7 @@
 """What an optimum says: equivalence volumes and parameters with uncertainty, and how good the fit is.
 
-u = sqrt(cov) sqrt(max(1, chi2_nu)) sqrt((1 + r) / (1 - r)), r the lag-1 autocorrelation of the residuals where positive.
+u = sqrt(cov) sqrt(max(1, chi2_nu)) sqrt((1 + r) / (1 - r)), r the lag-1 autocorrelation of the residuals
+where positive.
 """
 
 from __future__ import annotations
@@ -9,20 +10,24 @@ from dataclasses import dataclass
 
 import numpy as np
 import numpy.typing as npt
+from scipy import special
 
 from analysis.equivalence import Step
 from analysis.fit_likelihood import HUBER_SHARE, Optimum, degrees_of_freedom, inverse
 from analysis.fit_problem import Problem
 
 FloatArray = npt.NDArray[np.float64]
-SMALLEST = 1e-10  # share of a parameter's information that the others leave, below which nothing is known of it
+SMALLEST = (
+    1e-10  # share of a parameter's information that the others leave, below which nothing is known of it
+)
 MOST_CORRELATED = 0.9
 
 
 @dataclass(frozen=True, slots=True)
 class Summary:
-    """Arrays over curves: volumes [mL] and u by equivalence point, covariance, diagnostics of the residuals."""
+    """Arrays over curves: parameters, volumes [mL] and u by equivalence point, covariance, diagnostics."""
 
+    theta: FloatArray
     volumes: FloatArray
     volume_us: FloatArray
     covariance: FloatArray
@@ -43,12 +48,12 @@ def summarise(problem: Problem, optimum: Optimum, *, steps: tuple[Step, ...], ro
     lag = _lag_1(z * np.sqrt(optimum.weight), problem.points)
     positive = np.clip(lag, 0.0, MOST_CORRELATED)
     widened = np.maximum(1.0, chi2_nu) * (1 + positive) / (1 - positive)
-    covariance = covariance * widened[:, None, None]
+    theta, covariance = _not_negative(problem, optimum.theta.copy(), covariance * widened[:, None, None])
     share = np.array([step.share for step in steps])
     count = share.shape[1]
     variance = np.einsum("ka,bac,kc->bk", share, covariance[:, :count, :count], share)
     return Summary(
-        optimum.theta[:, :count] @ share.T, np.sqrt(np.maximum(variance, 0.0)), covariance, chi2_nu, dof, lag,
+        theta, theta[:, :count] @ share.T, np.sqrt(np.maximum(variance, 0.0)), covariance, chi2_nu, dof, lag,
         _runs_z(z, mask), 1.0 / np.maximum(own.max(axis=1), 1e-300),
     )  # fmt: skip
 
@@ -60,6 +65,28 @@ def unknown_parameter(information: FloatArray, names: tuple[str, ...]) -> str:
         return names[int(np.flatnonzero(scale == 0)[0])]
     _, vectors = np.linalg.eigh(information / np.outer(scale, scale))
     return names[int(np.abs(vectors[:, 0]).argmax())]
+
+
+def _not_negative(
+    problem: Problem, theta: FloatArray, covariance: FloatArray
+) -> tuple[FloatArray, FloatArray]:
+    """The mean and covariance given that carbonate and lag are not below nothing, one after the other.
+
+    The moments of a normal variable cut at its lowest value, passed on to the other parameters by regression.
+    """
+    for place, group in enumerate(problem.groups):
+        if group not in ("sample carbonate", "titrant carbonate", "lag"):
+            continue
+        variance = covariance[:, place, place].copy()
+        sd = np.sqrt(np.maximum(variance, 1e-300))
+        least = -problem.stated_carbonate if group == "titrant carbonate" else 0.0
+        cut = np.clip((least - theta[:, place]) / sd, -30.0, 30.0)
+        hazard = np.sqrt(2 / np.pi) / special.erfcx(cut / np.sqrt(2))
+        gain = covariance[:, :, place] / np.maximum(variance, 1e-300)[:, None]
+        theta += gain * (sd * hazard)[:, None]
+        lost = variance * hazard * (hazard - cut)
+        covariance -= gain[:, :, None] * gain[:, None, :] * lost[:, None, None]
+    return theta, covariance
 
 
 def _lag_1(z: FloatArray, points: FloatArray) -> FloatArray:

@@ -1,7 +1,7 @@
 """How many protons an acid has lost at a pH, and how that changes with pH and with each pKa.
 
-The states of a polyprotic acid are weighed as 1, K1/h, K1 K2/h^2, ... For pKa from -3 to 16, at most six steps and
-pH -2 to 16 no weight leaves the range of a double, so no logarithms are needed.
+The states of a polyprotic acid are weighed as 1, K1/h, K1 K2/h^2, ... For pKa from -3 to 16, at most six
+steps and pH -2 to 16 no weight leaves the range of a double, so no logarithms are needed.
 """
 
 from __future__ import annotations
@@ -34,7 +34,9 @@ def fractions(inverse_h: FloatArray, constants: Sequence[FloatArray]) -> list[Fl
     return [term * inverse for term in terms]
 
 
-def protons_lost(inverse_h: FloatArray, constants: Sequence[FloatArray]) -> tuple[FloatArray, list[FloatArray]]:
+def protons_lost(
+    inverse_h: FloatArray, constants: Sequence[FloatArray]
+) -> tuple[FloatArray, list[FloatArray]]:
     """Mean number of protons lost, and its covariance with having lost at least j, for each step j.
 
     The covariances sum to the variance. d(mean)/dpH = ln10 * variance; d(mean)/dpK_j = -ln10 * covariance_j.

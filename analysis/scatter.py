@@ -14,8 +14,8 @@ CUT, CUT_MEAN = 2.0, 0.9205375
 def scatter(volume: FloatArray, reading: FloatArray, *, mask: FloatArray | None = None) -> FloatArray:
     """Standard deviation of a reading of each curve [unit of the reading].
 
-    Each point is held against the cubic through its four neighbours; a robust scale of the flattest 60 % of the
-    points counts, so that neither the jump nor a bad reading does.
+    Each point is held against the cubic through its four neighbours; a robust scale of the flattest 60 % of
+    the points counts, so that neither the jump nor a bad reading does.
 
     Parameters
     ----------
@@ -43,7 +43,9 @@ def scatter(volume: FloatArray, reading: FloatArray, *, mask: FloatArray | None 
 
 
 def _scale_of_flattest(size: FloatArray, steep: FloatArray) -> FloatArray:
-    """Huber's scale of the sizes at the flattest points: from the median, then mean squares cut at 2 deviations."""
+    """Huber's scale of the sizes at the flattest points: from the median, then mean squares cut at 2
+    deviations.
+    """
     usable = np.isfinite(steep).sum(axis=1)
     take = np.maximum((FLAT_SHARE * usable).astype(int), np.minimum(3, usable))
     ranked = np.take_along_axis(size, np.argsort(steep, axis=1), 1)

@@ -1,8 +1,8 @@
 """Titration curves with known truth: what a burette and an electrode would record.
 
-The balance is solved for x at each volume, activity coefficients consistent with the solution found; the electrode
-then shows it with offset, slope, drift, lag, scatter and now and then a bad reading. Used by the tests, the benchmarks
-and the demo laboratory.
+The balance is solved for x at each volume, activity coefficients consistent with the solution found; the
+electrode then shows it with offset, slope, drift, lag, scatter and now and then a bad reading. Used by the
+tests, the benchmarks and the demo laboratory.
 """
 
 from __future__ import annotations
@@ -21,13 +21,15 @@ from analysis.fit_problem import MODELS
 from analysis.system import System
 
 FloatArray = npt.NDArray[np.float64]
+Value = float | FloatArray
 
 
 def simulate_curve(
     system: System, *, amounts: FloatArray, volumes: FloatArray, standard: float = 0.0,
-    constants: Mapping[str, float] | None = None, generator: np.random.Generator | None = None, noise: float = 0.0,
-    volume_noise: float = 0.0, resolution: float = 0.0, offset: float = 0.0, slope: float = 1.0, drift: float = 0.0,
-    lag: float = 0.0, outliers: float = 0.0, quantity: str | None = None,
+    constants: Mapping[str, Value] | None = None, generator: np.random.Generator | None = None,
+    noise: float = 0.0, volume_noise: float = 0.0, resolution: float = 0.0, offset: Value = 0.0,
+    slope: Value = 1.0, drift: Value = 0.0, lag: Value = 0.0, outliers: float = 0.0,
+    quantity: str | None = None,
 ) -> FloatArray:  # fmt: skip
     """Readings at each volume.
 
@@ -41,7 +43,8 @@ def simulate_curve(
     standard : float
         Standard potential of the electrode [mV].
     constants : mapping, optional
-        Shifts of the parameters by name: "pKa of acetic acid", "sample carbonate" and so on, see ``shiftable``.
+        Shifts of the parameters by name: "pKa of acetic acid", "sample carbonate" and so on, see
+        ``shiftable``.
     generator : Generator, optional
         Needed for noise and outliers.
     noise, volume_noise : float
@@ -49,7 +52,8 @@ def simulate_curve(
     resolution : float
         What was truly delivered lies anywhere within this width about the recorded volume [mL].
     offset, slope, drift, lag : float
-        Electrode: offset and drift over the whole curve [pH or mV], slope as a fraction, lag as in electrode.py.
+        Electrode: offset and drift over the whole curve [pH or mV], slope as a fraction, lag as in
+        electrode.py; like the constants each may be an array with one value a curve.
     outliers : float
         Share of readings that are off by up to 40 standard deviations.
     quantity : str, optional
@@ -65,7 +69,8 @@ def simulate_curve(
         delivered = np.maximum(delivered, 0.0)
     x = true_x(system, amounts=amounts, volumes=delivered, constants=constants)
     centre = 7.0 if shown == "pH" else float(np.median(x))
-    reading = displayed(x, centre=centre, offset=offset / abs(unit), slope=slope - 1, drift=drift / abs(unit), lag=lag) * unit
+    electrode = {"offset": _column(offset) / abs(unit), "drift": _column(drift) / abs(unit)}
+    reading = unit * displayed(x, centre=centre, slope=_column(slope) - 1, lag=_column(lag), **electrode)
     reading += (-7.0 * unit if system.kind == "acid_base" and shown == "mV" else 0.0) + standard
     if generator is not None and noise > 0:
         reading = _scattered(reading, generator, noise=noise, outliers=outliers)
@@ -73,9 +78,11 @@ def simulate_curve(
 
 
 def true_x(
-    system: System, *, amounts: FloatArray, volumes: FloatArray, constants: Mapping[str, float] | None = None
+    system: System, *, amounts: FloatArray, volumes: FloatArray, constants: Mapping[str, Value] | None = None
 ) -> FloatArray:
-    """pH, pAg, pM or potential over the Nernst slope at each volume, without an electrode; curves by points."""
+    """pH, pAg, pM or potential over the Nernst slope at each volume, without an electrode; curves by
+    points.
+    """
     chemistry: Chemistry = MODELS[system.kind](system, prior=prior_of(NUISANCE, {}))
     names = shiftable(system)
     theta = np.zeros((amounts.shape[0], chemistry.count + len(names)))
@@ -84,7 +91,9 @@ def true_x(
         if name not in names:
             raise ValueError(f"Constant is {name!r}; expected one of {', '.join(names)}.")
         theta[:, chemistry.count + names.index(name)] = value
-    return solved_with_activity(chemistry, volumes, theta)
+    return solved_with_activity(
+        chemistry, np.broadcast_to(volumes, (len(theta), np.shape(volumes)[-1])), theta
+    )
 
 
 def shiftable(system: System) -> tuple[str, ...]:
@@ -92,7 +101,9 @@ def shiftable(system: System) -> tuple[str, ...]:
     return tuple(item.name for item in MODELS[system.kind](system, prior=prior_of(NUISANCE, {})).parameters)
 
 
-def grid(*, end: float, near: float, coarse: float = 0.5, fine: float = 0.1, width: float = 0.8) -> FloatArray:
+def grid(
+    *, end: float, near: float, coarse: float = 0.5, fine: float = 0.1, width: float = 0.8
+) -> FloatArray:
     """Volumes [mL] as a titration is recorded: coarse steps, finer ones about the endpoint."""
     outside = np.arange(0.0, end + coarse / 2, coarse)
     inside = np.arange(max(near - width, 0.0), near + width + fine / 2, fine)
@@ -100,9 +111,16 @@ def grid(*, end: float, near: float, coarse: float = 0.5, fine: float = 0.1, wid
     return np.round(np.sort(np.concatenate([outside, inside])), 3)
 
 
+def _column(value: Value) -> FloatArray:
+    """One value for all curves, or one for each, as a column."""
+    return np.asarray(np.reshape(value, (-1, 1)), dtype=float)
+
+
 def _check(system: System, *, amounts: FloatArray, generator: Any, random: float) -> None:
     if amounts.shape[1] != len(system.analytes):
-        raise ValueError(f"{amounts.shape[1]} amounts are given; {len(system.analytes)} are expected, one an analyte.")
+        raise ValueError(
+            f"{amounts.shape[1]} amounts are given; {len(system.analytes)} are expected, one an analyte."
+        )
     if not (np.isfinite(amounts).all() and (amounts >= 0).all()):
         raise ValueError(f"Amounts are {amounts.tolist()}; finite numbers from 0 are expected [mmol].")
     if random > 0 and generator is None:
@@ -128,7 +146,9 @@ def _equivalents(system: System) -> FloatArray:
     return np.array([item.electrons / system.titrant_electrons for item in system.analytes])
 
 
-def _scattered(reading: FloatArray, generator: np.random.Generator, *, noise: float, outliers: float) -> FloatArray:
+def _scattered(
+    reading: FloatArray, generator: np.random.Generator, *, noise: float, outliers: float
+) -> FloatArray:
     found = reading + generator.normal(0.0, noise, reading.shape)
     if outliers > 0 and not math.isclose(outliers, 0.0):
         bad = generator.random(reading.shape) < outliers

@@ -25,7 +25,8 @@ class Analyte:
     ----------
     name : str
     pKa : tuple of float
-        From the most acidic step on; empty for a strong acid or base. Thermodynamic constants when activity is on.
+        From the most acidic step on; empty for a strong acid or base. Thermodynamic constants when activity
+        is on.
     charge : int
         When fully protonated; the charge of the metal ion for a complex.
     lost : int or None
@@ -52,7 +53,9 @@ class Analyte:
 
     def __post_init__(self) -> None:
         if len(self.pKa) > MOST_STEPS:
-            raise ValueError(f"{self.name} has {len(self.pKa)} pKa values; at most {MOST_STEPS} are expected.")
+            raise ValueError(
+                f"{self.name} has {len(self.pKa)} pKa values; at most {MOST_STEPS} are expected."
+            )
         for value in self.pKa:
             if not LOWEST_PKA <= value <= HIGHEST_PKA:
                 raise ValueError(
@@ -60,7 +63,9 @@ class Analyte:
                     "(none at all for a strong acid or base)."
                 )
         if self.lost is not None and not 0 <= self.lost <= len(self.pKa):
-            raise ValueError(f"Protons lost of {self.name} are {self.lost}; 0 to {len(self.pKa)} is expected.")
+            raise ValueError(
+                f"Protons lost of {self.name} are {self.lost}; 0 to {len(self.pKa)} is expected."
+            )
         if self.electrons < 1:
             raise ValueError(f"Electrons of {self.name} are {self.electrons}; 1 or more are expected.")
 
@@ -113,7 +118,9 @@ class System:
         for name in ("titrant_concentration", "sample_volume"):
             value = getattr(self, name)
             if not (value > 0 and math.isfinite(value)):
-                raise ValueError(f"{name.replace('_', ' ').capitalize()} is {value}; a number above 0 is expected.")
+                raise ValueError(
+                    f"{name.replace('_', ' ').capitalize()} is {value}; a number above 0 is expected."
+                )
         _check_range("Carbonate", self.carbonate, low=0.0, high=0.5)
         _check_range("Temperature", self.temperature, low=0.0, high=60.0)
         _check_range("Background", self.background, low=0.0, high=1.0)
@@ -165,7 +172,8 @@ def _analyte(item: Mapping[str, Any]) -> Analyte:
         for key in ("pKs", "log_K", "potential")
     }
     return Analyte(
-        name=name, pKa=tuple(sorted(_number(value, name=f"pKa of {name}") for value in item.get("pKa") or [])),
+        name=name,
+        pKa=tuple(sorted(_number(value, name=f"pKa of {name}") for value in item.get("pKa") or [])),
         charge=int(item.get("charge", 0)), lost=None if lost is None else int(lost),
         electrons=int(item.get("electrons", 1)), **constants,
     )  # fmt: skip
