@@ -35,7 +35,9 @@ def pytest_load_initial_conftests(early_config: pytest.Config, parser: Any, args
     if number:  # each has a queue of its own, or one would do the tasks of another
         os.environ["BROKER_URL"] += f"?virtual_host={int(number) + 1}"
         return
-    os.environ["DATA_DIR"] = str(_folder())
+    data = _folder()
+    (data / "static").mkdir()  # the finders serve the files; only the folder has to be there
+    os.environ["DATA_DIR"] = str(data)
     if not os.environ.get("DATABASE_URL"):
         _start_postgres()
     _start_valkey()
