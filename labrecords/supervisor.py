@@ -164,7 +164,8 @@ def begin_again(postgres: Postgres) -> None:
 def fill(postgres: Postgres, owner: local.Environment, stopping: Stopping) -> None:
     """Fill the demo, then mark database and folder as belonging together."""
     say("filling the demo laboratory (first start only)")
-    local.manage("fill_demo", env=owner, stopping=stopping)
+    days = os.environ.get("LAB_DEMO_DAYS")  # a shorter history, for a slow machine or a quick look
+    local.manage("fill_demo", *(["--days", days] if days else []), env=owner, stopping=stopping)
     if stopping():
         return
     mark = f"filled-{secrets.token_hex(8)}"
