@@ -11,6 +11,8 @@ from __future__ import annotations
 
 import math
 
+from analysis.water import water_density
+
 KELVIN = 273.15
 GAS, FARADAY = 8.31446261815324, 96485.33212  # J/(mol K), C/mol; exact since 2019
 # pH = a / T + b + c T + d T^2, T in kelvin.
@@ -82,7 +84,7 @@ def water_ion_product(temperature: float) -> float:
     """
     _within(temperature, highest=100.0)
     kelvin, molar_mass = temperature + KELVIN, 18.015268
-    density = _water_density(temperature) / 1000  # g/cm3
+    density = water_density(temperature) / 1000  # g/cm3
     z = density * math.exp(-0.864671 + 8659.19 / kelvin - 22786.2 / kelvin**2 * density ** (2 / 3))
     liquid = (
         -2
@@ -91,11 +93,6 @@ def water_ion_product(temperature: float) -> float:
     )
     gas = 0.61415 + 48251.33 / kelvin - 67707.93 / kelvin**2 + 10102100.0 / kelvin**3
     return liquid + gas + 2 * math.log10(molar_mass / 1000)
-
-
-def _water_density(t: float) -> float:
-    """Density of water [kg/m3] at a temperature [degC]; Tanaka et al., Metrologia 38 (2001) 301."""
-    return 999.97495 * (1 - (t - 3.983035) ** 2 * (t + 301.797) / (522528.9 * (t + 69.34881)))
 
 
 def _within(temperature: float, *, highest: float) -> None:

@@ -11,8 +11,9 @@ from analysis.catalogue_charts import CHARTS
 from analysis.catalogue_conformity import CONFORMITY
 from analysis.catalogue_curves import CURVES
 from analysis.catalogue_statistics import STATISTICS
+from analysis.catalogue_volume import VOLUMES
 
-CATALOGUE: dict[str, Calculation] = table_of(*AMOUNTS, *CURVES, *STATISTICS, *CONFORMITY, *CHARTS)
+CATALOGUE: dict[str, Calculation] = table_of(*AMOUNTS, *VOLUMES, *CURVES, *STATISTICS, *CONFORMITY, *CHARTS)
 
 
 def calculate(name: str, inputs: Mapping[str, Any]) -> Any:

@@ -7,7 +7,9 @@ from collections.abc import Mapping
 from typing import Any
 
 from analysis.calculation import Calculation, Field, Inputs, optional
+from analysis.covariance import mean_covariance, propagate_together
 from analysis.formula import parse_model
+from analysis.monte_carlo import monte_carlo
 from analysis.uncertainty import Input, coverage_factor, propagate
 
 DIVISORS = {"rectangular": math.sqrt(3), "triangular": math.sqrt(6), "normal": 1.0, "u_shaped": math.sqrt(2)}
@@ -39,8 +41,44 @@ def _input(name: str, data: Mapping[str, Any]) -> Input:
     freedom = data.get("degrees_of_freedom")
     return Input(
         name, data.get("key", name), name, float(data["value"]), u, data.get("unit", ""),
-        degrees_of_freedom=math.inf if freedom is None else float(freedom),
+        distribution=_distribution(data), degrees_of_freedom=math.inf if freedom is None else float(freedom),
     )  # fmt: skip
+
+
+def _distribution(data: Mapping[str, Any]) -> str:
+    """The shape that draws take: that of a single half-width, normal for anything put together."""
+    if data.get("parts") or data.get("u") is not None:
+        return str(data.get("distribution", "normal"))
+    return str(data.get("distribution", "rectangular"))
+
+
+def _monte_carlo(inputs: Inputs) -> dict[str, Any]:
+    sources = [_input(name, data) for name, data in inputs["inputs"].items()]
+    settings = {
+        key: inputs[key] for key in ("level", "digits", "most_draws", "seed") if inputs.get(key) is not None
+    }
+    found = monte_carlo(parse_model(inputs["formula"]), sources, **settings)
+    return {
+        "value": found.value, "u": found.u, "interval": list(found.interval),
+        "shortest": list(found.shortest),
+        "draws": found.draws, "is_stable": found.is_stable,
+    }  # fmt: skip
+
+
+def _together(inputs: Inputs) -> dict[str, Any]:
+    """Several results of means that were read together."""
+    names, rows = list(inputs["readings"]), list(inputs["readings"].values())
+    covariance = mean_covariance(rows)
+    u = [math.sqrt(covariance[i][i]) for i in range(len(rows))]
+    sources = [Input(n, n, n, sum(r) / len(r), s, "") for n, r, s in zip(names, rows, u, strict=True)]
+    pairs = [(i, j) for i in range(len(rows)) for j in range(i + 1, len(rows))]
+    r_in = {(names[i], names[j]): float(covariance[i][j]) / (u[i] * u[j]) for i, j in pairs}
+    found = propagate_together([parse_model(text) for text in inputs["formulas"]], sources, correlations=r_in)
+    count = len(inputs["formulas"])
+    return {
+        "values": found.values.tolist(), "u": found.u.tolist(), "input_correlations": list(r_in.values()),
+        "correlations": [float(found.correlation[i, j]) for i in range(count) for j in range(i + 1, count)],
+    }  # fmt: skip
 
 
 def _budget(inputs: Inputs) -> dict[str, Any]:
@@ -68,16 +106,35 @@ def _coverage(inputs: Inputs) -> list[float]:
     return [coverage_factor(known, rule="effective", level=level) for level in inputs["levels"]]
 
 
+SOURCES = Field(
+    "inputs", "", "by name: value with u, or half_width and distribution (rectangular, triangular, normal, "
+    "u_shaped) with times and sensitivity, or parts (a list of these); degrees_of_freedom; key"
+)  # fmt: skip
+
 BUDGETS = (
+    Calculation(
+        "monte_carlo", "Distribution of a formula of named inputs by Monte Carlo",
+        (
+            Field("formula", "", "such as 1000*m*P/(M*V)"), SOURCES,
+            optional("level", "", "0.95 when left out"),
+            optional("digits", "", "digits of u that must stand still, 2 when left out"),
+            optional("most_draws", "", "2000000 when left out"), optional("seed", "", "1 when left out"),
+        ),
+        "value, u, interval, shortest, draws, is_stable", _monte_carlo,
+    ),
+    Calculation(
+        "correlated_results", "Several formulas of means that were read together, with their correlations",
+        (
+            Field("formulas", "", "a list of formulas"),
+            Field("readings", "any", "by name: readings, as many of each, in the order they were read"),
+        ),
+        "values, u, input_correlations, correlations (pairs in order)", _together,
+    ),
     Calculation(
         "uncertainty_budget", "Value and uncertainty of a formula of named inputs",
         (
             Field("formula", "", "such as 1000*m*P/(M*V)"),
-            Field(
-                "inputs", "",
-                "by name: value with u, or half_width and distribution (rectangular, triangular, normal, "
-                "u_shaped) with times and sensitivity, or parts (a list of these); degrees_of_freedom; key"
-            ),
+            SOURCES,
             optional("coverage", "", "k2 (when left out) or effective"),
             optional("level", "", "0.95 when left out"),
         ),

@@ -1,34 +1,37 @@
 """A measurement model written as a formula, so that a laboratory can have any budget checked.
 
-Only numbers, named inputs, + - * / ** and the functions sqrt, exp, log, log10, sin, cos, tan are known.
-Formulas also take complex numbers, so that derivatives can be taken by a complex step.
+Only numbers, named inputs, + - * / ** and the functions sqrt, exp, log, log10, sin, cos,
+tan are known. Formulas
+also take complex numbers, so that derivatives can be taken by a complex step, and arrays of draws.
 """
 
 from __future__ import annotations
 
 import ast
-import cmath
 import operator
 from collections.abc import Callable, Mapping
+from typing import Any
+
+import numpy as np
 
 LONGEST = 500
-OPERATORS: dict[type[ast.operator], Callable[[complex, complex], complex]] = {
+OPERATORS: dict[type[ast.operator], Callable[[Any, Any], Any]] = {
     ast.Add: operator.add,
     ast.Sub: operator.sub,
     ast.Mult: operator.mul,
     ast.Div: operator.truediv,
     ast.Pow: operator.pow,
 }
-FUNCTIONS: dict[str, Callable[[complex], complex]] = {
-    "sqrt": cmath.sqrt,
-    "exp": cmath.exp,
-    "log": cmath.log,
-    "log10": cmath.log10,
-    "sin": cmath.sin,
-    "cos": cmath.cos,
-    "tan": cmath.tan,
+FUNCTIONS: dict[str, Callable[[Any], Any]] = {
+    "sqrt": np.sqrt,
+    "exp": np.exp,
+    "log": np.log,
+    "log10": np.log10,
+    "sin": np.sin,
+    "cos": np.cos,
+    "tan": np.tan,
 }
-Formula = Callable[[Mapping[str, complex]], complex]
+Formula = Callable[[Mapping[str, Any]], Any]
 
 
 def parse_model(text: str) -> Formula:
@@ -50,9 +53,10 @@ def parse_model(text: str) -> Formula:
         ) from problem
     compute = _node(body)
 
-    def model(values: Mapping[str, complex]) -> complex:
+    def model(values: Mapping[str, Any]) -> Any:
         try:
-            return compute(values)
+            with np.errstate(all="ignore"):  # a result that is no number is refused by whoever asked
+                return compute(values)
         except (ZeroDivisionError, OverflowError) as problem:
             raise ValueError(f"Formula {text!r} gives no number for these inputs.") from problem
 
@@ -88,7 +92,7 @@ def _node(node: ast.expr) -> Formula:
 
 
 def _input(name: str) -> Formula:
-    def value(values: Mapping[str, complex]) -> complex:
+    def value(values: Mapping[str, Any]) -> Any:
         if name not in values:
             raise ValueError(
                 f"Formula uses {name!r}, which is not among the inputs {', '.join(sorted(values))}."

@@ -46,7 +46,7 @@ def test_validate_analysis_writes_every_published_check_into_the_report(tmp_path
 def test_validate_analysis_takes_own_cases_into_the_same_report(tmp_path: Path) -> None:
     run(cases=written(tmp_path, [OWN]), report=tmp_path / "report.html")
     page = (tmp_path / "report.html").read_text("utf-8")
-    assert "own.json (the laboratory&#x27;s own cases)" in page
+    assert "own.json (the laboratory's own cases)" in page
     assert "worksheet 7 of the laboratory" in page
 
 
