@@ -8,7 +8,6 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import asdict
 from typing import Any
 
 import analysis
@@ -261,8 +260,9 @@ def _with_all(titrations: Sequence[Titration], values: Mapping[int, float]) -> f
 def _outlier_tests(values: Sequence[float]) -> list[dict[str, Any]]:
     if len(values) < 3 or max(values) == min(values):
         return []
-    tests = [grubbs(values), *([dixon(values)] if len(values) <= 7 else [])]
-    return [asdict(test) | {"beyond": test.is_beyond, "sentence": test.sentence} for test in tests]
+    kept = ("test", "suspect", "statistic", "critical", "alpha", "sides")
+    said = [(test, {key: getattr(test, key) for key in kept}) for test in (grubbs(values), dixon(values))]
+    return [line | {"beyond": test.is_beyond, "sentence": test.sentence} for test, line in said]
 
 
 def _advice(whole: Propagated) -> str:

@@ -100,9 +100,10 @@ def ewma(
     x = checked_series(values, sigma=sigma, target=target)
     check_weight(weight, width=width)
     z = ewma_from(x, previous=target, weight=weight)
-    age = np.arange(1, x.size + 1, dtype=float)
-    grown = np.ones(x.size) if is_steady else 1 - (1 - weight) ** (2 * age)
-    half = width * sigma * np.sqrt(weight / (2 - weight) * grown)
+    half = np.full(x.size, width * sigma * math.sqrt(weight / (2 - weight)))
+    if not is_steady:
+        young = min(x.size, math.ceil(40 / weight))  # later (1 - lambda)^(2 i) is lost beside 1
+        half[:young] *= np.sqrt(1 - (1 - weight) ** (2 * np.arange(1, young + 1, dtype=float)))
     out = np.flatnonzero(np.abs(z - target) > half)
     return Ewma(
         z, target - half, target + half, target, sigma, weight, width, tuple(int(place) for place in out)

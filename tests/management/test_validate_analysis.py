@@ -96,7 +96,11 @@ def test_validate_analysis_shows_a_case_that_can_be_run_as_it_is(tmp_path: Path)
 
 
 @pytest.mark.parametrize(
-    ("script", "passes"), [("print('coverage 95 %')", True), ("raise SystemExit(1)", False)]
+    ("script", "passes"),
+    [
+        ("if __name__ == '__main__': print('coverage 95 %')", True),
+        ("if __name__ == '__main__': raise SystemExit(1)", False),
+    ],
 )
 def test_validate_analysis_runs_benchmarks_when_asked(
     tmp_path: Path, monkeypatch, script: str, passes: bool

@@ -93,7 +93,7 @@ class Command(BaseCommand):
             )
 
     def _benchmarks(self) -> Iterator[Benchmark]:
-        scripts = sorted(BENCHMARKS.glob("[!_]*.py"))
+        scripts = sorted(file for file in BENCHMARKS.glob("*.py") if "__main__" in file.read_text("utf-8"))
         if not scripts:
             raise CommandError(
                 f"There are no benchmarks in {BENCHMARKS}; install them or leave out --benchmarks."
