@@ -16,6 +16,10 @@ from analysis.fit_run import Outcome, run_fit
 from analysis.system import System
 
 FloatArray = npt.NDArray[np.float64]
+ROWS = (
+    "volumes", "volume_us", "theta", "parameter_us", "degrees_of_freedom", "noise", "chi2_nu", "lag_1",
+    "runs_z",
+)  # fmt: skip
 PIECE = 256  # curves: their arrays stay in the second-level cache
 
 
@@ -104,11 +108,6 @@ def fit_equilibrium_batch(
         curves, system, chosen, steps, names, tuple(problems),
         **{name: np.concatenate(values) for name, values in rows.items()},
     )  # fmt: skip
-
-
-ROWS = (
-    "volumes", "volume_us", "theta", "parameter_us", "degrees_of_freedom", "noise", "chi2_nu", "lag_1", "runs_z",
-)  # fmt: skip
 
 
 def _rows(outcome: Outcome) -> dict[str, FloatArray]:

@@ -45,28 +45,48 @@ class Electrode:
             self.behind[rows],
         )
 
-    def read(self, theta: FloatArray) -> tuple[FloatArray, list[FloatArray]]:
-        """x at each point for these parameters, and dx/d(parameter) in the order of the parameters."""
-        at = {item.group: self.first + k for k, item in enumerate(self.parameters)}
+    @property
+    def places(self) -> dict[str, int]:
+        """The column of each parameter that is fitted."""
+        return {item.group: self.first + k for k, item in enumerate(self.parameters)}
+
+    def read(self, theta: FloatArray, behind: FloatArray) -> tuple[FloatArray, list[FloatArray]]:
+        """x at each point for these parameters, and dx/d(parameter) in the order of the parameters.
+
+        ``behind`` is the step of the reading from the point before, as ``steps`` gives it.
+        """
+        at = self.places
         away = self.linear - self.centre
         if "offset" in at:
             away = away - theta[:, at["offset"], None]
         if "drift" in at:
             away = away - theta[:, at["drift"], None] * self.moments
         if "lag" in at:
-            away = away + theta[:, at["lag"], None] * self.behind
+            away = away + theta[:, at["lag"], None] * behind
         turned = np.ones((away.shape[0], 1))
         if "slope" in at:
             turned = 1.0 / (1.0 + theta[:, at["slope"], None])
             away = away * turned
-        return away + self.centre, [self._column(item.group, away, turned) for item in self.parameters]
+        return away + self.centre, [
+            self._column(item.group, away, turned, behind) for item in self.parameters
+        ]
 
-    def _column(self, group: str, away: FloatArray, turned: FloatArray) -> FloatArray:
+    def steps(self, theta: FloatArray, away: FloatArray) -> FloatArray:
+        """The step of the reading from the point before, cleared of how far each point lies ``away`` from the
+        model: a step of the scatter itself would pass for a lag.
+        """
+        at = self.places
+        if "lag" not in at:
+            return self.behind
+        shown = self.linear - away * (1.0 + theta[:, at["slope"], None] if "slope" in at else 1.0)
+        return _steps(shown)
+
+    def _column(self, group: str, away: FloatArray, turned: FloatArray, behind: FloatArray) -> FloatArray:
         if group == "offset":
             return -turned
         if group == "slope":
             return -away * turned
-        return self.behind * turned if group == "lag" else self.moments * -turned
+        return behind * turned if group == "lag" else self.moments * -turned
 
 
 def electrode(
@@ -99,11 +119,16 @@ def electrode(
             found.append(Parameter("standard potential", group, np.inf))
         elif sd is not None:
             found.append(Parameter(NAMES[group], group, sd))
-    behind = np.zeros_like(linear)
-    behind[:, 1:] = linear[:, 1:] - linear[:, :-1]
+    behind = _steps(linear)
     moments = np.arange(linear.shape[1]) / (points[:, None] - 1.0) - 0.5
     centres = np.broadcast_to(np.asarray(centre, dtype=float), (linear.shape[0],))[:, None]
     return Electrode(linear, centres, first, tuple(found), moments, behind)
+
+
+def _steps(shown: FloatArray) -> FloatArray:
+    behind = np.zeros_like(shown)
+    behind[:, 1:] = shown[:, 1:] - shown[:, :-1]
+    return behind
 
 
 def displayed(

@@ -130,7 +130,8 @@ def fit_equilibrium(
     us = np.sqrt(np.maximum(np.diag(summary.covariance[0]), 0.0))
     return Fit(
         curve=curve, system=system, settings=chosen, names=problem.names,
-        values=tuple(summary.theta[0].tolist()), standard_uncertainties=tuple(us.tolist()), equivalences=points,
+        values=tuple(summary.theta[0].tolist()), standard_uncertainties=tuple(us.tolist()),
+        equivalences=points,
         endpoints=tuple(point.volume for point in ends),
         endpoint_us=tuple(point.standard_uncertainty for point in ends),
         degrees_of_freedom=float(summary.degrees_of_freedom[0]),
@@ -156,7 +157,9 @@ def _fitted(curve: Curve, found: Outcome) -> tuple[FloatArray, FloatArray]:
     slope = problem.unit
     if "slope" in problem.groups:
         slope *= 1 + float(theta[0, problem.groups.index("slope")])
-    fitted = curve.reading - (problem.observed.electrode.read(theta)[0][0] - x[0, :size]) * slope
+    fitted = (
+        curve.reading - (problem.observed.electrode.read(theta, optimum.behind)[0][0] - x[0, :size]) * slope
+    )
     return fitted, slope * x[0, size:] + np.interp(ends, curve.volume, fitted - slope * x[0, :size])
 
 

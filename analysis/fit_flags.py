@@ -26,14 +26,15 @@ def flags_of_fit(
         if group == "slope" and not SLOPE_FROM <= 1 + value <= SLOPE_TO:
             found.append(f"Electrode slope {100 * (1 + value):.1f} %, outside 95-102 %.")
         elif math.isfinite(prior) and abs(value - centre) > MOST_PRIORS * prior:
+            times = abs(value - centre) / prior
             found.append(
-                f"The fit moves the {name} by {value - centre:.3g}, {abs(value - centre) / prior:.1f} times what is "
-                "usual: the chemistry or the electrode is not as stated."
+                f"The fit moves the {name} by {value - centre:.3g}, {times:.1f} times what is usual: "
+                "the chemistry or the electrode is not as stated."
             )
     if chi2_nu > _most_chi2(degrees_of_freedom, points, is_noise_known=is_noise_known):
         found.append(
-            f"The model leaves {math.sqrt(chi2_nu):.1f} times the scatter of the readings: its chemistry does "
-            "not describe this curve."
+            f"The model leaves {math.sqrt(chi2_nu):.1f} times the scatter of the readings: its chemistry "
+            "does not describe this curve."
         )
     if runs_z < -3 or lag_1 > 3 / math.sqrt(points):
         found.append(

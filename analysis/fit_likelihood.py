@@ -66,6 +66,7 @@ class Optimum:
     x: FloatArray
     decrement: FloatArray
     x_sd: FloatArray
+    behind: FloatArray
 
 
 def maximise(
@@ -89,8 +90,12 @@ def maximise(
         Steps in the volume domain, and steps before single bad readings are given less weight.
     """
     theta, volume, medium, x_sd, weight = start, observed.volume, None, observed.x_sd, None
-    (held, plain), is_settled, reading = pace, False, observed.electrode.read(theta)
-    x = np.clip(reading[0], *chemistry.limits)
+    (held, plain), is_settled, reading = (
+        pace,
+        False,
+        observed.electrode.read(theta, observed.electrode.behind),
+    )
+    x, behind = np.clip(reading[0], *chemistry.limits), observed.electrode.behind
     for step in range(most):
         if step < MEDIUM_UNTIL:
             medium = chemistry.medium(x, volume, theta)
@@ -104,9 +109,10 @@ def maximise(
         decrement = np.sqrt(np.abs((gradient * change).sum(axis=1)))
         theta = _bounded(theta + change, chemistry, observed, precision)
         z = np.matmul(change[:, None, :], rows[:, :-1])[:, 0] + rows[:, -1]
-        reading = observed.electrode.read(theta)
+        reading = observed.electrode.read(theta, behind)
         x, volume = _projected(observed, reading[0], z, slopes, root, x_sd, held=step + 1 < held)
         np.clip(x, *chemistry.limits, out=x)
+        behind = observed.electrode.steps(theta, reading[0] - x)
         if least_sd is not None and step >= plain and not is_settled:
             factor = _scale(z, weight, information, precision, observed.mask)
             x_sd = np.clip(x_sd * factor, np.maximum(0.5 * observed.x_sd, least_sd), 2.0 * observed.x_sd)
@@ -115,7 +121,7 @@ def maximise(
             break
         is_settled = is_settled or (step >= SETTLED and largest < NEAR)
     weight = weight if weight is not None else _ones(z, observed.mask)
-    return Optimum(theta, information, z, weight, x, decrement, x_sd)
+    return Optimum(theta, information, z, weight, x, decrement, x_sd, behind)
 
 
 def _bounded(

@@ -132,11 +132,23 @@ def _check(curves: Sequence[Curve], *, system: System, guess: float | None, sett
                 f"The curve is of {curve.quantity}; the model of {system.kind.replace('_', ' ')} takes "
                 f"{' or '.join(wanted)}, the same for all curves."
             )
+        if system.kind == "acid_base":
+            _check_direction(curve, titrant=system.titrant)
         if curve.volume.size < 8:
             raise ValueError(f"The curve has {curve.volume.size} points; the model needs at least 8.")
     for name, value in (("Guess", guess), ("Noise", settings.noise), ("Volume sd", settings.volume_sd)):
         if value is not None and not (value > 0 and np.isfinite(value)):
             raise ValueError(f"{name} is {value}; a finite number above 0 is expected.")
+
+
+def _check_direction(curve: Curve, *, titrant: str) -> None:
+    """A base raises the pH, an acid lowers it; in mV a glass electrode goes the other way."""
+    part = max(curve.reading.size // 4, 1)
+    rise = float(np.median(curve.reading[-part:]) - np.median(curve.reading[:part]))
+    is_base = (rise > 0) == (curve.quantity == "pH")
+    if rise != 0 and is_base != (titrant == "base"):
+        shown = "an acid titrated with a base" if is_base else "a base titrated with an acid"
+        raise ValueError(f"The curve is that of {shown}; the titrant is given as {titrant}.")
 
 
 def _rows(curves: Sequence[Curve]) -> tuple[FloatArray, FloatArray, FloatArray | None, FloatArray]:

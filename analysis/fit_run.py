@@ -61,7 +61,7 @@ def _optimum(problem: Problem, *, tolerance: float, robust: bool) -> Optimum:
     if late.size:
         usable = np.isfinite(found.theta[late]).all(axis=1, keepdims=True)
         again = run(np.where(usable, found.theta[late], problem.start[late]), late, MOST_ALONE)
-        for name in ("theta", "information", "z", "weight", "x", "decrement", "x_sd"):
+        for name in ("theta", "information", "z", "weight", "x", "decrement", "x_sd", "behind"):
             getattr(found, name)[late] = getattr(again, name)
     return found
 
@@ -71,6 +71,9 @@ def _problems(problem: Problem, optimum: Optimum, summary: Summary, *, tolerance
     found = [""] * len(problem.points)
     singular, late = summary.smallest < SMALLEST, ~(optimum.decrement < max(tolerance, 1e-4))
     lost = ~np.isfinite(summary.volume_us).all(axis=1) | ~np.isfinite(optimum.theta).all(axis=1)
+    lost |= ~(summary.volumes[:, -1] > 0) | (
+        np.abs(optimum.theta - problem.centre) * problem.precision**0.5 > 14
+    ).any(axis=1)
     for row in np.flatnonzero(singular | late | lost):
         if singular[row] and np.isfinite(optimum.information[row]).all():
             name = unknown_parameter(optimum.information[row], problem.names)

@@ -21,6 +21,7 @@ SMALLEST = (
     1e-10  # share of a parameter's information that the others leave, below which nothing is known of it
 )
 MOST_CORRELATED = 0.9
+NOT_NEGATIVE, SWEEPS = ("sample carbonate", "titrant carbonate", "lag"), 4
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,7 +49,7 @@ def summarise(problem: Problem, optimum: Optimum, *, steps: tuple[Step, ...], ro
     lag = _lag_1(z * np.sqrt(optimum.weight), problem.points)
     positive = np.clip(lag, 0.0, MOST_CORRELATED)
     widened = np.maximum(1.0, chi2_nu) * (1 + positive) / (1 - positive)
-    theta, covariance = _not_negative(problem, optimum.theta.copy(), covariance * widened[:, None, None])
+    theta, covariance = _not_negative(problem, optimum.theta, covariance * widened[:, None, None])
     share = np.array([step.share for step in steps])
     count = share.shape[1]
     variance = np.einsum("ka,bac,kc->bk", share, covariance[:, :count, :count], share)
@@ -68,25 +69,42 @@ def unknown_parameter(information: FloatArray, names: tuple[str, ...]) -> str:
 
 
 def _not_negative(
-    problem: Problem, theta: FloatArray, covariance: FloatArray
+    problem: Problem, mean: FloatArray, covariance: FloatArray
 ) -> tuple[FloatArray, FloatArray]:
-    """The mean and covariance given that carbonate and lag are not below nothing, one after the other.
+    """The mean and covariance given that carbonate and lag are not below nothing.
 
-    The moments of a normal variable cut at its lowest value, passed on to the other parameters by regression.
+    Each condition is replaced by a normal factor that gives the same moments as the cut distribution would, in turn
+    until all agree (expectation propagation).
     """
-    for place, group in enumerate(problem.groups):
-        if group not in ("sample carbonate", "titrant carbonate", "lag"):
-            continue
-        variance = covariance[:, place, place].copy()
-        sd = np.sqrt(np.maximum(variance, 1e-300))
-        least = -problem.stated_carbonate if group == "titrant carbonate" else 0.0
-        cut = np.clip((least - theta[:, place]) / sd, -30.0, 30.0)
-        hazard = np.sqrt(2 / np.pi) / special.erfcx(cut / np.sqrt(2))
-        gain = covariance[:, :, place] / np.maximum(variance, 1e-300)[:, None]
-        theta += gain * (sd * hazard)[:, None]
-        lost = variance * hazard * (hazard - cut)
-        covariance -= gain[:, :, None] * gain[:, None, :] * lost[:, None, None]
-    return theta, covariance
+    places = [place for place, group in enumerate(problem.groups) if group in NOT_NEGATIVE]
+    factors = {place: (np.zeros(len(mean)), np.zeros(len(mean))) for place in places}
+    for _ in range(SWEEPS if len(places) > 1 else 1):
+        for place in places:
+            least = -problem.stated_carbonate if problem.groups[place] == "titrant carbonate" else 0.0
+            factor = _factor(mean[:, place], covariance[:, place, place], factors[place], least)
+            precision, pull = factor[0] - factors[place][0], factor[1] - factors[place][1]
+            column = covariance[:, :, place].copy()
+            shrink = 1.0 / (1.0 + precision * column[:, place])
+            mean = mean + column * ((pull - precision * mean[:, place]) * shrink)[:, None]
+            covariance = (
+                covariance - column[:, :, None] * column[:, None, :] * (precision * shrink)[:, None, None]
+            )
+            factors[place] = factor
+    return mean, covariance
+
+
+def _factor(
+    mean: FloatArray, variance: FloatArray, old: tuple[FloatArray, FloatArray], least: float
+) -> tuple[FloatArray, FloatArray]:
+    """Precision, and precision times mean, of the normal factor that stands for "not below ``least``"."""
+    inverse_variance = 1.0 / np.maximum(variance, 1e-300)
+    rest = np.maximum(inverse_variance - old[0], 1e-3 * inverse_variance)
+    centre, sd = (mean * inverse_variance - old[1]) / rest, 1.0 / np.sqrt(rest)
+    cut = np.clip((least - centre) / sd, -30.0, 30.0)
+    hazard = np.sqrt(2 / np.pi) / special.erfcx(cut / np.sqrt(2))
+    kept = np.maximum(1.0 - hazard * (hazard - cut), 1e-6)
+    precision = rest / kept
+    return precision - rest, precision * (centre + sd * hazard) - rest * centre
 
 
 def _lag_1(z: FloatArray, points: FloatArray) -> FloatArray:

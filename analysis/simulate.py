@@ -64,8 +64,9 @@ def simulate_curve(
     unit, shown = _unit(system, quantity)
     delivered = np.broadcast_to(volumes, (amounts.shape[0], volumes.shape[-1])).copy()
     if generator is not None and volume_noise + resolution > 0:
-        delivered += generator.normal(0.0, volume_noise, delivered.shape)
-        delivered += resolution * (generator.random(delivered.shape) - 0.5)
+        error = generator.normal(0.0, volume_noise, delivered.shape)
+        error += resolution * (generator.random(delivered.shape) - 0.5)
+        delivered += np.where(delivered > 0, error, 0.0)  # before the first addition nothing is delivered
         delivered = np.maximum(delivered, 0.0)
     x = true_x(system, amounts=amounts, volumes=delivered, constants=constants)
     centre = 7.0 if shown == "pH" else float(np.median(x))

@@ -114,7 +114,8 @@ def cell(
 ) -> tuple[list[str], bool]:
     """One solution on one grid, and whether it reaches what it must."""
     truth = NEAR + generator.uniform(-0.3, 0.3, count)
-    delivered = np.maximum(volumes + generator.normal(0.0, VOLUME_NOISE, (count, volumes.size)), 0.0)
+    error = generator.normal(0.0, VOLUME_NOISE, (count, volumes.size))
+    delivered = volumes + np.where(volumes > 0, error, 0.0)
     readings = np.array(
         [
             phreeqc_curve(engine, solution, volumes=row, endpoint=float(endpoint))
