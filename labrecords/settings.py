@@ -198,6 +198,7 @@ if CELERY_BROKER_URL.startswith(("redis", "unix")):
         "unacked_restore_interval": 5,
         "unacked_restore_throttle": 1,
         "socket_connect_timeout": 2,
+        "socket_timeout": 4,  # longer than the second a worker waits for the next message at a time
     }
 CELERY_BEAT_SCHEDULE = {
     "sweep-waiting": {"task": "labrecords.tasks.sweep_waiting", "schedule": 10.0},

@@ -143,7 +143,7 @@ def prepare(postgres: Postgres, stopping: Stopping) -> None:
     if not complete:
         begin_again(postgres)
     postgres.make_database()
-    owner = environment(postgres, OWNER, broker="memory://")
+    owner = environment(postgres, OWNER, broker="memory://localhost")
     say("bringing the database up to date")
     local.manage("migrate", "-v0", "--skip-checks", env=owner, stopping=stopping)
     if not complete and not stopping():

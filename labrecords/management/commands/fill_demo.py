@@ -47,7 +47,7 @@ class Command(BaseCommand):
         begun, clock = time.monotonic(), Clock()
         names = [ADMINISTRATOR[0], *(name for name, _, _ in PEOPLE)]
         passwords = {name: secrets.token_urlsafe(18) for name in names}
-        current_app.conf.broker_url = "memory://"
+        current_app.conf.broker_url = "memory://localhost"
         with override_settings(PASSWORD_HASHERS=QUICK):
             history = self._live(clock, passwords, days=options["days"], seed=options["seed"])
             clock.stop()
