@@ -49,6 +49,6 @@ def test_every_calculation_is_either_published_or_tested_with_the_engine() -> No
 WITHOUT_A_PUBLISHED_CASE = {
     "amount", "burette_correction", "concordance", "cusum", "cusum_interval", "electrode_slope", "endpoint",
     "ewma_width",
-    "grubbs_opposite", "grubbs_opposite_critical", "grubbs_pair", "process_risks", "result_of_run",
-    "run_rules", "titrant_by_mass", "titrant_by_titrant", "titrant_concentration",
+    "grubbs_opposite", "grubbs_opposite_critical", "grubbs_pair", "process_risks",
+    "run_rules", "titrant_by_mass", "titrant_by_titrant",
 }  # fmt: skip
