@@ -6,7 +6,9 @@ from dataclasses import asdict
 from typing import Any
 
 from analysis.calculation import Calculation, Field, Inputs, optional
+from analysis.formula import parse_model
 from analysis.groups import one_way
+from analysis.nonlinear import fit_formula
 from analysis.outlier_critical import opposite_critical, pair_critical
 from analysis.outliers import (
     OutlierTest,
@@ -83,6 +85,11 @@ def _esd(inputs: Inputs) -> dict[str, Any]:
     }  # fmt: skip
 
 
+def _formula_fit(inputs: Inputs) -> dict[str, Any]:
+    model = parse_model(inputs["formula"])
+    return asdict(fit_formula(model, x=inputs["x"], y=inputs["y"], start=inputs["start"]))
+
+
 STATISTICS = (
     Calculation(
         "replicate_statistics", "Mean, standard deviation, relative standard deviation and range",
@@ -145,6 +152,14 @@ STATISTICS = (
         (Field("x", "any", "abscissae"), Field("y", "any", "ordinates")),
         "intercept, slope, u_intercept, u_slope, residual_sd, r_squared",
         lambda inputs: asdict(straight_line(inputs["x"], inputs["y"])),
+    ),
+    Calculation(
+        "formula_fit", "Least-squares fit of a formula of x and named parameters",
+        (
+            Field("formula", "", "such as b1*(1 - exp(-b2*x))"), Field("x", "any", "abscissae"),
+            Field("y", "any", "ordinates"), Field("start", "", "first guess of each parameter by name"),
+        ),
+        "parameters, u, residual_sd, n", _formula_fit,
     ),
     Calculation(
         "groups", "Spread within and between groups of results (analysis of variance, one way)",
