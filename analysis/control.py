@@ -144,20 +144,17 @@ def subgroup_limits(
     ValueError
         When a subgroup has fewer than two values, none is left, or nothing varies.
     """
-    measure = _measure(spread)
-    for place, subgroup in enumerate(subgroups, start=1):
-        if len(subgroup) < 2:
-            raise ValueError(f"Subgroup {place} holds {len(subgroup)} values; at least 2 are needed.")
-        _finite(subgroup, where=f"Subgroup {place}, value")
+    estimates = [
+        spread_estimate(each, spread=spread, place=place) for place, each in enumerate(subgroups, start=1)
+    ]
     left_out = _exclusions(excluded, count=len(subgroups), what="subgroup")
-    kept = [subgroup for place, subgroup in enumerate(subgroups) if place not in left_out]
+    kept = [place for place in range(len(subgroups)) if place not in left_out]
     if not kept:
         raise ValueError("No subgroup is left; at least 1 is needed for limits.")
-    centre = fmean([value for subgroup in kept for value in subgroup])
-    sigma = _sigma_within(kept, measure=measure)
-    return _subgroup_chart(
-        subgroups, spread=spread, measure=measure, centre=centre, sigma=sigma, excluded=left_out
-    )
+    centre = fmean([value for place in kept for value in subgroups[place]])
+    weights = math.fsum(estimates[place][0] for place in kept)
+    sigma = math.fsum(estimates[place][0] * estimates[place][1] for place in kept) / weights
+    return subgroup_chart(subgroups, spread=spread, centre=centre, sigma=sigma, excluded=left_out)
 
 
 @dataclass(frozen=True, slots=True)
@@ -177,24 +174,28 @@ def _measure(spread: str) -> _Measure:
     raise ValueError(f"Spread is {spread!r}; expected range or sd.")
 
 
-def _sigma_within(subgroups: Sequence[Sequence[float]], *, measure: _Measure) -> float:
-    weights = [(measure.mean(len(each)) / measure.sd(len(each))) ** 2 for each in subgroups]
-    estimates = [measure.of(each) / measure.mean(len(each)) for each in subgroups]
-    sigma = math.fsum(w * e for w, e in zip(weights, estimates, strict=True)) / math.fsum(weights)
-    if sigma == 0:
-        raise ValueError("No subgroup has any spread; no limits can be set from them.")
-    return sigma
+def spread_estimate(subgroup: Sequence[float], *, spread: str, place: int) -> tuple[float, float]:
+    """Weight and estimate of the spread within, from one subgroup; ValueError naming its place."""
+    measure = _measure(spread)
+    if len(subgroup) < 2:
+        raise ValueError(f"Subgroup {place} holds {len(subgroup)} values; at least 2 are needed.")
+    _finite(subgroup, where=f"Subgroup {place}, value")
+    mean = measure.mean(len(subgroup))
+    return (mean / measure.sd(len(subgroup))) ** 2, measure.of(subgroup) / mean
 
 
-def _subgroup_chart(
+def subgroup_chart(
     subgroups: Sequence[Sequence[float]],
     *,
     spread: str,
-    measure: _Measure,
     centre: float,
     sigma: float,
-    excluded: dict[int, str],
+    excluded: Mapping[int, str],
 ) -> SubgroupLimits:
+    """Limits of each subgroup from a centre and a spread within; ValueError when nothing varies."""
+    if sigma == 0:
+        raise ValueError("No subgroup has any spread; no limits can be set from them.")
+    measure = _measure(spread)
     sizes = tuple(len(each) for each in subgroups)
     half = [3 * sigma / math.sqrt(n) for n in sizes]
     middles = tuple(measure.mean(n) * sigma for n in sizes)
@@ -203,7 +204,8 @@ def _subgroup_chart(
         spread, sizes, tuple(fmean(each) for each in subgroups),
         tuple(measure.of(each) for each in subgroups),
         centre, sigma, tuple((centre - h, centre + h) for h in half),
-        tuple((max(0.0, m - w), m + w) for m, w in zip(middles, widths, strict=True)), middles, excluded,
+        tuple((max(0.0, m - w), m + w) for m, w in zip(middles, widths, strict=True)), middles,
+        dict(excluded),
     )  # fmt: skip
 
 

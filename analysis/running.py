@@ -7,13 +7,19 @@ memory go on from their last state by the same operations.
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field, replace
 from fractions import Fraction
 
 import numpy as np
 
-from analysis.control import IndividualsLimits, limits_from_means
+from analysis.control import (
+    IndividualsLimits,
+    SubgroupLimits,
+    limits_from_means,
+    spread_estimate,
+    subgroup_chart,
+)
 from analysis.ewma_cusum import checked_series, ewma_from, one_sided
 from analysis.run_rules import REACH, signals_at_last
 
@@ -46,6 +52,34 @@ class RunningBaseline:
             raise ValueError(f"{self.count} values are given; at least 2 are needed for limits.")
         centre, mean_range = float(self.total) / self.count, float(self.range_total) / (self.count - 1)
         return limits_from_means(self.values, centre=centre, mean_range=mean_range, excluded={})
+
+
+@dataclass(frozen=True, slots=True)
+class RunningSubgroups:
+    """The baseline of an X-bar chart while it grows; ``spread`` is range or sd."""
+
+    spread: str
+    subgroups: tuple[tuple[float, ...], ...] = ()
+    count: int = 0
+    total: Fraction = Fraction(0)
+    weight: Fraction = Fraction(0)
+    weighted: Fraction = Fraction(0)
+
+    def with_subgroup(self, subgroup: Sequence[float]) -> RunningSubgroups:
+        """The baseline with one more subgroup; ValueError when it is too small or not finite."""
+        weight, estimate = spread_estimate(subgroup, spread=self.spread, place=len(self.subgroups) + 1)
+        return replace(
+            self, subgroups=(*self.subgroups, tuple(subgroup)), count=self.count + len(subgroup),
+            total=self.total + sum(map(Fraction, subgroup)), weight=self.weight + Fraction(weight),
+            weighted=self.weighted + Fraction(weight * estimate),
+        )  # fmt: skip
+
+    def limits(self) -> SubgroupLimits:
+        """The limits so far; ValueError when there is no subgroup or none has any spread."""
+        if not self.subgroups:
+            raise ValueError("No subgroup is given; at least 1 is needed for limits.")
+        centre, sigma = float(self.total) / self.count, float(self.weighted) / float(self.weight)
+        return subgroup_chart(self.subgroups, spread=self.spread, centre=centre, sigma=sigma, excluded={})
 
 
 @dataclass(frozen=True, slots=True)

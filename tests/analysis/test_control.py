@@ -12,7 +12,7 @@ from scipy import integrate, stats
 
 from analysis.control import individuals_limits, subgroup_limits
 from analysis.control_constants import c4, chart_constants, d2, d3
-from analysis.running import RunningBaseline
+from analysis.running import RunningBaseline, RunningSubgroups
 
 SERIES = st.lists(st.floats(-1e3, 1e3, allow_subnormal=False), min_size=3, max_size=40)
 
@@ -69,6 +69,16 @@ def test_running_baseline_is_identical_to_the_whole_series(values: list[float]) 
     for value in values:
         running = running.with_value(value)
     assert running.limits() == individuals_limits(values)
+
+
+@pytest.mark.parametrize("spread", ["range", "sd"])
+def test_running_subgroups_are_identical_to_the_whole_baseline(spread: str) -> None:
+    rng = np.random.default_rng(6)
+    subgroups = [rng.normal(10, 0.1, n).tolist() for n in rng.integers(2, 7, 60)]
+    running = RunningSubgroups(spread)
+    for count, subgroup in enumerate(subgroups, start=1):
+        running = running.with_subgroup(subgroup)
+        assert running.limits() == subgroup_limits(subgroups[:count], spread=spread)
 
 
 def test_subgroup_limits_of_unequal_sizes_widen_for_the_smaller_subgroup() -> None:
