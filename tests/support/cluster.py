@@ -29,6 +29,8 @@ SETTINGS = {
 @pytest.hookimpl(tryfirst=True)
 def pytest_load_initial_conftests(early_config: pytest.Config, parser: Any, args: list[str]) -> None:
     """Start both and name them in the environment; the workers of xdist inherit it."""
+    if os.environ.get("LAB_REQUIRE_BROWSER") == "1" and not Path("/usr/bin/chromium").exists():
+        raise pytest.UsageError("LAB_REQUIRE_BROWSER is 1, and there is no /usr/bin/chromium: install it.")
     for name, value in SETTINGS.items():
         os.environ.setdefault(name, value)
     number = os.environ.get("PYTEST_XDIST_WORKER", "").removeprefix("gw")
