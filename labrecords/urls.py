@@ -89,6 +89,8 @@ standard_urls = [
     path("standards/record/", standard.record, name="standard-record"),
     path("standards/certificates/<int:pk>/", standard.certificate, name="standard-certificate"),
     path("standards/<str:number>/", standard.detail, name="standard-detail"),
+    path("standards/<str:number>/correct/", standard.correct, name="standard-correct"),
+    path("standards/<str:number>/supersede/", standard.supersede, name="standard-supersede"),
     path("standards/<str:number>/issue/", standard.issue, name="standard-issue"),
     path("standards/<str:number>/withdraw/", standard.withdraw, name="standard-withdraw"),
 ]
@@ -102,6 +104,7 @@ titrant_urls = [
     path("lots/", titrant_lot.list, name="titrant_lot-list"),
     path("lots/<str:number>/", titrant_lot.detail, name="titrant_lot-detail"),
     path("lots/<str:number>/label/", titrant_lot.label, name="titrant_lot-label"),
+    path("lots/<str:number>/expire/", titrant_lot.expire, name="titrant_lot-expire"),
     path("lots/<str:number>/withdraw/", titrant_lot.withdraw, name="titrant_lot-withdraw"),
 ]
 

@@ -4,13 +4,17 @@ from __future__ import annotations
 
 from django import forms
 
+from labrecords.forms.fields import SomeOfField, TextField
+from labrecords.forms.register import ReasonForm
 from labrecords.models import Role
 
 
 class SignInForm(forms.Form):
     """Name and password."""
 
-    username = forms.CharField(max_length=40, label="Name for signing in", error_messages={"required": "Name is empty."})
+    username = forms.CharField(
+        max_length=40, label="Name for signing in", error_messages={"required": "Name is empty."}
+    )
     password = forms.CharField(
         max_length=128, label="Password", strip=False, widget=forms.PasswordInput,
         error_messages={"required": "Password is empty."},
@@ -20,25 +24,27 @@ class SignInForm(forms.Form):
 class AccountForm(forms.Form):
     """A new account."""
 
-    username = forms.CharField(max_length=40, label="Name for signing in", help_text="small letters, digits, dots or hyphens")
-    full_name = forms.CharField(max_length=120, label="Full name", help_text="printed beside every signature")
-    roles = forms.MultipleChoiceField(choices=Role.choices, label="Roles", widget=forms.CheckboxSelectMultiple)
-    password = forms.CharField(
+    username = TextField(
+        max_length=40, label="Name for signing in", help_text="small letters, digits, dots or hyphens"
+    )
+    full_name = TextField(max_length=120, label="Full name", help_text="printed beside every signature")
+    roles = SomeOfField(choices=Role.choices, label="Roles")
+    password = TextField(
         max_length=128, label="First password", strip=False, widget=forms.PasswordInput,
         help_text="12 characters or more; the person changes it after the first sign-in",
     )  # fmt: skip
 
 
-class CorrectionForm(forms.Form):
+class CorrectionForm(ReasonForm):
     """A change of a person's name or roles."""
 
-    full_name = forms.CharField(max_length=120, label="Full name")
-    roles = forms.MultipleChoiceField(choices=Role.choices, label="Roles", widget=forms.CheckboxSelectMultiple)
-    reason = forms.CharField(max_length=500, label="Reason")
+    full_name = TextField(max_length=120, label="Full name")
+    roles = SomeOfField(choices=Role.choices, label="Roles")
+    field_order = ("full_name", "roles", "reason")
 
 
 class PasswordForm(forms.Form):
     """A person's own new password."""
 
-    current = forms.CharField(max_length=128, label="Current password", strip=False, widget=forms.PasswordInput)
-    password = forms.CharField(max_length=128, label="New password", strip=False, widget=forms.PasswordInput)
+    current = TextField(max_length=128, label="Current password", strip=False, widget=forms.PasswordInput)
+    password = TextField(max_length=128, label="New password", strip=False, widget=forms.PasswordInput)

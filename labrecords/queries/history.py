@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from datetime import datetime
 from typing import Any
@@ -11,14 +11,29 @@ from django.db.models import Model, Q
 
 from labrecords.models import AuditChange, AuditEvent, Run, Standardization
 
-SILENT = {"id", "corrections", "state", "entered_at", "excluded_at", "excluded_by_id", "entered_by_id", "is_excluded"}
+SILENT = {
+    "id",
+    "corrections",
+    "state",
+    "entered_at",
+    "excluded_at",
+    "excluded_by_id",
+    "entered_by_id",
+    "is_excluded",
+}
 VERBS = {
-    "record": "recorded", "correct": "corrected", "exclude": "excluded", "submit": "submitted", "approve": "approved",
+    "record": "recorded", "correct": "corrected", "exclude": "excluded", "submit": "submitted",
+    "approve": "approved",
     "return": "returned", "void": "voided", "withdraw": "withdrew", "open": "opened", "close": "closed",
-    "release": "released", "reject": "rejected", "hold": "put on hold", "issue": "issued", "supersede": "superseded",
-    "start": "started", "add": "added", "assess": "assessed", "plan": "planned retests for", "answer": "answered",
-    "make_effective": "made effective", "set_limits": "set limits of", "sign_in": "signed in", "sign_out": "signed out",
-    "change_password": "changed the password of", "calibrate": "calibrated",
+    "release": "released", "reject": "rejected", "hold": "put on hold", "issue": "issued",
+    "supersede": "superseded",
+    "start": "started", "add": "added", "assess": "assessed", "plan": "planned retests for",
+    "answer": "answered",
+    "make_effective": "made effective", "set_limits": "set limits of", "sign_in": "signed in",
+    "sign_out": "signed out",
+    "fail_sign_in": "was named in a sign-in that failed", "change_password": "changed the password of",
+    "calibrate": "calibrated", "expire": "marked as expired",
+    "withdraw_calibration": "withdrew a calibration of",
 }  # fmt: skip
 
 
@@ -35,10 +50,11 @@ class HistoryLine:
     is_simulated: bool
 
 
-def sentences_about(record: Model, *, limit: int = 200) -> list[HistoryLine]:
-    """Events that changed a record or a part of it, oldest first."""
-    table, key = record._meta.db_table, str(record.pk)
-    touched = Q(changes__table_name=table, changes__record_key=key)
+def sentences_about(record: Model, *, parts: Iterable[Model] = (), limit: int = 200) -> list[HistoryLine]:
+    """Events that changed a record or one of the parts named, oldest first."""
+    touched = Q()
+    for changed in (record, *parts):
+        touched |= Q(changes__table_name=changed._meta.db_table, changes__record_key=str(changed.pk))
     if isinstance(record, Run | Standardization):
         touched |= Q(subject=record.number)
     ids = AuditEvent.objects.filter(touched).values_list("pk", flat=True).distinct()[: limit * 5]
@@ -64,10 +80,14 @@ def sentence_of(event: AuditEvent) -> str:
     noun, _, verb = event.action.partition(".")
     spoken = VERBS.get(verb, verb.replace("_", " "))
     subject = f" {event.subject}" if event.subject else ""
-    if noun == "user" and verb in ("sign_in", "sign_out"):
+    if noun == "user" and verb in ("sign_in", "sign_out", "fail_sign_in"):
         return spoken
     if noun == "replicate":
-        return f"{spoken} a reading of{subject}" if verb in ("record", "correct") else f"{spoken} a titration of{subject}"
+        return (
+            f"{spoken} a reading of{subject}"
+            if verb in ("record", "correct")
+            else f"{spoken} a titration of{subject}"
+        )
     return f"{spoken} {noun.replace('_', ' ')}{subject}"
 
 

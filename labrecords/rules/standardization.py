@@ -51,6 +51,8 @@ def objections_to_using_standard(standard: ReferenceStandard, *, lot: TitrantLot
         found.append(f"Reference standard {standard.number} is {standard.state}. Choose one in use.")
     if standard.expires_on < day:
         found.append(f"Reference standard {standard.number} lapsed on {standard.expires_on:%-d %b %Y}. Choose another.")
+    if standard.superseded_by_id is not None:
+        found.append(f"Reference standard {standard.number} is superseded by {standard.superseded_by}. Choose that one.")
     return found
 
 

@@ -12,8 +12,12 @@ from django.utils import timezone
 
 from labrecords.errors import refuse_if
 from labrecords.models import Instrument, InstrumentCalibration, Meaning, User
+from labrecords.queries.lineage import runs_resting_on, standardizations_resting_on
 from labrecords.rules.instrument_register import (
-    objections_to_calibrating, objections_to_recording_instrument, objections_to_withdrawing_calibration,
+    objections_to_calibrating,
+    objections_to_recording_instrument,
+    objections_to_superseding_instrument,
+    objections_to_withdrawing_calibration,
     objections_to_withdrawing_instrument,
 )  # fmt: skip
 from labrecords.rules.review import objections_to_reason
@@ -30,7 +34,8 @@ def record_instrument(
 ) -> Instrument:  # fmt: skip
     """Record an instrument; it is used once it has a calibration."""
     instrument = Instrument(
-        identifier=identifier, kind=kind, unit=unit, resolution=resolution, tolerance=tolerance, capacity=capacity,
+        identifier=identifier, kind=kind, unit=unit, resolution=resolution, tolerance=tolerance,
+        capacity=capacity,
         description=description, place=place,
     )  # fmt: skip
     refuse_if(objections_to_recording_instrument(instrument, by=by))
@@ -41,14 +46,14 @@ def record_instrument(
 
 @transaction.atomic(durable=True)
 def supersede_instrument(instrument: Instrument, *, by: User, reason: str, **new: Any) -> Instrument:
-    """Replace an instrument's entry by a corrected one under another identifier; the old one stays with its uses."""
-    instrument = Instrument.objects.select_for_update().get(pk=instrument.pk)
+    """Replace an entry by a corrected one under another identifier; the old one stays with its uses."""
+    instrument = _locked(instrument)
     successor = Instrument(**new)
     refuse_if(
         [
+            *objections_to_superseding_instrument(instrument, by=by),
             *objections_to_recording_instrument(successor, by=by),
             *objections_to_reason(reason, what="the instrument is superseded"),
-            *([f"{instrument.identifier} is superseded already."] if instrument.superseded_by_id else []),
         ]
     )
     with audit.event("instrument.supersede", by=by, subject=instrument.identifier, reason=reason):
@@ -61,7 +66,7 @@ def supersede_instrument(instrument: Instrument, *, by: User, reason: str, **new
 @transaction.atomic(durable=True)
 def withdraw_instrument(instrument: Instrument, *, by: User, reason: str) -> Instrument:
     """Take an instrument out of use; what was done with it stays."""
-    instrument = Instrument.objects.select_for_update().get(pk=instrument.pk)
+    instrument = _locked(instrument)
     refuse_if(
         [
             *objections_to_withdrawing_instrument(instrument, by=by),
@@ -77,26 +82,25 @@ def withdraw_instrument(instrument: Instrument, *, by: User, reason: str) -> Ins
 @transaction.atomic(durable=True)
 def record_calibration(
     instrument: Instrument, *, by: User, calibrated_on: date, due_on: date, performed_by: str,
-    uncertainty: Decimal | None = None, corrections: Sequence[Sequence[str]] = (), slope_percent: Decimal | None = None,
+    uncertainty: Decimal | None = None, corrections: Sequence[Sequence[str]] = (),
+    slope_percent: Decimal | None = None,
     remarks: str = "", certificate: tuple[str, str, bytes] | None = None,
 ) -> InstrumentCalibration:  # fmt: skip
     """Record a calibration, with its certificate as (name, media type, bytes) where there is one."""
+    calibration = InstrumentCalibration(
+        instrument=_locked(instrument), calibrated_on=calibrated_on, due_on=due_on, performed_by=performed_by,
+        uncertainty=uncertainty, corrections=[list(row) for row in corrections], slope_percent=slope_percent,
+        remarks=remarks,
+    )  # fmt: skip
     with audit.event("instrument.calibrate", by=by, subject=instrument.identifier) as event:
-        refuse_if(
-            objections_to_calibrating(
-                instrument, by=by, calibrated_on=calibrated_on, due_on=due_on, performed_by=performed_by,
-                corrections=corrections, slope_percent=slope_percent, today=timezone.localtime(event.at).date(),
-            )
-        )  # fmt: skip
-        file = None
+        refuse_if(objections_to_calibrating(calibration, by=by, today=timezone.localtime(event.at).date()))
         if certificate is not None:
             name, media_type, content = certificate
-            file = store_file(name, media_type=media_type, content=content, by=by, at=event.at)
-        return InstrumentCalibration.objects.create(
-            instrument=instrument, calibrated_on=calibrated_on, due_on=due_on, performed_by=performed_by,
-            uncertainty=uncertainty, corrections=[list(row) for row in corrections], slope_percent=slope_percent,
-            remarks=remarks, certificate=file,
-        )  # fmt: skip
+            calibration.certificate = store_file(
+                name, media_type=media_type, content=content, by=by, at=event.at
+            )
+        calibration.save()
+    return calibration
 
 
 @transaction.atomic(durable=True)
@@ -105,7 +109,9 @@ def withdraw_calibration(
 ) -> InstrumentCalibration:
     """Withdraw a calibration that proved wrong; everything measured under it is put in question."""
     calibration = (
-        InstrumentCalibration.objects.select_for_update(of=("self",)).select_related("instrument").get(pk=calibration.pk)
+        InstrumentCalibration.objects.select_for_update(of=("self",))
+        .select_related("instrument")
+        .get(pk=calibration.pk)
     )
     refuse_if(
         [
@@ -120,10 +126,24 @@ def withdraw_calibration(
         calibration.save(update_fields=["withdrawn_at", "withdrawn_reason"])
         sign(
             Meaning.WITHDRAWN, by=by, credentials=credentials, noun="calibration", record_id=calibration.pk,
-            number=str(calibration), content={"noun": "calibration", "instrument": identifier, "reason": reason},
+            number=str(calibration), content={"noun": "calibration", "instrument": identifier,
+            "reason": reason},
             reason=reason, zone=timezone.get_current_timezone_name(),
         )  # fmt: skip
-        uses = calibration.uses.all()
-        raise_questions_on([use.standardization_id for use in uses if use.standardization_id], because=because, by=by)
-        raise_questions_on_runs([use.run_id for use in uses if use.run_id], because=because, by=by)
+        _question_uses(calibration, because=because, by=by)
     return calibration
+
+
+def _question_uses(calibration: InstrumentCalibration, *, because: str, by: User) -> None:
+    """Each record once, also where a run used the instrument and rests on a standardization that did."""
+    uses = list(calibration.uses.all())
+    standardizations = [use.standardization_id for use in uses if use.standardization_id]
+    raise_questions_on(standardizations, because=because, by=by)
+    resting = set(runs_resting_on(standardizations_resting_on(standardizations)))
+    runs = [use.run_id for use in uses if use.run_id and use.run_id not in resting]
+    raise_questions_on_runs(runs, because=because, by=by)
+
+
+def _locked(instrument: Instrument) -> Instrument:
+    found = Instrument.objects.select_for_update(of=("self",)).select_related("superseded_by")
+    return found.get(pk=instrument.pk)

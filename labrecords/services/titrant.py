@@ -13,8 +13,12 @@ from labrecords.errors import refuse_if
 from labrecords.models import LotState, Meaning, Titrant, TitrantLot, User
 from labrecords.rules.review import objections_to_reason
 from labrecords.rules.titrant_register import (
-    objections_to_recording_lot, objections_to_recording_titrant, objections_to_withdrawing_lot,
-)  # fmt: skip
+    objections_to_expiring_lot,
+    objections_to_recording_lot,
+    objections_to_recording_titrant,
+    objections_to_superseding_titrant,
+    objections_to_withdrawing_lot,
+)
 from labrecords.services import audit
 from labrecords.services.question import raise_questions_on
 from labrecords.services.signature import Credentials, sign
@@ -33,13 +37,15 @@ def record_titrant(*, by: User, **rule: Any) -> Titrant:
 @transaction.atomic(durable=True)
 def supersede_titrant(titrant: Titrant, *, by: User, reason: str, **rule: Any) -> Titrant:
     """Replace a titrant's rule by a new entry under a new code; lots keep the one they were made under."""
-    titrant = Titrant.objects.select_for_update().get(pk=titrant.pk)
+    titrant = (
+        Titrant.objects.select_for_update(of=("self",)).select_related("superseded_by").get(pk=titrant.pk)
+    )
     successor = Titrant(**rule)
     refuse_if(
         [
+            *objections_to_superseding_titrant(titrant, by=by),
             *objections_to_recording_titrant(successor, by=by),
             *objections_to_reason(reason, what="the titrant is superseded"),
-            *([f"{titrant.code} is superseded already."] if titrant.superseded_by_id else []),
         ]
     )
     with audit.event("titrant.supersede", by=by, subject=titrant.code, reason=reason):
@@ -51,12 +57,14 @@ def supersede_titrant(titrant: Titrant, *, by: User, reason: str, **rule: Any) -
 
 @transaction.atomic(durable=True)
 def record_lot(
-    titrant: Titrant, *, by: User, number: str, prepared_on: date, prepared_by: User, reagent_lot: str, volume: Decimal,
+    titrant: Titrant, *, by: User, number: str, prepared_on: date, prepared_by: User, reagent_lot: str,
+    volume: Decimal,
     expires_on: date | None = None,
 ) -> TitrantLot:  # fmt: skip
     """Record a bottle or tank; it stays in quarantine until its first standardization is approved."""
     lot = TitrantLot(
-        titrant=titrant, number=number, prepared_on=prepared_on, prepared_by=prepared_by, reagent_lot=reagent_lot,
+        titrant=titrant, number=number, prepared_on=prepared_on, prepared_by=prepared_by,
+        reagent_lot=reagent_lot,
         volume=volume, expires_on=expires_on or prepared_on + timedelta(days=titrant.shelf_life_days),
     )  # fmt: skip
     with audit.event("titrant_lot.record", by=by, subject=number) as event:
@@ -66,16 +74,25 @@ def record_lot(
 
 
 @transaction.atomic(durable=True)
-def withdraw_lot(lot: TitrantLot, *, by: User, credentials: Credentials, reason: str, is_doubtful: bool) -> TitrantLot:
-    """Take a lot out of use; when its concentration is doubtful, everything that rests on it is put in question."""
+def withdraw_lot(
+    lot: TitrantLot, *, by: User, credentials: Credentials, reason: str, is_doubtful: bool
+) -> TitrantLot:
+    """Take a lot out of use; when it is doubtful, everything that rests on it is put in question."""
     lot = TitrantLot.objects.select_for_update(of=("self",)).select_related("titrant").get(pk=lot.pk)
-    refuse_if([*objections_to_withdrawing_lot(lot, by=by), *objections_to_reason(reason, what="the lot is withdrawn")])
+    refuse_if(
+        [
+            *objections_to_withdrawing_lot(lot, by=by),
+            *objections_to_reason(reason, what="the lot is withdrawn"),
+        ]
+    )
     with audit.event("titrant_lot.withdraw", by=by, subject=lot.number, reason=reason):
         lot.state, lot.withdrawn_reason = LotState.WITHDRAWN, reason
         lot.save(update_fields=["state", "withdrawn_reason"])
         sign(
-            Meaning.WITHDRAWN, by=by, credentials=credentials, noun="titrant_lot", record_id=lot.pk, number=lot.number,
-            content={"noun": "titrant_lot", "number": lot.number, "titrant": lot.titrant.code, "reason": reason},
+            Meaning.WITHDRAWN, by=by, credentials=credentials, noun="titrant_lot", record_id=lot.pk,
+            number=lot.number,
+            content={"noun": "titrant_lot", "number": lot.number, "titrant": lot.titrant.code,
+            "reason": reason},
             reason=reason, zone=timezone.get_current_timezone_name(),
         )  # fmt: skip
         if is_doubtful:
@@ -89,13 +106,7 @@ def expire_lot(lot: TitrantLot, *, by: User) -> TitrantLot:
     """Mark a lot whose shelf life is over; what was done with it in time stays good."""
     lot = TitrantLot.objects.select_for_update().get(pk=lot.pk)
     with audit.event("titrant_lot.expire", by=by, subject=lot.number) as event:
-        today = timezone.localtime(event.at).date()
-        refuse_if(
-            [
-                *([] if lot.expires_on < today else [f"Lot {lot.number} lasts until {lot.expires_on:%-d %b %Y}."]),
-                *([] if lot.state in (LotState.IN_USE, LotState.QUARANTINED) else [f"Lot {lot.number} is {lot.state}."]),
-            ]
-        )
+        refuse_if(objections_to_expiring_lot(lot, by=by, today=timezone.localtime(event.at).date()))
         lot.state = LotState.EXPIRED
         lot.save(update_fields=["state"])
     return lot

@@ -8,14 +8,23 @@ from django.db import connection, transaction
 
 from labrecords.errors import Refused, refuse_if
 from labrecords.models import Role, User
-from labrecords.rules.user import objections_to_account, objections_to_administering
+from labrecords.rules.review import objections_to_reason
+from labrecords.rules.user import (
+    objections_to_account,
+    objections_to_administering,
+    objections_to_changing_password,
+    objections_to_closing_account,
+    objections_to_correcting_account,
+)
 from labrecords.services import audit
 
 
 @transaction.atomic(durable=True)
 def record_user(*, by: User, username: str, full_name: str, roles: list[str], password: str) -> User:
     """Record a new account; Refused when the name is taken, a role unknown or the password weak."""
-    refuse_if([*objections_to_administering(by), *objections_to_account(username, full_name=full_name, roles=roles)])
+    refuse_if(
+        [*objections_to_administering(by), *objections_to_account(username, full_name=full_name, roles=roles)]
+    )
     user = User(username=username, full_name=full_name, roles=roles)
     _set_password(user, password)
     with audit.event("user.record", by=by, subject=username):
@@ -29,7 +38,11 @@ def record_first_administrator(*, username: str, full_name: str, password: str) 
     roles = [Role.ADMINISTRATOR.value]
     refuse_if(
         [
-            *(["There are accounts already; an administrator records others."] if User.objects.exists() else []),
+            *(
+                ["There are accounts already; an administrator records others."]
+                if User.objects.exists()
+                else []
+            ),
             *objections_to_account(username, full_name=full_name, roles=roles),
         ]
     )
@@ -48,9 +61,8 @@ def correct_user(user: User, *, by: User, full_name: str, roles: list[str], reas
     user = User.objects.select_for_update().get(pk=user.pk)
     refuse_if(
         [
-            *objections_to_administering(by),
-            *objections_to_account(user.username, full_name=full_name, roles=roles, known=user),
-            *([] if reason.strip() else ["Reason is empty: say why the account is changed."]),
+            *objections_to_correcting_account(user, by=by, full_name=full_name, roles=roles),
+            *objections_to_reason(reason, what="the account is changed"),
         ]
     )
     user.full_name, user.roles = full_name, roles
@@ -65,9 +77,8 @@ def close_user(user: User, *, by: User, reason: str) -> User:
     user = User.objects.select_for_update().get(pk=user.pk)
     refuse_if(
         [
-            *objections_to_administering(by),
-            *([f"{user} is you: another administrator closes your account."] if user.pk == by.pk else []),
-            *([] if reason.strip() else ["Reason is empty: say why the account is closed."]),
+            *objections_to_closing_account(user, by=by),
+            *objections_to_reason(reason, what="the account is closed"),
         ]
     )
     user.is_active = False
@@ -78,14 +89,9 @@ def close_user(user: User, *, by: User, reason: str) -> User:
 
 @transaction.atomic(durable=True)
 def change_password(user: User, *, by: User, current: str, password: str) -> User:
-    """A person changes their own password and knows the current one; nobody sets another's to sign as them."""
+    """A person changes their own password; nobody sets another's to sign as them."""
     user = User.objects.select_for_update().get(pk=user.pk)
-    refuse_if(
-        [
-            *([] if user.pk == by.pk else ["A password is changed by its owner only."]),
-            *([] if user.check_password(current) else ["Current password is not right; nothing was changed."]),
-        ]
-    )
+    refuse_if(objections_to_changing_password(user, by=by, current=current))
     _set_password(user, password)
     with audit.event("user.change_password", by=by, subject=user.username):
         user.save(update_fields=["password"])
@@ -103,6 +109,19 @@ def record_sign_in(user: User) -> None:
 def record_sign_out(user: User) -> None:
     """Write that a person signed out."""
     with audit.event("user.sign_out", by=user, subject=user.username):
+        pass
+
+
+@transaction.atomic(durable=True)
+def record_failed_sign_in(username: str, *, address: str) -> None:
+    """Write that an account's name was typed with a wrong password; unknown names are not kept."""
+    user = User.objects.filter(username=username).first()
+    if user is None:
+        return
+    reason = f"wrong password, from {address or 'an unknown address'}"
+    if not user.is_active:
+        reason = f"the account is closed, from {address or 'an unknown address'}"
+    with audit.event("user.fail_sign_in", by=user, subject=user.username, reason=reason):
         pass
 
 

@@ -35,7 +35,8 @@ def for_roles(*roles: str) -> Callable[[View], View]:
             if not request.user.is_authenticated:
                 return redirect_to_login(request.get_full_path())
             if not set(roles) & set(request.user.roles):
-                reason = f"This page is for {' and '.join(roles)}. You are signed in as {request.user.full_name}."
+                whose = " and ".join(f"{role}s" for role in roles)
+                reason = f"This page is for {whose}. You are signed in as {request.user.full_name}."
                 return render(request, "errors/403.html", {"reason": reason}, status=403)
             return view(request, *args, **kwargs)
 

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from typing import Any
 
-from django import forms
 from django.contrib import messages
 from django.http import HttpRequest, HttpResponse
 from django.shortcuts import get_object_or_404, redirect, render
@@ -13,14 +12,15 @@ from django.views.decorators.http import require_GET, require_http_methods, requ
 
 from labrecords.errors import Refused
 from labrecords.figures.fitness_line import fitness_line
-from labrecords.forms.register import CalibrationForm, InstrumentForm, initial_of
-from labrecords.models import Instrument, InstrumentCalibration
+from labrecords.forms.instrument import CalibrationForm, InstrumentForm, SupersedingInstrumentForm
+from labrecords.forms.register import initial_of
+from labrecords.models import Instrument, InstrumentCalibration, InstrumentKind
 from labrecords.queries.history import sentences_about
-from labrecords.queries.instrument import calibration_at
+from labrecords.queries.instrument import calibration_at, calibrations_of, records_using
 from labrecords.queries.register import instruments
 from labrecords.services import instrument as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.recording import recorded
+from labrecords.views.recording import page_of, recorded
 from labrecords.views.sheet import typed_credentials
 
 
@@ -28,15 +28,17 @@ from labrecords.views.sheet import typed_credentials
 @require_GET
 def list(request: HttpRequest) -> HttpResponse:
     """All instruments with the day their calibration ends."""
-    q, today = request.GET.get("q", ""), timezone.localdate()
-    return render(request, "instrument/list.html", {"instruments": instruments(q=q), "q": q, "today": today})
+    q, kind, today = request.GET.get("q", ""), request.GET.get("kind", ""), timezone.localdate()
+    found = page_of(request, instruments(day=today, q=q, kind=kind))
+    context = {"page_obj": found, "q": q, "kind": kind, "kinds": InstrumentKind.choices, "today": today}
+    return render(request, "instrument/list.html", context)
 
 
 @signed_in
 @require_GET
 def detail(request: HttpRequest, identifier: str) -> HttpResponse:
     """One instrument with its calibrations."""
-    return render(request, "instrument/detail.html", _context(identifier))
+    return _shown(request, identifier)
 
 
 @for_roles("administrator", "supervisor")
@@ -44,9 +46,9 @@ def detail(request: HttpRequest, identifier: str) -> HttpResponse:
 def record(request: HttpRequest) -> HttpResponse:
     """Record an instrument."""
     return recorded(
-        request, InstrumentForm(request.POST or None), template="register/record.html", change=service.record_instrument,
-        to=lambda instrument: ("instrument-detail", instrument.identifier),
-        context={"title": "Record an instrument", "back": "instrument-list"},
+        request, InstrumentForm(request.POST or None), template="register/record.html",
+        change=service.record_instrument, to=_page, context={"title": "Record an instrument",
+        "back": "instrument-list"},
     )  # fmt: skip
 
 
@@ -55,15 +57,13 @@ def record(request: HttpRequest) -> HttpResponse:
 def supersede(request: HttpRequest, identifier: str) -> HttpResponse:
     """Record the entry that takes an instrument's place."""
     instrument = get_object_or_404(Instrument, identifier=identifier)
-    form = InstrumentForm(request.POST or None, initial=initial_of(instrument, InstrumentForm))
-    form.fields["reason"] = forms.CharField(max_length=500, label="Reason")
+    form = SupersedingInstrumentForm(request.POST or None, initial=initial_of(instrument, InstrumentForm))
 
     def change(**clean: Any) -> Instrument:
         return service.supersede_instrument(instrument, **clean)
 
-    context = {"title": f"Supersede {identifier}", "back": "instrument-list"}
-    to = lambda new: ("instrument-detail", new.identifier)  # noqa: E731
-    return recorded(request, form, template="register/record.html", change=change, to=to, context=context)
+    context = {"title": f"Supersede {identifier}", "back": "instrument-list", "button": "Supersede"}
+    return recorded(request, form, template="register/record.html", change=change, to=_page, context=context)
 
 
 @for_roles("administrator", "supervisor", "analyst")
@@ -72,13 +72,12 @@ def calibrate(request: HttpRequest, identifier: str) -> HttpResponse:
     """Record a calibration."""
     instrument = get_object_or_404(Instrument, identifier=identifier)
 
-    def change(**clean: Any) -> InstrumentCalibration:
-        return service.record_calibration(instrument, **clean)
+    def change(**clean: Any) -> Instrument:
+        return service.record_calibration(instrument, **clean).instrument
 
     form = CalibrationForm(request.POST or None, request.FILES or None)
     context = {"title": f"Calibration of {identifier}", "back": "instrument-list", "has_file": True}
-    to = lambda _: ("instrument-detail", identifier)  # noqa: E731
-    return recorded(request, form, template="register/record.html", change=change, to=to, context=context)
+    return recorded(request, form, template="register/record.html", change=change, to=_page, context=context)
 
 
 @for_roles("administrator", "supervisor")
@@ -89,7 +88,7 @@ def withdraw(request: HttpRequest, identifier: str) -> HttpResponse:
     try:
         service.withdraw_instrument(instrument, by=request.user, reason=request.POST.get("reason", ""))
     except Refused as refusal:
-        return render(request, "instrument/detail.html", _context(identifier) | {"refused": refusal.reasons}, status=409)
+        return _shown(request, identifier, refused=refusal.reasons)
     messages.info(request, f"{identifier} is withdrawn.")
     return redirect("instrument-detail", identifier)
 
@@ -104,21 +103,32 @@ def withdraw_calibration(request: HttpRequest, pk: int) -> HttpResponse:
         credentials, reason = typed_credentials(request.POST)
         service.withdraw_calibration(calibration, by=request.user, credentials=credentials, reason=reason)
     except Refused as refusal:
-        return render(request, "instrument/detail.html", _context(identifier) | {"refused": refusal.reasons}, status=409)
+        return _shown(request, identifier, refused=refusal.reasons)
+    messages.info(request, f"The calibration of {identifier} is withdrawn.")
     return redirect("instrument-detail", identifier)
 
 
-def _context(identifier: str) -> dict[str, Any]:
-    instrument = get_object_or_404(Instrument, identifier=identifier)
-    holds, today, line = calibration_at(instrument, at=timezone.now()), timezone.localdate(), ""
-    if holds is not None:
-        whole = max((holds.due_on - holds.calibrated_on).days, 1)
-        line = fitness_line((today - holds.calibrated_on).days / whole, label=f"{(holds.due_on - today).days} days left")
-    return {
+def _page(instrument: Instrument) -> tuple[str, ...]:
+    return "instrument-detail", instrument.identifier
+
+
+def _shown(request: HttpRequest, identifier: str, *, refused: tuple[str, ...] = ()) -> HttpResponse:
+    instrument = get_object_or_404(Instrument.objects.select_related("superseded_by"), identifier=identifier)
+    calibrations = calibrations_of(instrument)
+    context = {
         "instrument": instrument,
-        "holds": holds,
-        "fitness": line,
-        "days_left": (holds.due_on - today).days if holds else None,
-        "calibrations": instrument.calibrations.select_related("certificate").order_by("-calibrated_on", "-id"),
-        "history": sentences_about(instrument),
-    }
+        "calibrations": calibrations,
+        "uses": records_using(instrument),
+        "history": sentences_about(instrument, parts=calibrations),
+        "refused": refused,
+    } | _fitness(instrument)
+    return render(request, "instrument/detail.html", context, status=409 if refused else 200)
+
+
+def _fitness(instrument: Instrument) -> dict[str, Any]:
+    holds, today = calibration_at(instrument, at=timezone.now()), timezone.localdate()
+    if holds is None:
+        return {"holds": None}
+    whole, left = (holds.due_on - holds.calibrated_on).days, (holds.due_on - today).days
+    words = f"{left} day{'' if left == 1 else 's'} left"
+    return {"holds": holds, "left": words, "fitness": fitness_line(1 - left / whole, label=words)}

@@ -1,15 +1,24 @@
-"""The way every recording page goes: a form, one service call, the sentences of a refusal, or on to the record."""
+"""The way every recording page goes: a form, one service call, a refusal's sentences, or on to the record."""
 
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from typing import Any
 
+from django.core.paginator import Page, Paginator
+from django.db.models import QuerySet
 from django.forms import Form
 from django.http import HttpRequest, HttpResponse
 from django.shortcuts import redirect, render
 
 from labrecords.errors import Refused
+
+ROWS = 50
+
+
+def page_of(request: HttpRequest, found: QuerySet[Any]) -> Page[Any]:
+    """Fifty rows of a list: the page that the address asks for, or the nearest one that exists."""
+    return Paginator(found, ROWS).get_page(request.GET.get("page"))
 
 
 def recorded(
@@ -29,5 +38,5 @@ def recorded(
             return redirect(name, *arguments)
         except Refused as refusal:
             refused = refusal.reasons
-    status = 400 if request.method == "POST" else 200
+    status = 409 if refused else 400 if request.method == "POST" else 200
     return render(request, template, {"form": form, "refused": refused, **(context or {})}, status=status)

@@ -2,18 +2,21 @@
 
 from __future__ import annotations
 
+from typing import Any
+
 from django.http import HttpRequest, HttpResponse
 from django.shortcuts import get_object_or_404, render
 from django.views.decorators.http import require_GET, require_http_methods
 
-from labrecords.forms.register import SubstanceForm, SupersedingSubstanceForm, initial_of
+from labrecords.forms.register import initial_of
+from labrecords.forms.substance import SubstanceForm, SupersedingSubstanceForm
 from labrecords.models import Substance
 from labrecords.queries.history import sentences_about
 from labrecords.queries.register import substances
 from labrecords.rules.cautions import cautions_for
 from labrecords.services import substance as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.recording import recorded
+from labrecords.views.recording import page_of, recorded
 
 
 @signed_in
@@ -21,7 +24,7 @@ from labrecords.views.recording import recorded
 def list(request: HttpRequest) -> HttpResponse:
     """All substances, found by name or formula."""
     q = request.GET.get("q", "")
-    return render(request, "substance/list.html", {"substances": substances(q=q), "q": q})
+    return render(request, "substance/list.html", {"page_obj": page_of(request, substances(q=q)), "q": q})
 
 
 @signed_in
@@ -29,7 +32,11 @@ def list(request: HttpRequest) -> HttpResponse:
 def detail(request: HttpRequest, pk: int) -> HttpResponse:
     """One substance with its cautions and its history."""
     substance = get_object_or_404(Substance.objects.select_related("superseded_by"), pk=pk)
-    context = {"substance": substance, "cautions": cautions_for(substance.hazards), "history": sentences_about(substance)}
+    context = {
+        "substance": substance,
+        "cautions": cautions_for(substance.hazards),
+        "history": sentences_about(substance),
+    }
     return render(request, "substance/detail.html", context)
 
 
@@ -38,8 +45,9 @@ def detail(request: HttpRequest, pk: int) -> HttpResponse:
 def record(request: HttpRequest) -> HttpResponse:
     """Record a substance."""
     return recorded(
-        request, SubstanceForm(request.POST or None), template="register/record.html", change=service.record_substance,
-        to=lambda substance: ("substance-detail", substance.pk), context={"title": "Record a substance", "back": "substance-list"},
+        request, SubstanceForm(request.POST or None), template="register/record.html",
+        change=service.record_substance,
+        to=_page, context={"title": "Record a substance", "back": "substance-list"},
     )  # fmt: skip
 
 
@@ -50,8 +58,12 @@ def supersede(request: HttpRequest, pk: int) -> HttpResponse:
     substance = get_object_or_404(Substance, pk=pk)
     form = SupersedingSubstanceForm(request.POST or None, initial=initial_of(substance, SubstanceForm))
 
-    def change(**clean):  # type: ignore[no-untyped-def]
+    def change(**clean: Any) -> Substance:
         return service.supersede_substance(substance, **clean)
 
-    context = {"title": f"Supersede {substance.name}", "back": "substance-list"}
-    return recorded(request, form, template="register/record.html", change=change, to=lambda new: ("substance-detail", new.pk), context=context)
+    context = {"title": f"Supersede {substance.name}", "back": "substance-list", "button": "Supersede"}
+    return recorded(request, form, template="register/record.html", change=change, to=_page, context=context)
+
+
+def _page(substance: Substance) -> tuple[str, ...]:
+    return "substance-detail", str(substance.pk)

@@ -4,21 +4,21 @@ from __future__ import annotations
 
 from typing import Any
 
-from django import forms
 from django.http import HttpRequest, HttpResponse
 from django.shortcuts import get_object_or_404, render
 from django.utils import timezone
 from django.views.decorators.http import require_GET, require_http_methods
 
-from labrecords.forms.register import TitrantForm, initial_of
+from labrecords.forms.register import initial_of
+from labrecords.forms.titrant import SupersedingTitrantForm, TitrantForm
 from labrecords.models import Titrant
 from labrecords.queries.bench import lots_of_titrant
 from labrecords.queries.history import sentences_about
-from labrecords.queries.register import titrants
+from labrecords.queries.register import titrant_lots, titrants
 from labrecords.rules.cautions import cautions_for
 from labrecords.services import titrant as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.recording import recorded
+from labrecords.views.recording import page_of, recorded
 
 
 @signed_in
@@ -26,7 +26,7 @@ from labrecords.views.recording import recorded
 def list(request: HttpRequest) -> HttpResponse:
     """All titrants."""
     q = request.GET.get("q", "")
-    return render(request, "titrant/list.html", {"titrants": titrants(q=q), "q": q})
+    return render(request, "titrant/list.html", {"page_obj": page_of(request, titrants(q=q)), "q": q})
 
 
 @signed_in
@@ -37,7 +37,7 @@ def detail(request: HttpRequest, code: str) -> HttpResponse:
     context = {
         "titrant": titrant,
         "in_force": lots_of_titrant(titrant.pk, at=timezone.now()),
-        "lots": titrant.lots.select_related("prepared_by")[:50],
+        "lots": titrant_lots(day=timezone.localdate()).filter(titrant=titrant)[:50],
         "cautions": cautions_for(titrant.substance.hazards),
         "history": sentences_about(titrant),
     }
@@ -49,8 +49,9 @@ def detail(request: HttpRequest, code: str) -> HttpResponse:
 def record(request: HttpRequest) -> HttpResponse:
     """Record a titrant."""
     return recorded(
-        request, TitrantForm(request.POST or None), template="register/record.html", change=service.record_titrant,
-        to=lambda titrant: ("titrant-detail", titrant.code), context={"title": "Record a titrant", "back": "titrant-list"},
+        request, TitrantForm(request.POST or None), template="register/record.html",
+        change=service.record_titrant,
+        to=_page, context={"title": "Record a titrant", "back": "titrant-list"},
     )  # fmt: skip
 
 
@@ -59,12 +60,14 @@ def record(request: HttpRequest) -> HttpResponse:
 def supersede(request: HttpRequest, code: str) -> HttpResponse:
     """Record the entry that takes a titrant's place."""
     titrant = get_object_or_404(Titrant, code=code)
-    form = TitrantForm(request.POST or None, initial=initial_of(titrant, TitrantForm))
-    form.fields["reason"] = forms.CharField(max_length=500, label="Reason")
+    form = SupersedingTitrantForm(request.POST or None, initial=initial_of(titrant, TitrantForm))
 
     def change(**clean: Any) -> Titrant:
         return service.supersede_titrant(titrant, **clean)
 
-    to = lambda new: ("titrant-detail", new.code)  # noqa: E731
-    context = {"title": f"Supersede {code}", "back": "titrant-list"}
-    return recorded(request, form, template="register/record.html", change=change, to=to, context=context)
+    context = {"title": f"Supersede {code}", "back": "titrant-list", "button": "Supersede"}
+    return recorded(request, form, template="register/record.html", change=change, to=_page, context=context)
+
+
+def _page(titrant: Titrant) -> tuple[str, ...]:
+    return "titrant-detail", titrant.code

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import Any
+
 from django.contrib import messages
 from django.contrib.auth import authenticate, login, logout, update_session_auth_hash
 from django.http import HttpRequest, HttpResponse
@@ -10,29 +12,35 @@ from django.utils.http import url_has_allowed_host_and_scheme
 from django.views.decorators.http import require_GET, require_http_methods, require_POST
 
 from labrecords.errors import Refused
+from labrecords.forms.register import initial_of
 from labrecords.forms.user import AccountForm, CorrectionForm, PasswordForm, SignInForm
 from labrecords.models import User
 from labrecords.queries.history import sentences_about
+from labrecords.queries.register import people
 from labrecords.services import user as service
 from labrecords.views.access import for_roles, signed_in
+from labrecords.views.recording import page_of, recorded
 
-REFUSED = "The name or the password is not right. After eight wrong tries the account waits a quarter of an hour."
+REFUSED = (
+    "The name or the password is not right. After eight wrong tries the account waits a quarter of an hour."
+)
 
 
 @require_http_methods(["GET", "POST"])
 def sign_in(request: HttpRequest) -> HttpResponse:
     """Sign in and go on to the page that was asked for."""
-    form = SignInForm(request.POST or None)
-    refused: list[str] = []
+    form, refused = SignInForm(request.POST or None), ()
     if request.method == "POST" and form.is_valid():
         user = authenticate(request, **form.cleaned_data)
         if user is not None:
-            login(request, user)
             service.record_sign_in(user)
+            login(request, user)
             return redirect(_next(request))
-        refused = [REFUSED]
-    status = 401 if refused else 200
-    return render(request, "user/sign_in.html", {"form": form, "refused": refused, "next": _next(request)}, status=status)
+        _record_failure(request, form.cleaned_data["username"])
+        refused = (REFUSED,)
+    status = 401 if refused else 400 if request.method == "POST" else 200
+    context = {"form": form, "refused": refused, "next": _next(request)}
+    return render(request, "user/sign_in.html", context, status=status)
 
 
 @signed_in
@@ -48,39 +56,35 @@ def sign_out(request: HttpRequest) -> HttpResponse:
 @require_GET
 def list(request: HttpRequest) -> HttpResponse:
     """Everybody with an account, closed ones too."""
-    return render(request, "user/list.html", {"people": User.objects.all()})
+    q = request.GET.get("q", "")
+    return render(request, "user/list.html", {"page_obj": page_of(request, people(q=q)), "q": q})
 
 
 @for_roles("administrator")
 @require_http_methods(["GET", "POST"])
 def record(request: HttpRequest) -> HttpResponse:
     """Record a new account."""
-    form, refused = AccountForm(request.POST or None), ()
-    if request.method == "POST" and form.is_valid():
-        try:
-            user = service.record_user(by=request.user, **form.cleaned_data)
-            return redirect("user-detail", user.username)
-        except Refused as refusal:
-            refused = refusal.reasons
-    status = 400 if request.method == "POST" else 200
-    return render(request, "user/record.html", {"form": form, "refused": refused}, status=status)
+    return recorded(
+        request, AccountForm(request.POST or None), template="user/record.html", change=service.record_user,
+        to=lambda user: ("user-detail", user.username),
+    )  # fmt: skip
 
 
 @signed_in
 @require_http_methods(["GET", "POST"])
 def detail(request: HttpRequest, username: str) -> HttpResponse:
     """One person: roles, history; an administrator corrects them here."""
-    person, refused = get_object_or_404(User, username=username), ()
-    start = {"full_name": person.full_name, "roles": person.roles}
-    form = CorrectionForm(request.POST or None, initial=start)
-    if request.method == "POST" and form.is_valid():
-        try:
-            service.correct_user(person, by=request.user, **form.cleaned_data)
-            return redirect("user-detail", username)
-        except Refused as refusal:
-            refused = refusal.reasons
-    context = {"person": person, "form": form, "refused": refused, "history": sentences_about(person)}
-    return render(request, "user/detail.html", context, status=409 if refused else 200)
+    person = get_object_or_404(User, username=username)
+    form = CorrectionForm(request.POST or None, initial=initial_of(person, CorrectionForm))
+
+    def change(**clean: Any) -> User:
+        return service.correct_user(person, **clean)
+
+    context = {"person": person, "history": sentences_about(person)}
+    return recorded(
+        request, form, template="user/detail.html", change=change, context=context,
+        to=lambda user: ("user-detail", user.username),
+    )  # fmt: skip
 
 
 @for_roles("administrator")
@@ -91,8 +95,15 @@ def close(request: HttpRequest, username: str) -> HttpResponse:
     try:
         service.close_user(person, by=request.user, reason=request.POST.get("reason", ""))
     except Refused as refusal:
-        context = {"person": person, "form": CorrectionForm(), "refused": refusal.reasons}
-        return render(request, "user/detail.html", context | {"history": sentences_about(person)}, status=409)
+        form = CorrectionForm(initial=initial_of(person, CorrectionForm))
+        context = {
+            "person": person,
+            "form": form,
+            "refused": refusal.reasons,
+            "history": sentences_about(person),
+        }
+        return render(request, "user/detail.html", context, status=409)
+    messages.info(request, f"The account of {person.full_name} is closed.")
     return redirect("user-detail", username)
 
 
@@ -109,10 +120,19 @@ def change_password(request: HttpRequest) -> HttpResponse:
             return redirect("user-detail", user.username)
         except Refused as refusal:
             refused = refusal.reasons
-    return render(request, "user/change_password.html", {"form": form, "refused": refused}, status=409 if refused else 200)
+    status = 409 if refused else 400 if request.method == "POST" else 200
+    return render(request, "user/change_password.html", {"form": form, "refused": refused}, status=status)
+
+
+def _record_failure(request: HttpRequest, username: str) -> None:
+    """On the trail, unless the account waits already: a flood of tries fills the log and not the trail."""
+    if not getattr(request, "axes_locked_out", False):
+        service.record_failed_sign_in(username.strip(), address=request.META.get("REMOTE_ADDR", ""))
 
 
 def _next(request: HttpRequest) -> str:
     wanted = request.POST.get("next") or request.GET.get("next") or "/"
-    safe = url_has_allowed_host_and_scheme(wanted, allowed_hosts={request.get_host()}, require_https=request.is_secure())
+    safe = url_has_allowed_host_and_scheme(
+        wanted, allowed_hosts={request.get_host()}, require_https=request.is_secure()
+    )
     return wanted if safe else "/"

@@ -115,10 +115,12 @@ def some_version(bench: Bench) -> MethodVersion:
     acid = some_substance(bench.supervisor, name="acetic acid", formula="C2H4O2")
     method = record_method(by=bench.supervisor, code="TA", title="Titratable acidity")
     version = record_version(
-        method, by=bench.supervisor, reason="first version", titrant=bench.titrant, expressed_as=acid, ratio="1",
+        method, by=bench.supervisor, reason="first version", titrant=bench.titrant, expressed_as=acid,
+        ratio="1",
         titration="direct", sample_by="volume", sample_unit="mL", sample_amount=D("10"), blanks_needed=1,
         quantity="mass_concentration", unit="g/100 mL", places=3, replicates_needed=3, policy="concordance",
-        limit=D("0.10"), limit_kind="range_mL", coverage="k2", endpoint="indicator", indicator="phenolphthalein",
+        limit=D("0.10"), limit_kind="range_mL", coverage="k2", endpoint="indicator",
+        indicator="phenolphthalein",
         indicator_bias=D("0.02"), indicator_u=D("0.01"), instructions="Titrate 10 mL to a lasting pale pink.",
     )  # fmt: skip
     return make_version_effective(version, by=bench.supervisor, credentials=signed_by(bench.supervisor))
@@ -127,7 +129,8 @@ def some_version(bench: Bench) -> MethodVersion:
 def some_sample(bench: Bench, version: MethodVersion) -> Sample:
     """A sample of a control material, so that no product is needed."""
     control = record_control_sample(
-        by=bench.supervisor, code="CS-A", name="acid control", method=version.method, assigned_value=D("0.735"),
+        by=bench.supervisor, code="CS-A", name="acid control", method=version.method,
+        assigned_value=D("0.735"),
         assigned_expanded=D("0.010"), unit=version.unit, expires_on=days_ago(-300),
     )  # fmt: skip
     return record_sample(

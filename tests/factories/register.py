@@ -28,7 +28,8 @@ INSTRUMENTS: dict[str, dict[str, Any]] = {
     "pipette": {"identifier": "P-10", "capacity": D("10"), "resolution": D("0.01"), "tolerance": D("0.02")},
     "flask": {"identifier": "F-03", "capacity": D("100"), "resolution": D("0.01"), "tolerance": D("0.10")},
     "balance": {
-        "identifier": "W-01", "capacity": D("220"), "resolution": D("0.0001"), "tolerance": D("0.0003"), "unit": "g",
+        "identifier": "W-01", "capacity": D("220"), "resolution": D("0.0001"), "tolerance": D("0.0003"),
+        "unit": "g",
     },
     "electrode": {"identifier": "E-04", "resolution": D("0.001"), "tolerance": D("0.02"), "unit": "pH"},
 }  # fmt: skip
@@ -70,8 +71,10 @@ def calibrated(by: User, kind: str = "burette", **given: Any) -> Instrument:
 def some_standard(by: User, substance: Substance, **given: Any) -> ReferenceStandard:
     """A lot in quarantine, with its certificate."""
     said = {
-        "number": "KHP-26-01", "supplier_lot": "L2609-41", "purity": D("0.9998"), "purity_expanded": D("0.0003"),
-        "purity_k": D(2), "received_on": days_ago(60), "expires_on": days_ago(-600), "certificate": CERTIFICATE,
+        "number": "KHP-26-01", "supplier_lot": "L2609-41", "purity": D("0.9998"),
+        "purity_expanded": D("0.0003"),
+        "purity_k": D(2), "received_on": days_ago(60), "expires_on": days_ago(-600),
+        "certificate": CERTIFICATE,
     }  # fmt: skip
     return record_standard(by=by, substance=substance, **said | given)
 
@@ -85,8 +88,10 @@ def rule_of(substance: Substance, standard: Substance | None, **given: Any) -> d
     """The rule of a titrant as the services take it."""
     return {
         "code": "NaOH-0.1", "name": "sodium hydroxide 0.1 mol/L", "substance": substance, "nominal": D("0.1"),
-        "window_low": D("0.095"), "window_high": D("0.105"), "restandardization_days": 14, "shelf_life_days": 45,
-        "standard_substance": standard, "ratio": "1", "standard_mass": D("0.42"), "indicator": "phenolphthalein",
+        "window_low": D("0.095"), "window_high": D("0.105"), "restandardization_days": 14,
+        "shelf_life_days": 45,
+        "standard_substance": standard, "ratio": "1", "standard_mass": D("0.42"),
+        "indicator": "phenolphthalein",
         "indicator_bias": D("0.02"), "indicator_u": D("0.01"), "replicates_needed": 3, "policy": "all",
         "limit": D("0.25"), "limit_kind": "rsd_percent", "coverage": "k2",
     } | given  # fmt: skip
