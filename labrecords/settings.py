@@ -1,4 +1,4 @@
-"""Settings: from the environment only; a bad value stops the start with a sentence. DEVELOPERS.md lists them."""
+"""Settings, from the environment only; a bad value stops the start with a sentence: see DEVELOPERS.md."""
 
 from __future__ import annotations
 

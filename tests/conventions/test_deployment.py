@@ -17,7 +17,7 @@ SERVICES: dict[str, Any] = COMPOSE["services"]
 OURS = ["migrate", "web", "worker", "beat"]
 LASTING = [name for name in SERVICES if name != "migrate"]
 DOCKERFILE = (ROOT / "Dockerfile").read_text().replace("\\\n", " ")
-KNOWN = set(re.findall(r'(?:text|flag)\("([A-Z_]+)"', (ROOT / "labrecords/settings.py").read_text()))
+KNOWN = set(re.findall(r'(?:text|flag)\(\s*"([A-Z_]+)"', (ROOT / "labrecords/settings.py").read_text()))
 
 
 def test_compose_has_every_service() -> None:
