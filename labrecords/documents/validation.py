@@ -2,9 +2,8 @@
 
 from __future__ import annotations
 
-import json
 import platform
-from collections.abc import Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from datetime import datetime
 from typing import Any
@@ -90,14 +89,27 @@ def _row(checked: CheckedCase) -> dict[str, Any]:
 
 
 def _short(value: Any) -> str:
-    text = value if isinstance(value, str) else json.dumps(_rounded(value), ensure_ascii=False)
+    text = "; ".join(_words(value, name=""))
     return text if len(text) <= LONGEST else f"{text[:LONGEST]} ..."
 
 
-def _rounded(value: Any) -> Any:
-    """Numbers to twelve figures, for the eye; the comparison was made with all of them."""
+def _words(value: Any, *, name: str) -> Iterator[str]:
+    """Plain data as words, such as "cp.value 1.7; n 20"; numbers to ten figures, for the eye alone."""
+    before = f"{name} " if name else ""
+    if isinstance(value, Mapping):
+        for key, each in value.items():
+            yield from _words(each, name=f"{name}.{key}" if name else str(key))
+    elif isinstance(value, list | tuple):
+        yield before + ", ".join(_plain(each) for each in value)
+    else:
+        yield before + _plain(value)
+
+
+def _plain(value: Any) -> str:
+    if isinstance(value, bool) or value is None:
+        return {True: "yes", False: "no", None: "none"}[value]
     if isinstance(value, float):
-        return float(f"{value:.12g}")
-    if isinstance(value, dict):
-        return {key: _rounded(each) for key, each in value.items()}
-    return [_rounded(each) for each in value] if isinstance(value, list | tuple) else value
+        return f"{value:.10g}"
+    if isinstance(value, Mapping):
+        return f"({'; '.join(_words(value, name=''))})"
+    return f"({', '.join(map(_plain, value))})" if isinstance(value, list | tuple) else str(value)
