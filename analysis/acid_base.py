@@ -60,7 +60,7 @@ class AcidBase:
         if not self.system.activity:
             return None
         strength = np.full_like(x, 0.05)
-        for _ in range(2):
+        for _ in range(3):
             gamma = log_gamma(strength, a=self.a)
             strength = self._ionic_strength(x, volume, theta, 10.0**gamma)
         g = 10.0 ** log_gamma(strength, a=self.a)

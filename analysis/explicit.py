@@ -19,6 +19,9 @@ from analysis.system import System
 
 FloatArray = npt.NDArray[np.float64]
 NERNST = nernst(25.0)  # mV
+CORNER = (
+    0.1  # mL over which the corner is rounded where a halide begins to precipitate, as coprecipitation does
+)
 
 
 class Precipitation:
@@ -26,7 +29,7 @@ class Precipitation:
 
     F = sum max(0, E_i - Ks_i / (a c) W) + a W / c - V, a the activity of the titrant's ion, W = V0 + V. The
     least soluble halide is taken as present from the start, so that the first reading is defined. A halide
-    that has not begun to precipitate stands with 0: the curve has its true corners.
+    that has not begun to precipitate stands with nothing, its corner rounded.
     """
 
     def __init__(self, system: System, *, prior: PriorOf) -> None:
@@ -54,8 +57,12 @@ class Precipitation:
             pKs = float(item.pKs or 0.0) + (theta[:, self.count + k, None] if self.parameters else 0.0)
             halide = np.exp(-LN_10 * (pKs - x)) / c
             solid = theta[:, k, None] - halide * whole
-            there = np.ones_like(solid) if k == self.least else (solid > 0).astype(float)
-            value += there * solid
+            if k == self.least:
+                there, present = np.ones_like(solid), solid
+            else:
+                root = np.hypot(solid, CORNER)
+                there, present = 0.5 * (1.0 + solid / root), 0.5 * (solid + root)
+            value += present
             by_x += there * halide * whole
             by_volume -= there * halide
             columns.append(there)

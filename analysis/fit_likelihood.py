@@ -28,6 +28,7 @@ SETTLED, NEAR = (
     10,
     0.02,
 )  # steps, and standard uncertainties, after which weights and scatter stay as they are
+PATIENT = 20  # full steps, after which half steps end what goes to and fro
 QUICK, CAREFUL = (1, 1), (2, 4)  # steps in the volume domain; steps before Huber's weights
 HUBER = 1.5
 HUBER_SHARE = 0.8663855974622838  # P(|z| < 1.5), which is also E[z psi(z)]
@@ -107,7 +108,7 @@ def maximise(
         information, gradient = _normal(rows, weight, theta - centre, precision)
         change = -_solve(information, gradient)
         decrement = np.sqrt(np.abs((gradient * change).sum(axis=1)))
-        theta = _bounded(theta + change, chemistry, observed, precision)
+        theta = _bounded(theta + (0.5 if step > PATIENT else 1.0) * change, chemistry, observed, precision)
         z = np.matmul(change[:, None, :], rows[:, :-1])[:, 0] + rows[:, -1]
         reading = observed.electrode.read(theta, behind)
         x, volume = _projected(observed, reading[0], z, slopes, root, x_sd, held=step + 1 < held)

@@ -73,8 +73,8 @@ def _not_negative(
 ) -> tuple[FloatArray, FloatArray]:
     """The mean and covariance given that carbonate and lag are not below nothing.
 
-    Each condition is replaced by a normal factor that gives the same moments as the cut distribution would, in turn
-    until all agree (expectation propagation).
+    Each condition is replaced by a normal factor that gives the same moments as the cut distribution would,
+    in turn until all agree (expectation propagation).
     """
     places = [place for place, group in enumerate(problem.groups) if group in NOT_NEGATIVE]
     factors = {place: (np.zeros(len(mean)), np.zeros(len(mean))) for place in places}
