@@ -2,12 +2,34 @@
 
 from __future__ import annotations
 
-from django.urls import path
+from django.urls import include, path
 
 from labrecords.views import (
-    audit, batch, bench, control_chart, control_sample, curve, find, health, instrument, investigation, lineage, method,
-    product, question, register, replicate, review, run, sample, standard, standardization, substance, titrant,
-    titrant_lot, user,
+    audit,
+    batch,
+    bench,
+    control_chart,
+    control_sample,
+    curve,
+    find,
+    health,
+    instrument,
+    investigation,
+    lineage,
+    method,
+    product,
+    question,
+    register,
+    replicate,
+    review,
+    run,
+    sample,
+    standard,
+    standardization,
+    substance,
+    titrant,
+    titrant_lot,
+    user,
 )  # fmt: skip
 
 handler400 = "labrecords.views.error.bad_request"
@@ -49,7 +71,9 @@ standardization_urls = [
     path("standardizations/<str:number>/correct/", standardization.correct, name="standardization-correct"),
     path("standardizations/<str:number>/submit/", standardization.submit, name="standardization-submit"),
     path("standardizations/<str:number>/approve/", standardization.approve, name="standardization-approve"),
-    path("standardizations/<str:number>/return/", standardization.give_back, name="standardization-give_back"),
+    path(
+        "standardizations/<str:number>/return/", standardization.give_back, name="standardization-give_back"
+    ),
     path("standardizations/<str:number>/void/", standardization.void, name="standardization-void"),
 ]
 
@@ -81,7 +105,11 @@ instrument_urls = [
     path("instruments/<str:identifier>/supersede/", instrument.supersede, name="instrument-supersede"),
     path("instruments/<str:identifier>/calibrate/", instrument.calibrate, name="instrument-calibrate"),
     path("instruments/<str:identifier>/withdraw/", instrument.withdraw, name="instrument-withdraw"),
-    path("calibrations/<int:pk>/withdraw/", instrument.withdraw_calibration, name="instrument-withdraw_calibration"),
+    path(
+        "calibrations/<int:pk>/withdraw/",
+        instrument.withdraw_calibration,
+        name="instrument-withdraw_calibration",
+    ),
 ]
 
 standard_urls = [
@@ -148,7 +176,9 @@ method_urls = [
 product_urls = [
     path("products/", product.list, name="product-list"),
     path("products/record/", product.record, name="product-record"),
-    path("products/specifications/<int:pk>/effective/", product.make_effective, name="product-make_effective"),
+    path(
+        "products/specifications/<int:pk>/effective/", product.make_effective, name="product-make_effective"
+    ),
     path("products/<str:code>/", product.detail, name="product-detail"),
     path("products/<str:code>/specify/", product.specify, name="product-specify"),
 ]
@@ -183,6 +213,7 @@ audit_urls = [
 ]
 
 urlpatterns = [
+    path("api/", include("labrecords.api.urls")),
     *batch_urls,
     *sample_urls,
     *review_urls,

@@ -9,14 +9,17 @@ from __future__ import annotations
 import pytest
 
 from labrecords.models import User
-from labrecords.services.signature import Credentials
 from labrecords.services.user import record_first_administrator, record_user
+from tests.factories.bench import Bench, set_up_bench
+from tests.factories.people import PASSWORD
 from tests.support.database import _flush_as_superuser, as_owner, django_db_setup
+from tests.support.trail import break_trail
 from tests.support.worker import _one_worker, broker_down, worker
 
-__all__ = ["_flush_as_superuser", "_one_worker", "as_owner", "broker_down", "django_db_setup", "worker"]
-
-PASSWORD = "correct horse 42"
+__all__ = [
+    "_flush_as_superuser", "_one_worker", "as_owner", "break_trail", "broker_down", "django_db_setup",
+    "worker",
+]  # fmt: skip
 
 
 @pytest.fixture(autouse=True)
@@ -61,6 +64,7 @@ def auditor(administrator: User) -> User:
     return _person(administrator, "rlindqvist", "Rhea Lindqvist", "auditor")
 
 
-def signed_by(user: User, password: str = PASSWORD) -> Credentials:
-    """What a person types at a signing."""
-    return Credentials(username=user.username, password=password)
+@pytest.fixture
+def bench(analyst: User, supervisor: User) -> Bench:
+    """A titrant with a lot in quarantine, its standard in use, and the instruments."""
+    return set_up_bench(analyst, supervisor)

@@ -9,11 +9,10 @@ from typing import Any
 from django import forms
 from django.db.models import QuerySet
 
+from labrecords.rules.certificate import LARGEST_FILE, media_type_of, objections_to_certificate
 from labrecords.rules.number import parse_number, plain, shown
 
 DAY_FORMS = ("%Y-%m-%d", "%d %b %Y", "%d %B %Y", "%d.%m.%Y", "%d/%m/%Y")
-LARGEST_FILE = 5 * 1024 * 1024
-CERTIFICATE_STARTS = {b"%PDF-": "application/pdf", b"\x89PNG": "image/png", b"\xff\xd8\xff": "image/jpeg"}
 
 
 class TextField(forms.CharField):
@@ -165,14 +164,8 @@ class CertificateField(forms.FileField):
         file = super().clean(data, initial)
         if not file:
             return None
-        if file.size > LARGEST_FILE:
-            raise forms.ValidationError(
-                f"{self.label}: {shown(file.name)} has {file.size / 1e6:.1f} MB; up to 5 MB are taken."
-            )
-        content = file.read()
-        for start, media_type in CERTIFICATE_STARTS.items():
-            if content.startswith(start):
-                return file.name, media_type, content
-        raise forms.ValidationError(
-            f"{self.label}: {shown(file.name)} is neither PDF, PNG nor JPEG. Choose the certificate's file."
-        )
+        content = file.read(LARGEST_FILE + 1)
+        found = objections_to_certificate(file.name, content=content, field=str(self.label))
+        if found:
+            raise forms.ValidationError(found)
+        return file.name, str(media_type_of(content)), content

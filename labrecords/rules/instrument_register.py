@@ -9,7 +9,7 @@ from decimal import Decimal
 from labrecords.models import Instrument, InstrumentCalibration, InstrumentKind, User
 from labrecords.rules.fit import objections_to_fit
 from labrecords.rules.identifier import objections_to_identifier
-from labrecords.rules.number import parse_number, plain, shown
+from labrecords.rules.number import parse_number, plain, shortest, shown
 from labrecords.rules.readings import objections_to_date, objections_to_order, objections_to_slope
 from labrecords.rules.substance import objections_to_keeping_registers
 
@@ -98,7 +98,7 @@ def objections_to_corrections(rows: Sequence[Sequence[str]], *, instrument: Inst
             ]
         most = instrument.capacity
         if at < 0 or (most is not None and at > most):
-            end = f" to {most:g}" if most is not None else " on"
+            end = f" to {shortest(most)}" if most is not None else " on"
             return [f"Correction {place} is at {plain(at)} {unit}; a reading from 0{end} {unit} is expected."]
         if at <= before:
             return [

@@ -24,7 +24,7 @@ from labrecords.rules.review import objections_to_reason
 from labrecords.services import audit
 from labrecords.services.question import raise_questions_on, raise_questions_on_runs
 from labrecords.services.signature import Credentials, sign
-from labrecords.services.stored_file import store_file
+from labrecords.services.stored_file import Certificate, store_certificate
 
 
 @transaction.atomic(durable=True)
@@ -84,7 +84,7 @@ def record_calibration(
     instrument: Instrument, *, by: User, calibrated_on: date, due_on: date, performed_by: str,
     uncertainty: Decimal | None = None, corrections: Sequence[Sequence[str]] = (),
     slope_percent: Decimal | None = None,
-    remarks: str = "", certificate: tuple[str, str, bytes] | None = None,
+    remarks: str = "", certificate: Certificate | None = None,
 ) -> InstrumentCalibration:  # fmt: skip
     """Record a calibration, with its certificate as (name, media type, bytes) where there is one."""
     calibration = InstrumentCalibration(
@@ -95,10 +95,7 @@ def record_calibration(
     with audit.event("instrument.calibrate", by=by, subject=instrument.identifier) as event:
         refuse_if(objections_to_calibrating(calibration, by=by, today=timezone.localtime(event.at).date()))
         if certificate is not None:
-            name, media_type, content = certificate
-            calibration.certificate = store_file(
-                name, media_type=media_type, content=content, by=by, at=event.at
-            )
+            calibration.certificate = store_certificate(certificate, by=by, at=event.at)
         calibration.save()
     return calibration
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from datetime import date, datetime
+from datetime import date
 from decimal import Decimal
 from typing import Any
 
@@ -24,9 +24,7 @@ from labrecords.rules.standard import (
 from labrecords.services import audit
 from labrecords.services.question import raise_questions_on
 from labrecords.services.signature import Credentials, sign
-from labrecords.services.stored_file import store_file
-
-Certificate = tuple[str, str, bytes]
+from labrecords.services.stored_file import Certificate, store_certificate
 
 
 @transaction.atomic(durable=True)
@@ -46,7 +44,8 @@ def record_standard(
         refuse_if(
             objections_to_recording_standard(standard, by=by, today=timezone.localtime(event.at).date())
         )
-        _keep_certificate(standard, certificate, by=by, at=event.at)
+        if certificate is not None:
+            standard.certificate = store_certificate(certificate, by=by, at=event.at)
         standard.save()
     return standard
 
@@ -71,7 +70,8 @@ def correct_standard(
                 *objections_to_reason(reason, what="the standard is corrected"),
             ]
         )
-        _keep_certificate(standard, certificate, by=by, at=event.at)
+        if certificate is not None:
+            standard.certificate = store_certificate(certificate, by=by, at=event.at)
         standard.save()
     return standard
 
@@ -96,7 +96,8 @@ def supersede_standard(
                 *objections_to_reason(reason, what="the standard is superseded"),
             ]
         )
-        _keep_certificate(successor, certificate, by=by, at=event.at)
+        if certificate is not None:
+            successor.certificate = store_certificate(certificate, by=by, at=event.at)
         successor.save()
         standard.superseded_by = successor
         standard.save(update_fields=["superseded_by"])
@@ -137,14 +138,6 @@ def withdraw_standard(
         because = f"Reference standard {standard.number} is withdrawn: {reason}"
         raise_questions_on(standardizations_using(standard), because=because, by=by)
     return standard
-
-
-def _keep_certificate(
-    standard: ReferenceStandard, certificate: Certificate | None, *, by: User, at: datetime
-) -> None:
-    if certificate is not None:
-        name, media_type, content = certificate
-        standard.certificate = store_file(name, media_type=media_type, content=content, by=by, at=at)
 
 
 def _locked(standard: ReferenceStandard) -> ReferenceStandard:

@@ -5,7 +5,11 @@ from __future__ import annotations
 import hashlib
 from datetime import datetime
 
+from labrecords.errors import refuse_if
 from labrecords.models import StoredFile, User
+from labrecords.rules.certificate import objections_to_certificate
+
+Certificate = tuple[str, str, bytes]  # name, media type, content
 
 
 def store_file(name: str, *, media_type: str, content: bytes, by: User, at: datetime) -> StoredFile:
@@ -19,3 +23,10 @@ def store_file(name: str, *, media_type: str, content: bytes, by: User, at: date
         stored_by=by,
         stored_at=at,
     )
+
+
+def store_certificate(certificate: Certificate, *, by: User, at: datetime) -> StoredFile:
+    """Keep a certificate's file; Refused when it is none. Called inside a service that has an open event."""
+    name, media_type, content = certificate
+    refuse_if(objections_to_certificate(name, content=content))
+    return store_file(name, media_type=media_type, content=content, by=by, at=at)

@@ -31,7 +31,7 @@ from labrecords.services.standardization import (
     start_standardization,
     submit_standardization,
 )
-from tests.conftest import signed_by
+from tests.factories.people import signed_by
 from tests.factories.register import (
     calibrated,
     days_ago,
