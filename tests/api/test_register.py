@@ -134,10 +134,9 @@ def standard_data(substance: Substance, **given: Any) -> dict[str, Any]:
 
 def test_standard_list_records_with_its_certificate(client, analyst: User, supervisor: User) -> None:
     file = {"name": "c.pdf", "content": base64.b64encode(CERTIFICATE[2]).decode()}
+    data = standard_data(phthalate(supervisor), certificate=file)
     with one_event("standard.record"):
-        answer = send(
-            client, analyst, "standard-list", standard_data(phthalate(supervisor), certificate=file)
-        )
+        answer = send(client, analyst, "standard-list", data)
     assert (answer.status_code, answer.json()["state"]) == (201, "quarantined")
     stored = ReferenceStandard.objects.get().certificate
     assert stored is not None

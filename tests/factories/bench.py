@@ -110,19 +110,20 @@ def approved_standardization(bench: Bench) -> Standardization:
     return record
 
 
-def some_version(bench: Bench) -> MethodVersion:
+def some_version(bench: Bench, **given: Any) -> MethodVersion:
     """The acidity of 10 mL by direct titration, in force."""
     acid = some_substance(bench.supervisor, name="acetic acid", formula="C2H4O2")
     method = record_method(by=bench.supervisor, code="TA", title="Titratable acidity")
-    version = record_version(
-        method, by=bench.supervisor, reason="first version", titrant=bench.titrant, expressed_as=acid,
-        ratio="1",
-        titration="direct", sample_by="volume", sample_unit="mL", sample_amount=D("10"), blanks_needed=1,
-        quantity="mass_concentration", unit="g/100 mL", places=3, replicates_needed=3, policy="concordance",
-        limit=D("0.10"), limit_kind="range_mL", coverage="k2", endpoint="indicator",
-        indicator="phenolphthalein",
-        indicator_bias=D("0.02"), indicator_u=D("0.01"), instructions="Titrate 10 mL to a lasting pale pink.",
-    )  # fmt: skip
+    recipe: dict[str, Any] = {
+        "titrant": bench.titrant, "expressed_as": acid, "ratio": "1", "titration": "direct",
+        "sample_by": "volume",
+        "sample_unit": "mL", "sample_amount": D("10"), "blanks_needed": 1, "quantity": "mass_concentration",
+        "unit": "g/100 mL", "places": 3, "replicates_needed": 3, "policy": "concordance", "limit": D("0.10"),
+        "limit_kind": "range_mL", "coverage": "k2", "endpoint": "indicator", "indicator": "phenolphthalein",
+        "indicator_bias": D("0.02"), "indicator_u": D("0.01"),
+        "instructions": "Titrate to a lasting pale pink.",
+    }  # fmt: skip
+    version = record_version(method, by=bench.supervisor, reason="first version", **recipe | given)
     return make_version_effective(version, by=bench.supervisor, credentials=signed_by(bench.supervisor))
 
 
@@ -142,11 +143,12 @@ def some_sample(bench: Bench, version: MethodVersion) -> Sample:
     )
 
 
-def started_run(bench: Bench) -> Run:
+def started_run(bench: Bench, **recipe: Any) -> Run:
     """An open run on the bench's lot, which must have a concentration."""
-    version = some_version(bench)
-    instruments = {"burette": bench.burette, "pipette": bench.pipette}
-    sample = some_sample(bench, version)
+    version = some_version(bench, **recipe)
+    sample, instruments = some_sample(bench, version), {"burette": bench.burette, "pipette": bench.pipette}
+    if version.endpoint == "curve":
+        instruments["electrode"] = calibrated(bench.supervisor, "electrode")
     return start_run(sample, by=bench.analyst, method_version=version, lot=bench.lot, instruments=instruments)
 
 
