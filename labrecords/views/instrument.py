@@ -20,7 +20,7 @@ from labrecords.queries.instrument import calibration_at, calibrations_of, recor
 from labrecords.queries.register import instruments
 from labrecords.services import instrument as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.recording import page_of, recorded
+from labrecords.views.recording import page_of, recorded, typed
 from labrecords.views.sheet import typed_credentials
 
 
@@ -46,7 +46,7 @@ def detail(request: HttpRequest, identifier: str) -> HttpResponse:
 def record(request: HttpRequest) -> HttpResponse:
     """Record an instrument."""
     return recorded(
-        request, InstrumentForm(request.POST or None), template="register/record.html",
+        request, InstrumentForm(typed(request)), template="register/record.html",
         change=service.record_instrument, to=_page, context={"title": "Record an instrument",
         "back": "instrument-list"},
     )  # fmt: skip
@@ -57,7 +57,7 @@ def record(request: HttpRequest) -> HttpResponse:
 def supersede(request: HttpRequest, identifier: str) -> HttpResponse:
     """Record the entry that takes an instrument's place."""
     instrument = get_object_or_404(Instrument, identifier=identifier)
-    form = SupersedingInstrumentForm(request.POST or None, initial=initial_of(instrument, InstrumentForm))
+    form = SupersedingInstrumentForm(typed(request), initial=initial_of(instrument, InstrumentForm))
 
     def change(**clean: Any) -> Instrument:
         return service.supersede_instrument(instrument, **clean)
@@ -75,7 +75,7 @@ def calibrate(request: HttpRequest, identifier: str) -> HttpResponse:
     def change(**clean: Any) -> Instrument:
         return service.record_calibration(instrument, **clean).instrument
 
-    form = CalibrationForm(request.POST or None, request.FILES or None)
+    form = CalibrationForm(typed(request), request.FILES or None)
     context = {"title": f"Calibration of {identifier}", "back": "instrument-list", "has_file": True}
     return recorded(request, form, template="register/record.html", change=change, to=_page, context=context)
 

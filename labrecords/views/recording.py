@@ -8,7 +8,7 @@ from typing import Any
 from django.core.paginator import Page, Paginator
 from django.db.models import QuerySet
 from django.forms import Form
-from django.http import HttpRequest, HttpResponse
+from django.http import HttpRequest, HttpResponse, QueryDict
 from django.shortcuts import redirect, render
 
 from labrecords.errors import Refused
@@ -19,6 +19,11 @@ ROWS = 50
 def page_of(request: HttpRequest, found: QuerySet[Any]) -> Page[Any]:
     """Fifty rows of a list: the page that the address asks for, or the nearest one that exists."""
     return Paginator(found, ROWS).get_page(request.GET.get("page"))
+
+
+def typed(request: HttpRequest) -> QueryDict | None:
+    """What a form was sent with, also when it is nothing at all; None where the page is only opened."""
+    return request.POST if request.method == "POST" else None
 
 
 def recorded(

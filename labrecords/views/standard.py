@@ -24,7 +24,7 @@ from labrecords.queries.standard import standards, standards_found
 from labrecords.rules.standard import objections_to_issuing
 from labrecords.services import standard as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.recording import page_of, recorded
+from labrecords.views.recording import page_of, recorded, typed
 from labrecords.views.sheet import typed_credentials
 
 
@@ -49,7 +49,7 @@ def detail(request: HttpRequest, number: str) -> HttpResponse:
 @require_http_methods(["GET", "POST"])
 def record(request: HttpRequest) -> HttpResponse:
     """Record a lot with its certificate; it starts in quarantine."""
-    form = StandardForm(request.POST or None, request.FILES or None)
+    form = StandardForm(typed(request), request.FILES or None)
     context = {"title": "Record a reference standard", "back": "standard-list", "has_file": True}
     return recorded(
         request,
@@ -67,7 +67,7 @@ def correct(request: HttpRequest, number: str) -> HttpResponse:
     """Correct a lot in quarantine."""
     standard = get_object_or_404(ReferenceStandard, number=number)
     initial = initial_of_standard(standard, CorrectingStandardForm)
-    form = CorrectingStandardForm(request.POST or None, request.FILES or None, initial=initial)
+    form = CorrectingStandardForm(typed(request), request.FILES or None, initial=initial)
 
     def change(**clean: Any) -> ReferenceStandard:
         return service.correct_standard(standard, **clean)
@@ -87,7 +87,7 @@ def supersede(request: HttpRequest, number: str) -> HttpResponse:
     """Record the entry that takes a lot's place."""
     standard = get_object_or_404(ReferenceStandard, number=number)
     initial = initial_of_standard(standard, SupersedingStandardForm) | {"number": ""}
-    form = SupersedingStandardForm(request.POST or None, request.FILES or None, initial=initial)
+    form = SupersedingStandardForm(typed(request), request.FILES or None, initial=initial)
 
     def change(**clean: Any) -> ReferenceStandard:
         return service.supersede_standard(standard, **clean)

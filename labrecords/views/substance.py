@@ -16,7 +16,7 @@ from labrecords.queries.register import substances
 from labrecords.rules.cautions import cautions_for
 from labrecords.services import substance as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.recording import page_of, recorded
+from labrecords.views.recording import page_of, recorded, typed
 
 
 @signed_in
@@ -45,7 +45,7 @@ def detail(request: HttpRequest, pk: int) -> HttpResponse:
 def record(request: HttpRequest) -> HttpResponse:
     """Record a substance."""
     return recorded(
-        request, SubstanceForm(request.POST or None), template="register/record.html",
+        request, SubstanceForm(typed(request)), template="register/record.html",
         change=service.record_substance,
         to=_page, context={"title": "Record a substance", "back": "substance-list"},
     )  # fmt: skip
@@ -56,7 +56,7 @@ def record(request: HttpRequest) -> HttpResponse:
 def supersede(request: HttpRequest, pk: int) -> HttpResponse:
     """Record the entry that takes a substance's place."""
     substance = get_object_or_404(Substance, pk=pk)
-    form = SupersedingSubstanceForm(request.POST or None, initial=initial_of(substance, SubstanceForm))
+    form = SupersedingSubstanceForm(typed(request), initial=initial_of(substance, SubstanceForm))
 
     def change(**clean: Any) -> Substance:
         return service.supersede_substance(substance, **clean)

@@ -18,7 +18,7 @@ from labrecords.queries.register import titrant_lots, titrants
 from labrecords.rules.cautions import cautions_for
 from labrecords.services import titrant as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.recording import page_of, recorded
+from labrecords.views.recording import page_of, recorded, typed
 
 
 @signed_in
@@ -49,7 +49,7 @@ def detail(request: HttpRequest, code: str) -> HttpResponse:
 def record(request: HttpRequest) -> HttpResponse:
     """Record a titrant."""
     return recorded(
-        request, TitrantForm(request.POST or None), template="register/record.html",
+        request, TitrantForm(typed(request)), template="register/record.html",
         change=service.record_titrant,
         to=_page, context={"title": "Record a titrant", "back": "titrant-list"},
     )  # fmt: skip
@@ -60,7 +60,7 @@ def record(request: HttpRequest) -> HttpResponse:
 def supersede(request: HttpRequest, code: str) -> HttpResponse:
     """Record the entry that takes a titrant's place."""
     titrant = get_object_or_404(Titrant, code=code)
-    form = SupersedingTitrantForm(request.POST or None, initial=initial_of(titrant, TitrantForm))
+    form = SupersedingTitrantForm(typed(request), initial=initial_of(titrant, TitrantForm))
 
     def change(**clean: Any) -> Titrant:
         return service.supersede_titrant(titrant, **clean)

@@ -26,7 +26,7 @@ from labrecords.queries.titrant_lot import runs_on_lot, volume_balance
 from labrecords.rules.cautions import cautions_for
 from labrecords.services import titrant as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.recording import page_of, recorded
+from labrecords.views.recording import page_of, recorded, typed
 from labrecords.views.sheet import typed_credentials
 
 
@@ -57,7 +57,7 @@ def record(request: HttpRequest, code: str) -> HttpResponse:
         return service.record_lot(titrant, **clean)
 
     form = LotForm(
-        request.POST or None, initial={"prepared_on": timezone.localdate(), "prepared_by": request.user.pk}
+        typed(request), initial={"prepared_on": timezone.localdate(), "prepared_by": request.user.pk}
     )
     form.fields["expires_on"].help_text = f"left empty: {titrant.shelf_life_days} days after it was prepared"
     context = {"title": f"Record a lot of {titrant.name}", "back": "titrant_lot-list"}

@@ -19,7 +19,7 @@ from labrecords.queries.history import sentences_about
 from labrecords.queries.register import people
 from labrecords.services import user as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.recording import page_of, recorded
+from labrecords.views.recording import page_of, recorded, typed
 
 REFUSED = (
     "The name or the password is not right. After eight wrong tries the account waits a quarter of an hour."
@@ -29,7 +29,7 @@ REFUSED = (
 @require_http_methods(["GET", "POST"])
 def sign_in(request: HttpRequest) -> HttpResponse:
     """Sign in and go on to the page that was asked for."""
-    form, refused = SignInForm(request.POST or None), ()
+    form, refused = SignInForm(typed(request)), ()
     if request.method == "POST" and form.is_valid():
         user = authenticate(request, **form.cleaned_data)
         if user is not None:
@@ -65,7 +65,7 @@ def list(request: HttpRequest) -> HttpResponse:
 def record(request: HttpRequest) -> HttpResponse:
     """Record a new account."""
     return recorded(
-        request, AccountForm(request.POST or None), template="user/record.html", change=service.record_user,
+        request, AccountForm(typed(request)), template="user/record.html", change=service.record_user,
         to=lambda user: ("user-detail", user.username),
     )  # fmt: skip
 
@@ -75,7 +75,7 @@ def record(request: HttpRequest) -> HttpResponse:
 def detail(request: HttpRequest, username: str) -> HttpResponse:
     """One person: roles, history; an administrator corrects them here."""
     person = get_object_or_404(User, username=username)
-    form = CorrectionForm(request.POST or None, initial=initial_of(person, CorrectionForm))
+    form = CorrectionForm(typed(request), initial=initial_of(person, CorrectionForm))
 
     def change(**clean: Any) -> User:
         return service.correct_user(person, **clean)
@@ -111,7 +111,7 @@ def close(request: HttpRequest, username: str) -> HttpResponse:
 @require_http_methods(["GET", "POST"])
 def change_password(request: HttpRequest) -> HttpResponse:
     """Change one's own password."""
-    form, refused = PasswordForm(request.POST or None), ()
+    form, refused = PasswordForm(typed(request)), ()
     if request.method == "POST" and form.is_valid():
         try:
             user = service.change_password(request.user, by=request.user, **form.cleaned_data)
