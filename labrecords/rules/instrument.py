@@ -68,6 +68,8 @@ def _objections_to_one(part: str, instrument: Instrument, *, volume: Decimal | N
         found.append(f"{part.capitalize()} {instrument.identifier} is a {instrument.get_kind_display()}.")
     if instrument.withdrawn_at is not None:
         found.append(f"{instrument.identifier} is withdrawn: {instrument.withdrawn_reason} Choose another.")
+    if instrument.superseded_by_id is not None:
+        found.append(f"{instrument.identifier} is superseded by {instrument.superseded_by}. Choose that one.")
     if volume is not None and instrument.capacity != volume:
         found.append(
             f"{part.capitalize()} {instrument.identifier} holds {instrument.capacity:g} {instrument.unit}; "

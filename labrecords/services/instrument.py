@@ -22,6 +22,7 @@ from labrecords.rules.instrument_register import (
 )  # fmt: skip
 from labrecords.rules.review import objections_to_reason
 from labrecords.services import audit
+from labrecords.services.number import reserve_name
 from labrecords.services.question import raise_questions_on, raise_questions_on_runs
 from labrecords.services.signature import Credentials, sign
 from labrecords.services.stored_file import Certificate, store_certificate
@@ -38,6 +39,7 @@ def record_instrument(
         capacity=capacity,
         description=description, place=place,
     )  # fmt: skip
+    reserve_name("instrument", identifier)
     refuse_if(objections_to_recording_instrument(instrument, by=by))
     with audit.event("instrument.record", by=by, subject=identifier):
         instrument.save()
@@ -49,6 +51,7 @@ def supersede_instrument(instrument: Instrument, *, by: User, reason: str, **new
     """Replace an entry by a corrected one under another identifier; the old one stays with its uses."""
     instrument = _locked(instrument)
     successor = Instrument(**new)
+    reserve_name("instrument", successor.identifier)
     refuse_if(
         [
             *objections_to_superseding_instrument(instrument, by=by),

@@ -22,6 +22,7 @@ from labrecords.rules.standard import (
     objections_to_withdrawing_standard,
 )
 from labrecords.services import audit
+from labrecords.services.number import reserve_name
 from labrecords.services.question import raise_questions_on
 from labrecords.services.signature import Credentials, sign
 from labrecords.services.stored_file import Certificate, store_certificate
@@ -40,6 +41,7 @@ def record_standard(
         purity_expanded=purity_expanded,
         purity_k=purity_k, received_on=received_on, expires_on=expires_on, drying=drying,
     )  # fmt: skip
+    reserve_name("standard", number)
     with audit.event("standard.record", by=by, subject=number) as event:
         refuse_if(
             objections_to_recording_standard(standard, by=by, today=timezone.localtime(event.at).date())
@@ -87,6 +89,7 @@ def supersede_standard(
 ) -> ReferenceStandard:
     """Put a new entry in a lot's place, in quarantine; the old one is used for nothing new."""
     standard, successor = _locked(standard), ReferenceStandard(**values)
+    reserve_name("standard", successor.number)
     with audit.event("standard.supersede", by=by, subject=standard.number, reason=reason) as event:
         today = timezone.localtime(event.at).date()
         refuse_if(

@@ -16,6 +16,7 @@ from labrecords.rules.substance import (
     objections_to_superseding_substance,
 )
 from labrecords.services import audit
+from labrecords.services.number import reserve_name
 
 
 @transaction.atomic(durable=True)
@@ -24,6 +25,7 @@ def record_substance(
 ) -> Substance:
     """Record a substance; its molar mass comes from the formula and the named edition of atomic weights."""
     substance = _computed(name, formula=formula, hazards=hazards, density=density)
+    reserve_name("substance", name)
     refuse_if(objections_to_recording_substance(substance, by=by))
     with audit.event("substance.record", by=by, subject=name):
         substance.save()
@@ -39,6 +41,7 @@ def supersede_substance(
     """Replace a substance by a new entry; the old one stays with what rests on it."""
     substance = _locked(substance)
     successor = _computed(name, formula=formula, hazards=hazards, density=density)
+    reserve_name("substance", name)
     refuse_if(
         [
             *objections_to_superseding_substance(substance, by=by),

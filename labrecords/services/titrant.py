@@ -20,6 +20,7 @@ from labrecords.rules.titrant_register import (
     objections_to_withdrawing_lot,
 )
 from labrecords.services import audit
+from labrecords.services.number import reserve_name
 from labrecords.services.question import raise_questions_on
 from labrecords.services.signature import Credentials, sign
 
@@ -28,6 +29,7 @@ from labrecords.services.signature import Credentials, sign
 def record_titrant(*, by: User, **rule: Any) -> Titrant:
     """Record a kind of solution with its window, intervals and the rule of its standardization."""
     titrant = Titrant(**rule)
+    reserve_name("titrant", titrant.code)
     refuse_if(objections_to_recording_titrant(titrant, by=by))
     with audit.event("titrant.record", by=by, subject=titrant.code):
         titrant.save()
@@ -41,6 +43,7 @@ def supersede_titrant(titrant: Titrant, *, by: User, reason: str, **rule: Any) -
         Titrant.objects.select_for_update(of=("self",)).select_related("superseded_by").get(pk=titrant.pk)
     )
     successor = Titrant(**rule)
+    reserve_name("titrant", successor.code)
     refuse_if(
         [
             *objections_to_superseding_titrant(titrant, by=by),
@@ -67,6 +70,7 @@ def record_lot(
         reagent_lot=reagent_lot,
         volume=volume, expires_on=expires_on or prepared_on + timedelta(days=titrant.shelf_life_days),
     )  # fmt: skip
+    reserve_name("titrant_lot", number)
     with audit.event("titrant_lot.record", by=by, subject=number) as event:
         refuse_if(objections_to_recording_lot(lot, by=by, today=timezone.localtime(event.at).date()))
         lot.save()

@@ -17,11 +17,13 @@ from labrecords.rules.user import (
     objections_to_correcting_account,
 )
 from labrecords.services import audit
+from labrecords.services.number import reserve_name
 
 
 @transaction.atomic(durable=True)
 def record_user(*, by: User, username: str, full_name: str, roles: list[str], password: str) -> User:
     """Record a new account; Refused when the name is taken, a role unknown or the password weak."""
+    reserve_name("user", username)
     refuse_if(
         [*objections_to_administering(by), *objections_to_account(username, full_name=full_name, roles=roles)]
     )
@@ -36,6 +38,7 @@ def record_user(*, by: User, username: str, full_name: str, roles: list[str], pa
 def record_first_administrator(*, username: str, full_name: str, password: str) -> User:
     """Record the first account of an empty laboratory, an administrator; it records itself."""
     roles = [Role.ADMINISTRATOR.value]
+    reserve_name("user", "the first account")
     refuse_if(
         [
             *(
