@@ -202,6 +202,10 @@ lineage_urls = [
     path("lineage/standardizations/<str:number>/", lineage.standardization, name="lineage-standardization"),
     path("lineage/lots/<str:number>/", lineage.lot, name="lineage-lot"),
     path("lineage/standards/<str:number>/", lineage.standard, name="lineage-standard"),
+    path("lineage/instruments/<str:identifier>/", lineage.instrument, name="lineage-instrument"),
+    path("lineage/batches/<str:number>/", lineage.batch, name="lineage-batch"),
+    path("lineage/samples/<str:number>/", lineage.sample, name="lineage-sample"),
+    path("lineage/signatures/<int:pk>/", lineage.signed, name="lineage-signed"),
 ]
 
 audit_urls = [

@@ -4,9 +4,22 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import Any
+from datetime import datetime
+from decimal import Decimal
 
 from django.db import connection
+from django.db.models import Q, QuerySet
+
+from labrecords.models import (
+    Batch,
+    Instrument,
+    InstrumentCalibration,
+    ReferenceStandard,
+    Run,
+    Sample,
+    Signature,
+    UsedInstrument,
+)
 
 RESTING = """
 WITH RECURSIVE resting (id) AS (
@@ -27,11 +40,11 @@ WITH RECURSIVE chain (id, depth, via) AS (
     UNION ALL
     SELECT above.against_id, chain.depth + 1, chain.via
         FROM labrecords_standardization AS above JOIN chain ON above.id = chain.id
-        WHERE above.against_id IS NOT NULL
+        WHERE above.against_id IS NOT NULL AND chain.depth < 64
 )
 SELECT chain.depth, chain.via, s.id, s.number, s.state, lot.number, titrant.name, s.basis, calc.value,
-       calc.expanded_uncertainty, person.full_name, s.started_at, standard.number, substance.name, standard.purity,
-       standard.state, file.id, file.name, file.sha256
+       calc.expanded_uncertainty, person.full_name, s.started_at, standard.number, substance.name,
+       standard.purity, standard.state, file.id, file.name, file.sha256
 FROM chain
 JOIN labrecords_standardization AS s ON s.id = chain.id
 JOIN labrecords_titrantlot AS lot ON lot.id = s.lot_id
@@ -55,7 +68,8 @@ JOIN labrecords_sample AS sample ON sample.id = run.sample_id
 LEFT JOIN labrecords_batch AS batch ON batch.id = sample.batch_id
 LEFT JOIN labrecords_product AS product ON product.id = batch.product_id
 LEFT JOIN labrecords_calculation AS calc ON calc.id = run.calculation_id
-WHERE run.standardization_id IN (SELECT id FROM resting) OR run.excess_standardization_id IN (SELECT id FROM resting)
+WHERE run.standardization_id IN (SELECT id FROM resting)
+   OR run.excess_standardization_id IN (SELECT id FROM resting) OR run.id = ANY (%s)
 ORDER BY run.started_at DESC, run.id DESC
 """
 
@@ -75,10 +89,10 @@ class ChainLink:
     value: float | None
     expanded_uncertainty: float | None
     started_by: str
-    started_at: Any
+    started_at: datetime
     standard: str | None
     substance: str | None
-    purity: Any
+    purity: Decimal | None
     standard_state: str | None
     certificate_id: int | None
     certificate: str | None
@@ -101,7 +115,7 @@ class RestingRun:
     expanded_uncertainty: float | None
     unit: str | None
     outcome: str | None
-    started_at: Any
+    started_at: datetime
     in_question: bool
 
 
@@ -112,10 +126,10 @@ def chain_up(*, run_id: int | None = None, standardization_id: int | None = None
         return [ChainLink(*row) for row in cursor.fetchall()]
 
 
-def fan_down(standardization_ids: Sequence[int]) -> list[RestingRun]:
-    """Every run that rests on these standardizations at any remove, newest first."""
+def fan_down(standardization_ids: Sequence[int], *, run_ids: Sequence[int] = ()) -> list[RestingRun]:
+    """Every run that rests on these standardizations at any remove, and these runs, newest first."""
     with connection.cursor() as cursor:
-        cursor.execute(RESTING + FAN_DOWN, [list(standardization_ids)])
+        cursor.execute(RESTING + FAN_DOWN, [list(standardization_ids), list(run_ids)])
         return [RestingRun(*row) for row in cursor.fetchall()]
 
 
@@ -124,6 +138,49 @@ def standardizations_resting_on(ids: Sequence[int]) -> list[int]:
     with connection.cursor() as cursor:
         cursor.execute(RESTING + "SELECT id FROM resting ORDER BY id", [list(ids)])
         return [row[0] for row in cursor.fetchall()]
+
+
+def runs_on_instrument(instrument: Instrument) -> list[RestingRun]:
+    """Every run that used an instrument, or rests on a standardization that did."""
+    uses = UsedInstrument.objects.filter(instrument=instrument)
+    standardizations = uses.filter(standardization__isnull=False).values_list("standardization_id", flat=True)
+    runs = uses.filter(run__isnull=False).values_list("run_id", flat=True)
+    return fan_down([key for key in standardizations if key], run_ids=[key for key in runs if key])
+
+
+def runs_of_source(source: Batch | Sample) -> list[RestingRun]:
+    """Every run of a sample, or of all samples of a batch."""
+    of = Q(sample__batch=source) if isinstance(source, Batch) else Q(sample=source)
+    return fan_down([], run_ids=list(Run.objects.filter(of).values_list("pk", flat=True)))
+
+
+def certified_by(name: str) -> ReferenceStandard | Instrument | None:
+    """What a certificate is of, by the name of its file: a reference standard or a calibrated instrument."""
+    standard = ReferenceStandard.objects.filter(certificate__name__iexact=name).order_by("-id").first()
+    if standard is not None:
+        return standard
+    calibrations = InstrumentCalibration.objects.filter(certificate__name__iexact=name).order_by("-id")
+    calibration = calibrations.select_related("instrument").first()
+    return calibration.instrument if calibration else None
+
+
+def signatures_on_chain(run: Run | None, links: Sequence[ChainLink]) -> QuerySet[Signature]:
+    """The signatures on a run and on every standardization above it, oldest first."""
+    on = Q(noun="standardization", record_id__in=[link.standardization_id for link in links])
+    if run is not None:
+        on |= Q(noun="run", record_id=run.pk)
+    return Signature.objects.filter(on).order_by("id")
+
+
+def instruments_on_chain(run: Run | None, links: Sequence[ChainLink]) -> QuerySet[UsedInstrument]:
+    """The instruments of a run and of every standardization above it, each with the calibration that held."""
+    used = Q(standardization_id__in=[link.standardization_id for link in links])
+    if run is not None:
+        used |= Q(run=run)
+    found = UsedInstrument.objects.filter(used).select_related(
+        "run", "standardization", "instrument", "calibration__certificate"
+    )
+    return found.order_by("-run_id", "-standardization__started_at", "id")
 
 
 def runs_resting_on(ids: Sequence[int]) -> list[int]:

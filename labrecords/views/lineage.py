@@ -1,24 +1,48 @@
-"""Lineage: from a result up to certificates, and from a lot or a standard down to every batch."""
+"""Lineage: from a result up to certificates, and from anything it rests on down to every batch."""
 
 from __future__ import annotations
 
+import json
 from collections import Counter
+from collections.abc import Sequence
+from datetime import UTC, datetime
 from typing import Any
 
 from django.http import HttpRequest, HttpResponse, JsonResponse
 from django.shortcuts import get_object_or_404, redirect, render
 from django.urls import reverse
+from django.utils import timezone
 from django.views.decorators.http import require_GET
 
 from labrecords import writing
+from labrecords.canonical import sha256_of
 from labrecords.documents.provenance import provenance_of_run
 from labrecords.figures.chain import chain
-from labrecords.models import ReferenceStandard, Run, Standardization, TitrantLot
-from labrecords.queries.find import exact_match
-from labrecords.queries.lineage import ChainLink, chain_up, fan_down
-from labrecords.queries.replicate import instruments_of
+from labrecords.models import (
+    Batch,
+    Instrument,
+    Investigation,
+    ReferenceStandard,
+    Run,
+    Sample,
+    Signature,
+    Standardization,
+    TitrantLot,
+)
+from labrecords.queries.find import Match, exact_match
+from labrecords.queries.history import sentences_about
+from labrecords.queries.lineage import (
+    ChainLink,
+    RestingRun,
+    certified_by,
+    chain_up,
+    fan_down,
+    instruments_on_chain,
+    runs_of_source,
+    runs_on_instrument,
+    signatures_on_chain,
+)
 from labrecords.queries.run import runs
-from labrecords.queries.signature import signatures_of
 from labrecords.queries.standard import standardizations_using
 from labrecords.views.access import signed_in
 
@@ -27,17 +51,21 @@ PAGES = {
     "standardization": "lineage-standardization",
     "titrant lot": "lineage-lot",
     "reference standard": "lineage-standard",
+    "instrument": "lineage-instrument",
+    "batch": "lineage-batch",
+    "sample": "lineage-sample",
 }
+VIA = ("titrant", "excess solution")
 
 
 @signed_in
 @require_GET
 def find(request: HttpRequest) -> HttpResponse:
-    """Type or scan any number: a run goes up, a lot or a standard goes down."""
-    q = request.GET.get("q", "").strip()[:80]
-    found = exact_match(q) if q else None
+    """Type or scan any number, or the name of a certificate: each has its lineage."""
+    q = request.GET.get("q", "").strip()[:200]
+    found = _found(q) if q else None
     if found is not None:
-        return redirect(PAGES.get(found.kind, found.page), found.number)
+        return redirect(found.page, found.number)
     newest = runs().filter(state="approved")[:8]
     return render(request, "lineage/find.html", {"q": q, "nothing": bool(q), "newest": newest})
 
@@ -51,9 +79,9 @@ def run(request: HttpRequest, number: str) -> HttpResponse:
     context = {
         "run": record,
         "links": links,
-        "chains": [chain(_marks(record, [link for link in links if link.via == via])[::-1]) for via in ("titrant", "excess solution") if any(link.via == via for link in links)],
-        "instruments": instruments_of(record),
-        "signatures": signatures_of("run", record.pk),
+        "chains": _drawings(record, links),
+        "instruments": instruments_on_chain(record, links),
+        "signatures": signatures_on_chain(record, links),
         "calculation": record.calculation,
     }
     return render(request, "lineage/run.html", context)
@@ -64,9 +92,27 @@ def run(request: HttpRequest, number: str) -> HttpResponse:
 def provenance(request: HttpRequest, number: str) -> HttpResponse:
     """The chain of one result as W3C PROV-JSON."""
     record = get_object_or_404(runs(), number=number)
-    answer = JsonResponse(provenance_of_run(record, chain_up(run_id=record.pk)), json_dumps_params={"indent": 1})
+    answer = JsonResponse(
+        provenance_of_run(record, chain_up(run_id=record.pk)), json_dumps_params={"indent": 1}
+    )
     answer["Content-Disposition"] = f'attachment; filename="{record.number}.prov.json"'
     return answer
+
+
+@signed_in
+@require_GET
+def signed(request: HttpRequest, pk: int) -> HttpResponse:
+    """A record as it stood when it was signed, and what became of it since."""
+    signature = get_object_or_404(Signature.objects.select_related("signer"), pk=pk)
+    record = _record_signed(signature)
+    context = {
+        "signature": signature,
+        "content": _rows(json.loads(signature.content)),
+        "is_whole": sha256_of(signature.content) == signature.content_sha256,
+        "record": record,
+        "history": sentences_about(record) if record else [],
+    }
+    return render(request, "lineage/signed.html", context)
 
 
 @signed_in
@@ -74,8 +120,9 @@ def provenance(request: HttpRequest, number: str) -> HttpResponse:
 def standardization(request: HttpRequest, number: str) -> HttpResponse:
     """What one standardization rests on, and what rests on it."""
     record = get_object_or_404(Standardization, number=number)
-    title, back = f"Standardization {number}", reverse("standardization-sheet", args=[number])
-    return _down(request, [record.pk], title=title, back=back, above=chain_up(standardization_id=record.pk))
+    title, back = f"standardization {number}", reverse("standardization-sheet", args=[number])
+    above = chain_up(standardization_id=record.pk)
+    return _down(request, fan_down([record.pk]), title=title, back=back, above=above)
 
 
 @signed_in
@@ -84,7 +131,8 @@ def lot(request: HttpRequest, number: str) -> HttpResponse:
     """Everything that rests on one bottle of titrant."""
     record = get_object_or_404(TitrantLot, number=number)
     ids = [*record.standardizations.values_list("pk", flat=True)]
-    return _down(request, ids, title=f"Titrant lot {number}", back=reverse("titrant_lot-detail", args=[number]))
+    back = reverse("titrant_lot-detail", args=[number])
+    return _down(request, fan_down(ids), title=f"titrant lot {number}", back=back)
 
 
 @signed_in
@@ -92,41 +140,137 @@ def lot(request: HttpRequest, number: str) -> HttpResponse:
 def standard(request: HttpRequest, number: str) -> HttpResponse:
     """Everything that rests on one lot of a reference standard."""
     record = get_object_or_404(ReferenceStandard, number=number)
-    ids = standardizations_using(record)
-    return _down(request, ids, title=f"Reference standard {number}", back=reverse("standard-detail", args=[number]))
+    back = reverse("standard-detail", args=[number])
+    resting = fan_down(standardizations_using(record))
+    return _down(request, resting, title=f"reference standard {number}", back=back)
+
+
+@signed_in
+@require_GET
+def instrument(request: HttpRequest, identifier: str) -> HttpResponse:
+    """Every run that an instrument took part in, itself or through a standardization."""
+    record = get_object_or_404(Instrument, identifier=identifier)
+    back = reverse("instrument-detail", args=[identifier])
+    return _down(request, runs_on_instrument(record), title=f"instrument {identifier}", back=back)
+
+
+@signed_in
+@require_GET
+def batch(request: HttpRequest, number: str) -> HttpResponse:
+    """The runs of a batch, each with its own chain."""
+    record = get_object_or_404(Batch, number=number)
+    back = reverse("batch-detail", args=[number])
+    return _down(request, runs_of_source(record), title=f"batch {number}", back=back)
+
+
+@signed_in
+@require_GET
+def sample(request: HttpRequest, number: str) -> HttpResponse:
+    """The runs of a sample, each with its own chain."""
+    record = get_object_or_404(Sample, number=number)
+    back = reverse("sample-detail", args=[number])
+    return _down(request, runs_of_source(record), title=f"sample {number}", back=back)
+
+
+def _found(q: str) -> Match | None:
+    """The lineage of a number, of the run that an investigation is about, or of what a certificate is of."""
+    found = exact_match(q)
+    if found is None:
+        certified = certified_by(q)
+        if certified is None:
+            return None
+        kind = "reference standard" if isinstance(certified, ReferenceStandard) else "instrument"
+        return Match(kind=kind, number=str(certified), page=PAGES[kind])
+    if found.kind == "investigation":
+        about = Investigation.objects.values_list("run__number", flat=True).get(number=found.number)
+        return Match(kind="run", number=about, page=PAGES["run"])
+    return Match(kind=found.kind, number=found.number, page=PAGES.get(found.kind, found.page))
 
 
 def _down(
-    request: HttpRequest, ids: list[int], *, title: str, back: str, above: list[ChainLink] | None = None
+    request: HttpRequest,
+    resting: Sequence[RestingRun],
+    *,
+    title: str,
+    back: str,
+    above: Sequence[ChainLink] = (),
 ) -> HttpResponse:
-    resting = fan_down(ids)
     by_batch = {row.batch: row for row in resting if row.batch}
     context: dict[str, Any] = {
         "title": title,
         "back": back,
-        "above": above or [],
+        "above": above,
         "resting": resting,
+        "states": dict(Counter(row.state for row in resting)),
         "batches": sorted(by_batch.values(), key=lambda row: row.batch or "", reverse=True),
-        "states": dict(Counter(row.batch_state for row in by_batch.values())),
+        "batch_states": dict(Counter(row.batch_state for row in by_batch.values())),
         "in_question": sum(row.in_question for row in resting),
     }
     return render(request, "lineage/down.html", context)
 
 
-def _marks(record: Run, links: list[ChainLink]) -> list[dict[str, Any]]:
-    """The chain as the drawing takes it: the result first, then each standardization, then the certificate."""
+def _drawings(record: Run, links: Sequence[ChainLink]) -> list[str]:
+    by_via = [[link for link in links if link.via == via] for via in VIA]
+    return [chain(_marks(record, found)[::-1]) for found in by_via if found]
+
+
+def _marks(record: Run, links: Sequence[ChainLink]) -> list[dict[str, Any]]:
+    """The chain as it is drawn: the result first, then the standardizations, then the certificate."""
     marks = [
-        {"number": record.number, "title": record.method_version.method.title, "who": record.started_by.full_name,
-         "when": writing.day(record.started_at), "state": record.state, "url": reverse("run-sheet", args=[record.number])}
+        _mark(
+            record.number, record.method_version.method.title, page="run-sheet", state=record.state,
+            who=record.started_by.full_name, when=writing.day(record.started_at),
+        )
     ]  # fmt: skip
     for link in links:
         marks.append(
-            {"number": link.number, "title": f"lot {link.lot}", "who": link.started_by, "when": writing.day(link.started_at),
-             "state": link.state, "url": reverse("standardization-sheet", args=[link.number])}
+            _mark(
+                link.number, f"lot {link.lot}", page="standardization-sheet", state=link.state,
+                who=link.started_by, when=writing.day(link.started_at),
+            )
         )  # fmt: skip
         if link.standard:
             marks.append(
-                {"number": link.standard, "title": link.substance, "who": link.certificate or "", "when": "",
-                 "state": link.standard_state, "url": reverse("standard-detail", args=[link.standard])}
+                _mark(
+                    link.standard, link.substance, page="standard-detail", state=link.standard_state,
+                    who=link.certificate, when="",
+                )
             )  # fmt: skip
     return marks
+
+
+def _mark(
+    number: str, title: str | None, *, page: str, state: str | None, who: str | None, when: str
+) -> dict[str, Any]:
+    told = {"title": title or "", "state": state or "", "who": who or "", "when": when}
+    return {"number": number, "url": reverse(page, args=[number]), **told}
+
+
+def _record_signed(signature: Signature) -> Run | Standardization | None:
+    if signature.noun == "run":
+        return Run.objects.filter(pk=signature.record_id).first()
+    if signature.noun == "standardization":
+        return Standardization.objects.filter(pk=signature.record_id).first()
+    return None
+
+
+def _rows(content: Any, *, name: str = "") -> list[tuple[str, str]]:
+    """Signed content as lines of a name and a value, in the words of its keys."""
+    if isinstance(content, dict):
+        return [row for key, item in content.items() for row in _rows(item, name=f"{name} {key}".strip())]
+    if isinstance(content, list):
+        return [
+            row
+            for place, item in enumerate(content, 1)
+            for row in _rows(item, name=f"{name} {place}".strip())
+        ]
+    return [(name.replace("_", " "), _said(content, name=name))]
+
+
+def _said(value: Any, *, name: str) -> str:
+    """Moments are signed in microseconds since 1970."""
+    if value in (None, ""):
+        return "empty"
+    if name.endswith("_at") and str(value).isdigit():
+        return writing.when(timezone.localtime(datetime.fromtimestamp(int(value) / 1e6, tz=UTC)))
+    return str(value)
