@@ -1,6 +1,7 @@
 """The cast: the people of the tests, recorded by the services like anybody else.
 
 Every test body runs as the application role; ``as_owner`` for what the owner may: tests/support/database.py.
+``as_enemy`` alters records behind the trail's back: tests/support/enemy.py.
 ``worker`` and ``broker_down`` are a real worker and its broker: tests/support/worker.py.
 """
 
@@ -13,12 +14,13 @@ from labrecords.services.user import record_first_administrator, record_user
 from tests.factories.bench import Bench, set_up_bench
 from tests.factories.people import PASSWORD
 from tests.support.database import _flush_as_superuser, as_owner, django_db_setup
+from tests.support.enemy import as_enemy
 from tests.support.trail import break_trail
 from tests.support.worker import _one_worker, broker_down, worker
 
 __all__ = [
-    "_flush_as_superuser", "_one_worker", "as_owner", "break_trail", "broker_down", "django_db_setup",
-    "worker",
+    "_flush_as_superuser", "_one_worker", "as_enemy", "as_owner", "break_trail", "broker_down",
+    "django_db_setup", "worker",
 ]  # fmt: skip
 
 

@@ -92,9 +92,14 @@ def run(request: HttpRequest, number: str) -> HttpResponse:
 def provenance(request: HttpRequest, number: str) -> HttpResponse:
     """The chain of one result as W3C PROV-JSON."""
     record = get_object_or_404(runs(), number=number)
-    answer = JsonResponse(
-        provenance_of_run(record, chain_up(run_id=record.pk)), json_dumps_params={"indent": 1}
+    links = chain_up(run_id=record.pk)
+    document = provenance_of_run(
+        record,
+        links,
+        instruments=instruments_on_chain(record, links),
+        signatures=signatures_on_chain(record, links),
     )
+    answer = JsonResponse(document, json_dumps_params={"indent": 1})
     answer["Content-Disposition"] = f'attachment; filename="{record.number}.prov.json"'
     return answer
 
