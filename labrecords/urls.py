@@ -189,6 +189,7 @@ control_urls = [
     path("control-samples/<str:code>/", control_sample.detail, name="control_sample-detail"),
     path("control-samples/<str:code>/withdraw/", control_sample.withdraw, name="control_sample-withdraw"),
     path("charts/", control_chart.list, name="control_chart-list"),
+    path("capability/", control_chart.capability, name="control_chart-capability"),
     path("charts/record/", control_chart.record, name="control_chart-record"),
     path("charts/<str:code>/", control_chart.detail, name="control_chart-detail"),
     path("charts/<str:code>/limits/", control_chart.set_limits, name="control_chart-set_limits"),

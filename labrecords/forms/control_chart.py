@@ -15,17 +15,30 @@ class ChartForm(forms.Form):
     code = forms.CharField(max_length=20, label="Code")
     title = forms.CharField(max_length=120, label="Title")
     control_sample = forms.ModelChoiceField(
-        queryset=ControlSample.objects.filter(withdrawn_reason=""), label="Of the control sample", required=False
+        queryset=ControlSample.objects.filter(withdrawn_reason=""),
+        label="Of the control sample",
+        required=False,
     )
-    titrant = forms.ModelChoiceField(queryset=Titrant.objects.filter(superseded_by=None), label="or of the titrant", required=False)
+    titrant = forms.ModelChoiceField(
+        queryset=Titrant.objects.filter(superseded_by=None), label="or of the titrant", required=False
+    )
 
 
 def typed_limits(data: Any) -> dict[str, Any]:
     """The baseline, its exclusions and the rules, as chosen."""
-    baseline = [int(text) for text in data.getlist("baseline") if text.isascii() and text.isdigit()]
     excluded = {
-        int(name.removeprefix("why-")): text.strip()
+        _key(name.removeprefix("why-")): text.strip()
         for name, text in data.items()
-        if name.startswith("why-") and name[4:].isdigit() and text.strip() and int(name[4:]) in baseline
+        if name.startswith("why-") and text.strip()
     }
-    return {"baseline": baseline, "excluded": excluded, "rules": data.getlist("rules"), "reason": data.get("limits_reason", "").strip()}
+    return {
+        "baseline": [_key(text) for text in data.getlist("baseline")],
+        "excluded": excluded,
+        "rules": data.getlist("rules"),
+        "reason": data.get("limits_reason", "").strip(),
+    }
+
+
+def _key(text: str) -> int:
+    """The key of a point; what is none is no point's key."""
+    return int(text) if text.isascii() and text.isdigit() and len(text) < 19 else 0

@@ -5,12 +5,13 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from datetime import datetime
+from itertools import groupby
 from typing import Any
 
-from django.db.models import QuerySet
+from django.db.models import F, QuerySet
 
 from analysis.control import IndividualsLimits, individuals_limits
-from analysis.run_rules import RULES, signals
+from analysis.run_rules import OTHER_RULES, RULES, signals
 from labrecords.models import Calculation, ControlChart, ControlLimits, RecordState, VersionState
 
 
@@ -42,44 +43,90 @@ def charts() -> QuerySet[ControlChart]:
 
 def effective_limits(chart: ControlChart) -> ControlLimits | None:
     """The limits in use."""
-    return chart.limits.filter(state=VersionState.EFFECTIVE).first()
+    return next((limits for limits in versions_of(chart) if limits.state == VersionState.EFFECTIVE), None)
+
+
+def versions_of(chart: ControlChart) -> list[ControlLimits]:
+    """Every version of a chart's limits that was in force, the first one first."""
+    return sorted(
+        (limits for limits in chart.limits.all() if limits.effective_from), key=lambda limits: limits.number
+    )
 
 
 def points_of(chart: ControlChart) -> list[ChartPoint]:
-    """The approved values of a chart in the order they were begun: control runs, or standardizations lot by lot."""
+    """The approved values of a chart in the order they were begun: control runs, or a titrant lot by lot."""
+    rows = Calculation.objects.filter(value__isnull=False).defer("inputs", "outputs")
     if chart.control_sample_id:
-        rows = Calculation.objects.filter(
-            run__sample__control_sample_id=chart.control_sample_id, run__state=RecordState.APPROVED, value__isnull=False
-        ).order_by("run__started_at", "run_id")
-        used = [row for row in rows.select_related("run__sample") if row.run and row.run.calculation_id == row.pk]
-        return [_run_point(row) for row in used]
-    rows = Calculation.objects.filter(
+        of_sample = rows.filter(
+            run__sample__control_sample_id=chart.control_sample_id,
+            run__state=RecordState.APPROVED,
+            run__calculation_id=F("pk"),
+        )
+        ordered = of_sample.select_related("run__sample").order_by("run__started_at", "run_id")
+        return [_run_point(row) for row in ordered]
+    of_titrant = rows.filter(
         standardization__lot__titrant_id=chart.titrant_id,
         standardization__state=RecordState.APPROVED,
-        value__isnull=False,
-    ).order_by("standardization__started_at", "standardization_id")
-    found = rows.select_related("standardization__lot")
-    used = [row for row in found if row.standardization and row.standardization.calculation_id == row.pk]
-    return [_standardization_point(row) for row in used]
+        standardization__calculation_id=F("pk"),
+    )
+    begun = of_titrant.select_related("standardization__lot")
+    return [
+        _standardization_point(row)
+        for row in begun.order_by("standardization__started_at", "standardization_id")
+    ]
 
 
 def limits_from_baseline(
     points: Sequence[ChartPoint], *, baseline: Sequence[int], excluded: Mapping[int, str]
 ) -> IndividualsLimits:
-    """Individuals and moving range limits from the chosen points, listed exclusions left out."""
-    values = [point.value for point in points if point.calculation_id in baseline and point.calculation_id not in excluded]
-    return individuals_limits(values)
+    """Individuals and moving range limits from the chosen points; ValueError when there are none.
+
+    An excluded point takes no part, and neither do the moving ranges that touch it.
+    """
+    chosen = [point for point in points if point.calculation_id in set(baseline)]
+    left_out = {
+        place: excluded[point.calculation_id]
+        for place, point in enumerate(chosen)
+        if point.calculation_id in excluded
+    }
+    return individuals_limits([point.value for point in chosen], excluded=left_out)
 
 
-def signals_on(points: Sequence[ChartPoint], limits: ControlLimits) -> list[ChartSignal]:
-    """Every point that breaks one of the rules in use, with the rule in words."""
-    broken = signals([point.value for point in points], centre=limits.centre, sigma=limits.sigma, rules=limits.rules)
-    return [ChartSignal(point=points[position], rule=rule) for rule, positions in broken.items() for position in positions]
+def limits_at_points(
+    points: Sequence[ChartPoint], versions: Sequence[ControlLimits]
+) -> list[ControlLimits | None]:
+    """The limits that judge each point: those in force when it was begun, before the first ones the first."""
+    return [_limits_at(point.at, versions) for point in points]
+
+
+def signals_on(points: Sequence[ChartPoint], versions: Sequence[ControlLimits]) -> list[ChartSignal]:
+    """Every point that breaks a rule in use at its time, in order; new limits begin to count anew."""
+    found: list[tuple[int, ChartSignal]] = []
+    start = 0
+    for limits, group in groupby(limits_at_points(points, versions), key=lambda item: item):
+        stop = start + len(list(group))
+        part = points[start:stop]
+        if limits is not None:
+            broken = _broken(part, limits)
+            found += [(start + at, ChartSignal(point=part[at], rule=rule)) for at, rule in broken]
+        start = stop
+    return [signal for _, signal in sorted(found, key=lambda item: item[0])]
+
+
+def _broken(part: Sequence[ChartPoint], limits: ControlLimits) -> list[tuple[int, str]]:
+    values = [point.value for point in part]
+    broken = signals(values, centre=limits.centre, sigma=limits.sigma, rules=limits.rules)
+    return [(place, rule) for rule, places in broken.items() for place in places]
+
+
+def _limits_at(moment: datetime, versions: Sequence[ControlLimits]) -> ControlLimits | None:
+    held = [item for item in versions if item.effective_from and item.effective_from <= moment]
+    return held[-1] if held else versions[0] if versions else None
 
 
 def known_rules() -> list[str]:
     """The run rules by name, each saying what it says."""
-    return list(RULES)
+    return [*RULES, *OTHER_RULES]
 
 
 def limits_as_signed(limits: ControlLimits) -> dict[str, Any]:
@@ -99,17 +146,17 @@ def limits_as_signed(limits: ControlLimits) -> dict[str, Any]:
 
 
 def _run_point(row: Calculation) -> ChartPoint:
-    assert row.run is not None and row.value is not None
-    return ChartPoint(
-        calculation_id=row.pk, value=row.value, expanded_uncertainty=row.expanded_uncertainty, at=row.run.started_at,
-        number=row.run.number, noun="run", label=row.run.sample.number,
-    )  # fmt: skip
+    assert row.run is not None
+    return _point(row, at=row.run.started_at, number=row.run.number, noun="run", label=row.run.sample.number)
 
 
 def _standardization_point(row: Calculation) -> ChartPoint:
     record = row.standardization
-    assert record is not None and row.value is not None
-    return ChartPoint(
-        calculation_id=row.pk, value=row.value, expanded_uncertainty=row.expanded_uncertainty, at=record.started_at,
-        number=record.number, noun="standardization", label=record.lot.number,
-    )  # fmt: skip
+    assert record is not None
+    at, lot = record.started_at, record.lot.number
+    return _point(row, at=at, number=record.number, noun="standardization", label=lot)
+
+
+def _point(row: Calculation, *, at: datetime, number: str, noun: str, label: str) -> ChartPoint:
+    assert row.value is not None
+    return ChartPoint(row.pk, row.value, row.expanded_uncertainty, at, number, noun, label)

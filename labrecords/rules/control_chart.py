@@ -5,7 +5,8 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 
 from labrecords.models import ControlChart, ControlSample, Titrant, User
-from labrecords.queries.control_chart import ChartPoint, known_rules
+from labrecords.queries.control_chart import ChartPoint, known_rules, limits_from_baseline
+from labrecords.rules.identifier import objections_to_identifier
 
 FEWEST_POINTS = 10
 
@@ -15,8 +16,8 @@ def objections_to_recording_chart(
 ) -> list[str]:
     """A supervisor records a chart of exactly one thing."""
     found = [] if by.is_supervisor else [f"{by.full_name} is not a supervisor. A supervisor records charts."]
-    if not code.strip() or ControlChart.objects.filter(code=code).exists():
-        found.append(f"Code is {code!r}: write one that is not in use.")
+    known = ControlChart.objects.values_list("code", flat=True)
+    found += objections_to_identifier(code, field="Code", known=known)
     if not title.strip():
         found.append("Title is empty: say what the chart watches.")
     if (control_sample is None) == (titrant is None):
@@ -34,22 +35,39 @@ def objections_to_setting_limits(
     rules: Sequence[str],
     reason: str,
 ) -> list[str]:
-    """A baseline of at least ten points of this chart; each exclusion with its sentence."""
+    """A baseline of at least ten points of this chart that vary; each exclusion with its sentence."""
     found = [] if by.is_supervisor else [f"{by.full_name} is not a supervisor. A supervisor sets limits."]
-    known = {point.calculation_id for point in points}
-    kept = [key for key in baseline if key not in excluded]
-    if not set(baseline) <= known:
-        found.append("The baseline names points that are not on this chart. Choose from the points shown.")
-    if len(kept) < FEWEST_POINTS:
-        found.append(f"The baseline has {len(kept)} points; at least {FEWEST_POINTS} are needed, twenty or more are usual.")
-    found += [
-        f"Point {key} is excluded without a sentence: say which cause was found."
-        for key, why in excluded.items()
-        if len(why.strip()) < 10
-    ]
-    found += [f"Rule {name!r} is not known; expected one of: {'; '.join(known_rules())}." for name in rules if name not in known_rules()]
+    found += _objections_to_baseline(points, baseline=baseline, excluded=excluded)
+    unknown = [name for name in rules if name not in known_rules()]
+    found += [f"Rule {name!r} is not known; expected one of: {'; '.join(known_rules())}." for name in unknown]
     if not rules:
         found.append("Choose at least one run rule.")
     if not reason.strip():
         found.append("Reason is empty: say why these limits are set.")
+    return found
+
+
+def _objections_to_baseline(
+    points: Sequence[ChartPoint], *, baseline: Sequence[int], excluded: Mapping[int, str]
+) -> list[str]:
+    by_key = {point.calculation_id: point for point in points}
+    if not set(baseline) <= by_key.keys():
+        return ["The baseline names points that are not on this chart. Choose from the points shown."]
+    if not set(excluded) <= set(baseline):
+        return ["A point is left out that is not in the baseline. Tick it, or clear its sentence."]
+    found = [
+        f"{by_key[key].number} is left out without a sentence: say which cause was found."
+        for key, why in excluded.items()
+        if len(why.strip()) < 10
+    ]
+    kept = len(set(baseline) - set(excluded))
+    if kept < FEWEST_POINTS:
+        return [
+            *found,
+            f"The baseline has {kept} points; at least {FEWEST_POINTS} are needed, twenty or more are usual.",
+        ]
+    try:
+        limits_from_baseline(points, baseline=baseline, excluded=dict.fromkeys(excluded, "why"))
+    except ValueError as problem:
+        found.append(str(problem))
     return found

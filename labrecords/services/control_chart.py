@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
+from typing import Any
 
 from django.db import transaction
 from django.utils import timezone
@@ -17,14 +18,18 @@ from labrecords.services.signature import Credentials, sign
 
 @transaction.atomic(durable=True)
 def record_chart(
-    *, by: User, code: str, title: str, control_sample: ControlSample | None = None, titrant: Titrant | None = None
+    *,
+    by: User,
+    code: str,
+    title: str,
+    control_sample: ControlSample | None = None,
+    titrant: Titrant | None = None,
 ) -> ControlChart:
     """Record a chart of a control sample's results or of a titrant's concentration, lot by lot."""
-    refuse_if(
-        objections_to_recording_chart(code, by=by, title=title, control_sample=control_sample, titrant=titrant)
-    )
+    of: dict[str, Any] = {"title": title, "control_sample": control_sample, "titrant": titrant}
+    refuse_if(objections_to_recording_chart(code, by=by, **of))
     with audit.event("control_chart.record", by=by, subject=code):
-        return ControlChart.objects.create(code=code, title=title, control_sample=control_sample, titrant=titrant)
+        return ControlChart.objects.create(code=code, **of)
 
 
 @transaction.atomic(durable=True)
@@ -58,8 +63,9 @@ def set_limits(
         limits = ControlLimits.objects.create(
             chart=chart, number=last.number + 1 if last else 1, state=VersionState.EFFECTIVE,
             centre=computed.centre, sigma=computed.sigma, mean_moving_range=computed.mean_moving_range,
-            baseline=list(baseline), excluded=[{"calculation": key, "why": why} for key, why in excluded.items()],
-            rules=list(rules), effective_from=event.at, reason=reason,
+            baseline=list(dict.fromkeys(baseline)), rules=list(dict.fromkeys(rules)), reason=reason,
+            excluded=[{"calculation": key, "why": why} for key, why in excluded.items()],
+            effective_from=event.at,
         )  # fmt: skip
         sign(
             Meaning.LIMITS_SET, by=by, credentials=credentials, noun="control_limits", record_id=limits.pk,
