@@ -13,9 +13,9 @@ from analysis.activity import nernst
 from analysis.balance import NUISANCE, Chemistry, Parameter, PriorOf, prior_of
 from analysis.curve import Curve
 from analysis.electrode import Electrode, electrode
-from analysis.equivalence import equivalence_steps
 from analysis.explicit import Complex, Precipitation, Redox
 from analysis.fit_likelihood import Observed
+from analysis.fit_start import anchor, first_amounts
 from analysis.scatter import scatter
 from analysis.system import System
 
@@ -28,7 +28,6 @@ MODELS: dict[str, Callable[..., Chemistry]] = {
     "redox": Redox,
     "complex": Complex,
 }
-BESIDE = 3  # steps about a jump in which no other is looked for
 GLASS_OFFSET = 0.5  # prior deviation of a pH electrode read in mV [pH]
 
 
@@ -78,8 +77,8 @@ class Problem:
     is_noise_known: bool
     unit: float  # reading per decimal unit; negative where the reading falls as x rises
     least_sd: float  # of a reading [decimal units]
-    stated_carbonate: float
-    is_convex: bool  # whether the first step, from any guess, leads to the right place
+    system: System
+    is_reversed: npt.NDArray[np.bool_]  # curves that go the wrong way
 
     @property
     def precision(self) -> FloatArray:
@@ -93,12 +92,13 @@ def prepare(
     """Check the curves against the system and lay them out."""
     _check(curves, system=system, guess=guess, settings=settings)
     volume, reading, mask, points = _rows(curves)
+    _check_rows(volume, reading, mask)
     prior = prior_of((*settings.nuisance, *(settings.centres or {})), dict(settings.priors or {}))
     noise = _noise(volume, reading, mask, curves[0].quantity, settings)
     unit = _unit(system, curves[0].quantity)
     chemistry: Chemistry = MODELS[system.kind](system, prior=prior)
     linear = reading / unit
-    amounts = _first_amounts(system, volume, linear, guess)
+    amounts = first_amounts(system, volume, linear, guess)
     electrode_, offset = _electrode(
         chemistry, system, curves[0].quantity, prior, volume, linear, points, amounts.sum(axis=1)
     )
@@ -118,7 +118,7 @@ def prepare(
     return Problem(
         chemistry, observed, reading, centre.copy(), centre, priors, names, groups, points, noise,
         settings.noise is not None, unit, LEAST_SD[curves[0].quantity] / abs(unit),
-        system.carbonate, system.kind == "acid_base",
+        system, _is_reversed(reading, quantity=curves[0].quantity, system=system),
     )  # fmt: skip
 
 
@@ -132,8 +132,6 @@ def _check(curves: Sequence[Curve], *, system: System, guess: float | None, sett
                 f"The curve is of {curve.quantity}; the model of {system.kind.replace('_', ' ')} takes "
                 f"{' or '.join(wanted)}, the same for all curves."
             )
-        if system.kind == "acid_base":
-            _check_direction(curve, titrant=system.titrant)
         if curve.volume.size < 8:
             raise ValueError(f"The curve has {curve.volume.size} points; the model needs at least 8.")
     for name, value in (("Guess", guess), ("Noise", settings.noise), ("Volume sd", settings.volume_sd)):
@@ -141,14 +139,28 @@ def _check(curves: Sequence[Curve], *, system: System, guess: float | None, sett
             raise ValueError(f"{name} is {value}; a finite number above 0 is expected.")
 
 
-def _check_direction(curve: Curve, *, titrant: str) -> None:
-    """A base raises the pH, an acid lowers it; in mV a glass electrode goes the other way."""
-    part = max(curve.reading.size // 4, 1)
-    rise = float(np.median(curve.reading[-part:]) - np.median(curve.reading[:part]))
-    is_base = (rise > 0) == (curve.quantity == "pH")
-    if rise != 0 and is_base != (titrant == "base"):
-        shown = "an acid titrated with a base" if is_base else "a base titrated with an acid"
-        raise ValueError(f"The curve is that of {shown}; the titrant is given as {titrant}.")
+def _check_rows(volume: FloatArray, reading: FloatArray, mask: FloatArray | None) -> None:
+    for name, values in (("Volume", volume), ("Reading", reading)):
+        if not np.isfinite(values).all():
+            row, at = np.argwhere(~np.isfinite(values))[0]
+            raise ValueError(f"{name} {at + 1} is {values[row, at]}; a finite number is expected.")
+    forward = np.diff(volume, axis=1) > 0
+    if mask is not None:
+        forward |= mask[:, 1:] == 0
+    if not forward.all() or volume[:, 0].min() < 0:
+        raise ValueError(
+            "The volumes do not rise from point to point, from 0 on; a cleaned curve is expected."
+        )
+
+
+def _is_reversed(reading: FloatArray, *, quantity: str, system: System) -> npt.NDArray[np.bool_]:
+    """Whether each curve goes the wrong way: a base raises the pH, an acid lowers it; in mV a glass
+    electrode goes the other way.
+    """
+    part = max(reading.shape[1] // 4, 1)
+    rise = reading[:, -part:].mean(axis=1) - reading[:, :part].mean(axis=1)
+    is_base = (rise > 0) == (quantity == "pH")
+    return np.asarray((system.kind == "acid_base") & (rise != 0) & (is_base != (system.titrant == "base")))
 
 
 def _rows(curves: Sequence[Curve]) -> tuple[FloatArray, FloatArray, FloatArray | None, FloatArray]:
@@ -191,44 +203,6 @@ def _unit(system: System, quantity: str) -> float:
     return slope if rises else -slope
 
 
-def _first_amounts(system: System, volume: FloatArray, linear: FloatArray, guess: float | None) -> FloatArray:
-    """Equivalents of each analyte to start from [mL].
-
-    One jump is looked for in an acid-base curve, whose first step finds the amounts from any start;
-    elsewhere one for each analyte, in the order in which they are done with.
-    """
-    count = len(system.analytes)
-    wanted = 1 if system.kind == "acid_base" else count
-    ends = _steepest(volume, linear, wanted)
-    if guess is not None:
-        ends = ends * (guess / ends[:, -1:])
-    if system.kind == "acid_base":
-        return np.repeat(ends / count, count, axis=1)
-    amounts = np.empty_like(ends)
-    before: set[int] = set()
-    for place, step in enumerate(equivalence_steps(system)):
-        (new,) = set(np.flatnonzero(step.share)) - before
-        amounts[:, new] = ends[:, place] - (ends[:, place - 1] if place else 0.0)
-        before.add(int(new))
-    return np.asarray(np.maximum(amounts, 1e-3))
-
-
-def _steepest(volume: FloatArray, linear: FloatArray, wanted: int) -> FloatArray:
-    """Where each curve is steepest [mL], in order; the first two steps are left out, for a curve may begin
-    steeply.
-    """
-    step = np.diff(volume, axis=1)
-    slope = np.abs(np.diff(linear, axis=1)) / np.where(step > 0, step, np.inf)
-    slope[:, :2] = 0.0
-    places = np.arange(slope.shape[1])[None, :]
-    found = []
-    for _ in range(wanted):
-        at = slope.argmax(axis=1)[:, None]
-        found.append(0.5 * (np.take_along_axis(volume, at, 1) + np.take_along_axis(volume, at + 1, 1)))
-        slope = np.where(np.abs(places - at) <= BESIDE, 0.0, slope)
-    return np.asarray(np.sort(np.maximum(np.concatenate(found, axis=1), 1e-3), axis=1))
-
-
 def _electrode(
     chemistry: Chemistry, system: System, quantity: str, prior: PriorOf, volume: FloatArray,
     linear: FloatArray, points: FloatArray, guess: FloatArray,
@@ -254,21 +228,7 @@ def _electrode(
             first=first,
             centre=7.0,
         ), None
-    x, at = _anchor(system, volume, points, guess)
+    x, at = anchor(system, volume, points, guess)
     offset = np.take_along_axis(linear, at[:, None], 1)[:, 0] - x
     centred = electrode(linear, points=points, prior=prior, first=first, centre=0.0, free_offset=True)
     return centred, offset
-
-
-def _anchor(
-    system: System, volume: FloatArray, points: FloatArray, guess: FloatArray
-) -> tuple[FloatArray, npt.NDArray[np.intp]]:
-    """A point whose x can be told: excess titrant at the end of a precipitation, free metal at the start of
-    a complex.
-    """
-    c, rows = system.titrant_concentration, np.arange(volume.shape[0])
-    at = (
-        np.zeros(volume.shape[0], dtype=np.intp) if system.kind == "complex" else (points - 1).astype(np.intp)
-    )
-    away = np.maximum(np.abs(volume[rows, at] - guess), 0.02 * guess)
-    return -np.log10(c * away / (system.sample_volume + volume[rows, at])), at

@@ -18,6 +18,7 @@ from analysis.fit_summary import SMALLEST, Summary, summarise, unknown_parameter
 from analysis.system import System
 
 FloatArray = npt.NDArray[np.float64]
+FARTHEST_PRIOR = 14.0  # deviations of a prior; what ends there is at the edge of what is tried
 MOST, MOST_ALONE = 8, 60  # steps for a piece, and for the curves of it that need more
 
 
@@ -45,7 +46,8 @@ def run_fit(
 def _optimum(problem: Problem, *, tolerance: float, robust: bool) -> Optimum:
     """All curves together for a few steps; those that are not done yet then go on among themselves."""
     precision, alone = problem.precision, len(problem.points) == 1
-    pace = CAREFUL if alone or problem.chemistry.count > 1 or not problem.is_convex else QUICK
+    is_plain = problem.system.kind == "acid_base" and problem.chemistry.count == 1
+    pace = QUICK if is_plain and not alone else CAREFUL
     least_sd = None if problem.is_noise_known else problem.least_sd
 
     def run(start: FloatArray, rows: npt.NDArray[np.intp] | None, most: int) -> Optimum:
@@ -69,15 +71,21 @@ def _optimum(problem: Problem, *, tolerance: float, robust: bool) -> Optimum:
 def _problems(problem: Problem, optimum: Optimum, summary: Summary, *, tolerance: float) -> list[str]:
     """One sentence a curve, empty where all is well."""
     found = [""] * len(problem.points)
-    singular, late = summary.smallest < SMALLEST, ~(optimum.decrement < max(tolerance, 1e-4))
-    lost = ~np.isfinite(summary.volume_us).all(axis=1) | ~np.isfinite(optimum.theta).all(axis=1)
-    lost |= ~(summary.volumes[:, -1] > 0) | (
-        np.abs(optimum.theta - problem.centre) * problem.precision**0.5 > 14
-    ).any(axis=1)
-    for row in np.flatnonzero(singular | late | lost):
-        if singular[row] and np.isfinite(optimum.information[row]).all():
+    late = ~(optimum.decrement < max(tolerance, 1e-4))
+    lost = ~np.isfinite(summary.volume_us).all(axis=1) | ~(summary.volumes[:, -1] > 0)
+    far = (np.abs(optimum.theta - problem.centre) * np.sqrt(problem.precision) > FARTHEST_PRIOR).any(axis=1)
+    singular = summary.smallest < SMALLEST
+    for row in np.flatnonzero(problem.is_reversed | singular | late | lost | far):
+        if problem.is_reversed[row]:
+            found[row] = _reversed(problem.system.titrant)
+        elif singular[row] and np.isfinite(optimum.information[row]).all():
             name = unknown_parameter(optimum.information[row], problem.names)
             found[row] = f"The curve does not tell {name}: it cannot be known from these points."
         else:
             found[row] = "The model does not converge on this curve. Look at its chemistry and at the curve."
     return found
+
+
+def _reversed(titrant: str) -> str:
+    shown = "a base titrated with an acid" if titrant == "base" else "an acid titrated with a base"
+    return f"The curve is that of {shown}; the titrant is given as {titrant}."

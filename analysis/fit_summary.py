@@ -80,7 +80,7 @@ def _not_negative(
     factors = {place: (np.zeros(len(mean)), np.zeros(len(mean))) for place in places}
     for _ in range(SWEEPS if len(places) > 1 else 1):
         for place in places:
-            least = -problem.stated_carbonate if problem.groups[place] == "titrant carbonate" else 0.0
+            least = -problem.system.carbonate if problem.groups[place] == "titrant carbonate" else 0.0
             factor = _factor(mean[:, place], covariance[:, place, place], factors[place], least)
             precision, pull = factor[0] - factors[place][0], factor[1] - factors[place][1]
             column = covariance[:, :, place].copy()

@@ -11,7 +11,7 @@ from django.utils.safestring import SafeString, mark_safe
 def label_code(number: str) -> SafeString:
     """A QR code of a number as SVG, without colours or styles of its own."""
     out = io.BytesIO()
-    segno.make(number, error="m").save(
-        out, kind="svg", xmldecl=False, svgns=True, omitsize=True, border=2, svgclass="code", lineclass=None
+    segno.make_qr(number, error="m").save(  # never the micro form, which few scanners read
+        out, kind="svg", xmldecl=False, svgns=True, omitsize=True, border=4, svgclass="code", lineclass=None
     )
     return mark_safe(out.getvalue().decode())  # segno writes the path from the number alone

@@ -60,6 +60,7 @@ class CorrectingStandardForm(ReasonForm, CertificateValuesForm):
     """A correction in quarantine; without a file the certificate stays."""
 
     certificate = CertificateField(label="Another certificate", required=False, help_text=FILE_HINT)
+    field_order = (*CertificateValuesForm.base_fields, "certificate", "reason")
 
 
 def initial_of_standard(standard: ReferenceStandard, form: type[forms.Form]) -> dict[str, Any]:

@@ -65,6 +65,14 @@ def test_fit_equilibrium_batch_says_which_curve_failed() -> None:
         batch.fit(1)
 
 
+def test_fit_equilibrium_batch_leaves_out_only_the_curve_that_goes_the_wrong_way() -> None:
+    curves, _ = recorded(3)
+    curves[2] = Curve(VOLUMES, curves[2].reading[::-1], "pH", ())
+    problems = fit_equilibrium_batch(curves, system=ACETIC).problems
+    assert problems[:2] == ("", "")
+    assert "a base titrated with an acid; the titrant is given as base" in problems[2]
+
+
 def test_fit_equilibrium_batch_covers_the_truth_and_reaches_the_stated_uncertainty() -> None:
     curves, truth = recorded(3 * PIECE + 17, seed=2)
     batch = fit_equilibrium_batch(curves, system=ACETIC, settings=FitSettings(nuisance=("offset", "pKa")))

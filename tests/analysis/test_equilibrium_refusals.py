@@ -63,6 +63,21 @@ def test_fit_equilibrium_refuses_too_few_points() -> None:
 
 
 @pytest.mark.parametrize(
+    ("volume", "reading", "sentence"),
+    [
+        (VOLUMES, np.where(VOLUMES == 2.0, np.nan, 5.0), "Reading 9 is nan; a finite number is expected"),
+        (VOLUMES[::-1], VOLUMES, "The volumes do not rise from point to point"),
+        (VOLUMES - 1.0, VOLUMES, "The volumes do not rise from point to point, from 0 on"),
+    ],
+)
+def test_fit_equilibrium_refuses_a_curve_that_was_not_cleaned(
+    volume: np.ndarray, reading: np.ndarray, sentence: str
+) -> None:
+    with pytest.raises(ValueError, match=sentence):
+        fit_equilibrium(Curve(volume, reading, "pH", ()), system=ACETIC)
+
+
+@pytest.mark.parametrize(
     ("changes", "sentence"),
     [
         ({"noise": -0.1}, "Noise is -0.1; a finite number above 0"),
