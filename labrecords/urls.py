@@ -71,9 +71,7 @@ standardization_urls = [
     path("standardizations/<str:number>/correct/", standardization.correct, name="standardization-correct"),
     path("standardizations/<str:number>/submit/", standardization.submit, name="standardization-submit"),
     path("standardizations/<str:number>/approve/", standardization.approve, name="standardization-approve"),
-    path(
-        "standardizations/<str:number>/return/", standardization.give_back, name="standardization-give_back"
-    ),
+    path("standardizations/<str:number>/return/", standardization.give_back, name="standardization-give_back"),
     path("standardizations/<str:number>/void/", standardization.void, name="standardization-void"),
 ]
 
@@ -176,9 +174,7 @@ method_urls = [
 product_urls = [
     path("products/", product.list, name="product-list"),
     path("products/record/", product.record, name="product-record"),
-    path(
-        "products/specifications/<int:pk>/effective/", product.make_effective, name="product-make_effective"
-    ),
+    path("products/specifications/<int:pk>/effective/", product.make_effective, name="product-make_effective"),
     path("products/<str:code>/", product.detail, name="product-detail"),
     path("products/<str:code>/specify/", product.specify, name="product-specify"),
 ]
@@ -213,6 +209,7 @@ audit_urls = [
     path("audit/", audit.list, name="audit-list"),
     path("audit/export/", audit.export, name="audit-export"),
     path("audit/integrity/", audit.integrity, name="audit-integrity"),
+    path("audit/review/", audit.review, name="audit-review"),
     path("audit/<int:pk>/", audit.detail, name="audit-detail"),
     path("healthz", health.check, name="health-check"),
 ]

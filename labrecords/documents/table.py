@@ -8,13 +8,15 @@ import re
 from collections.abc import Iterable, Iterator, Sequence
 
 PLAIN_NUMBER = re.compile(r"-\d+([.,]\d+)?")
-FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r")
+FORMULA_STARTS = ("=", "+", "-", "@", "＝", "＋", "－", "＠")  # the wide forms start one in some languages
+SPACES_CUT = ("\t", "\r", "\n")  # cut by some spreadsheets before they look
 
 
 def safe_cell(value: object) -> str:
     """A cell that no spreadsheet takes for a formula; a plain negative number such as -0.12 stays as it is."""
     text = "" if value is None else str(value)
-    if text.startswith(FORMULA_STARTS) and not PLAIN_NUMBER.fullmatch(text):
+    starts_one = text.startswith(SPACES_CUT) or text.lstrip().startswith(FORMULA_STARTS)
+    if starts_one and not PLAIN_NUMBER.fullmatch(text):
         return f"'{text}"
     return text
 

@@ -34,6 +34,7 @@ VERBS = {
     "fail_sign_in": "was named in a sign-in that failed", "change_password": "changed the password of",
     "calibrate": "calibrated", "expire": "marked as expired",
     "withdraw_calibration": "withdrew a calibration of",
+    "review": "reviewed",
 }  # fmt: skip
 
 
@@ -84,9 +85,7 @@ def sentence_of(event: AuditEvent) -> str:
         return spoken
     if noun == "replicate":
         return (
-            f"{spoken} a reading of{subject}"
-            if verb in ("record", "correct")
-            else f"{spoken} a titration of{subject}"
+            f"{spoken} a reading of{subject}" if verb in ("record", "correct") else f"{spoken} a titration of{subject}"
         )
     return f"{spoken} {noun.replace('_', ' ')}{subject}"
 
