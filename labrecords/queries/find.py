@@ -6,8 +6,19 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from labrecords.models import (
-    Batch, ControlSample, Instrument, Investigation, Method, Product, ReferenceStandard, Run, Sample, Standardization,
-    Titrant, TitrantLot,
+    Batch,
+    ControlChart,
+    ControlSample,
+    Instrument,
+    Investigation,
+    Method,
+    Product,
+    ReferenceStandard,
+    Run,
+    Sample,
+    Standardization,
+    Titrant,
+    TitrantLot,
 )  # fmt: skip
 
 MOST = 15
@@ -24,7 +35,13 @@ KINDS = [
     ("product", Product, "code", "product-detail"),
     ("titrant", Titrant, "code", "titrant-detail"),
     ("control sample", ControlSample, "code", "control_sample-detail"),
+    ("control chart", ControlChart, "code", "control_chart-detail"),
 ]
+
+
+def as_typed(text: str) -> str:
+    """What was typed or scanned without what no number has: spaces around it, signs that do not print."""
+    return "".join(sign for sign in text if sign.isprintable()).strip()[:200]
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,7 +56,8 @@ class Match:
 def exact_match(text: str) -> Match | None:
     """The record whose number or code is exactly this, upper or lower case."""
     for kind, model, field, page in KINDS:
-        found = model._default_manager.filter(**{f"{field}__iexact": text}).values_list(field, flat=True).first()
+        same = model._default_manager.filter(**{f"{field}__iexact": text})
+        found = same.values_list(field, flat=True).first()
         if found is not None:
             return Match(kind=kind, number=found, page=page)
     return None
@@ -50,5 +68,6 @@ def partial_matches(text: str) -> Sequence[Match]:
     found: list[Match] = []
     for kind, model, field, page in KINDS:
         numbers = model._default_manager.filter(**{f"{field}__icontains": text}).order_by(f"-{field}")
-        found += [Match(kind=kind, number=number, page=page) for number in numbers.values_list(field, flat=True)[:MOST]]
+        some = numbers.values_list(field, flat=True)[:MOST]
+        found += [Match(kind=kind, number=number, page=page) for number in some]
     return found

@@ -29,7 +29,7 @@ from labrecords.models import (
     Standardization,
     TitrantLot,
 )
-from labrecords.queries.find import Match, exact_match
+from labrecords.queries.find import Match, as_typed, exact_match
 from labrecords.queries.history import sentences_about
 from labrecords.queries.lineage import (
     ChainLink,
@@ -62,7 +62,7 @@ VIA = ("titrant", "excess solution")
 @require_GET
 def find(request: HttpRequest) -> HttpResponse:
     """Type or scan any number, or the name of a certificate: each has its lineage."""
-    q = request.GET.get("q", "").strip()[:200]
+    q = as_typed(request.GET.get("q", ""))
     found = _found(q) if q else None
     if found is not None:
         return redirect(found.page, found.number)
@@ -264,11 +264,7 @@ def _rows(content: Any, *, name: str = "") -> list[tuple[str, str]]:
     if isinstance(content, dict):
         return [row for key, item in content.items() for row in _rows(item, name=f"{name} {key}".strip())]
     if isinstance(content, list):
-        return [
-            row
-            for place, item in enumerate(content, 1)
-            for row in _rows(item, name=f"{name} {place}".strip())
-        ]
+        return [row for place, item in enumerate(content, 1) for row in _rows(item, name=f"{name} {place}".strip())]
     return [(name.replace("_", " "), _said(content, name=name))]
 
 
