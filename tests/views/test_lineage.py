@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from decimal import Decimal as D
+
 import pytest
 from django.test import Client
 from django.urls import reverse
 
 from labrecords.models import Run, Signature
-from tests.factories.bench import Bench, approved_run, approved_standardization, started_run
+from tests.factories.bench import Bench, approved_run, approved_standardization, some_version, started_run
+from tests.factories.products import some_batch, some_product, submitted_run_of
 
 pytestmark = pytest.mark.django_db
 
@@ -93,8 +96,24 @@ def test_provenance_is_saved_as_a_file_of_json(reader: Client, run: Run) -> None
     assert f"lab:run/{run.number}" in answer.json()["activity"]
 
 
-@pytest.mark.parametrize(
-    "name", ["run", "standardization", "lot", "standard", "instrument", "batch", "sample"]
-)
+@pytest.mark.parametrize("name", ["run", "standardization", "lot", "standard", "instrument", "batch", "sample"])
 def test_number_that_does_not_exist_is_not_found(reader: Client, name: str) -> None:
     assert reader.get(reverse(f"lineage-{name}", args=["none"])).status_code == 404
+
+
+def test_batch_and_investigation_lead_to_their_runs(reader: Client, bench: Bench) -> None:
+    approved_standardization(bench)
+    version = some_version(bench)
+    batch = some_batch(bench, some_product(bench, version, lower=D("0.80"), upper=None))
+    run = submitted_run_of(bench, batch, version)
+    investigation = run.investigations.get()
+    answer = reader.get(reverse("lineage-find"), {"q": investigation.number})
+    assert answer["Location"] == reverse("lineage-run", args=[run.number])
+    assert reader.get(reverse("lineage-find"), {"q": batch.number})["Location"] == reverse(
+        "lineage-batch", args=[batch.number]
+    )
+    shown = page(reader, "lineage-batch", batch.number)
+    assert reverse("lineage-run", args=[run.number]) in shown
+    assert "does not conform" in shown
+    assert "1 <small>1 testing</small>" in shown
+    assert reverse("lineage-batch", args=[batch.number]) in page(reader, "lineage-run", run.number)
