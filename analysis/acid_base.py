@@ -51,9 +51,7 @@ class AcidBase:
         self.count = len(system.analytes)
         self.parameters, self.place = _parameters(system, prior)
         self.limits = (-2.0, 16.0)
-        self.has_carbonate = system.carbonate > 0 or bool(
-            {"sample carbonate", "titrant carbonate"} & set(self.place)
-        )
+        self.has_carbonate = system.carbonate > 0 or bool({"sample carbonate", "titrant carbonate"} & set(self.place))
 
     def medium(self, x: FloatArray, volume: FloatArray, theta: FloatArray) -> Medium | None:
         """Davies coefficients from the composition at these x, volumes and amounts."""
@@ -92,9 +90,7 @@ class AcidBase:
             self._add_analyte(place, item, value, by_x, columns, inverse_h, theta, medium)
         by_volume = excess + self.sign
         if self.has_carbonate:
-            by_volume = by_volume + self._add_carbonate(
-                value, by_x, columns, inverse_h, volume, theta, medium
-            )
+            by_volume = by_volume + self._add_carbonate(value, by_x, columns, inverse_h, volume, theta, medium)
         by_x *= -LN_10
         return Balance(value, by_x, by_volume, columns)
 
@@ -118,15 +114,11 @@ class AcidBase:
             if at is not None:
                 columns[at] = LN_10 * part
 
-    def _constants(
-        self, place: int, item: Analyte, theta: FloatArray, medium: Medium | None
-    ) -> list[FloatArray]:
+    def _constants(self, place: int, item: Analyte, theta: FloatArray, medium: Medium | None) -> list[FloatArray]:
         found = []
         for k, pKa in enumerate(item.pKa):
             at = self.place.get(f"pKa {place} {k}")
-            constant = (
-                np.full((1, 1), 10.0**-pKa) if at is None else np.exp(-LN_10 * (pKa + theta[:, at : at + 1]))
-            )
+            constant = np.full((1, 1), 10.0**-pKa) if at is None else np.exp(-LN_10 * (pKa + theta[:, at : at + 1]))
             found.append(constant if medium is None else constant * medium.steps[place][k])
         return found
 
@@ -153,17 +145,13 @@ class AcidBase:
         by_x += equivalents * (covariances[0] + covariances[1])
         return np.asarray(-lost * of_titrant)
 
-    def _ionic_strength(
-        self, x: FloatArray, volume: FloatArray, theta: FloatArray, g: FloatArray
-    ) -> FloatArray:
+    def _ionic_strength(self, x: FloatArray, volume: FloatArray, theta: FloatArray, g: FloatArray) -> FloatArray:
         """Half the sum of c z^2 [mol/L]; counter-ions are univalent."""
         system = self.system
         inverse_h = 10.0**x
         charge = volume.copy()  # of the titrant's ion, then of everything else
         for place, item in enumerate(system.analytes):
-            charge = charge + np.maximum(theta[:, place : place + 1], 0.0) * _squares(
-                item, inverse_h, g, system
-            )
+            charge = charge + np.maximum(theta[:, place : place + 1], 0.0) * _squares(item, inverse_h, g, system)
         if system.carbonate:
             charge = charge + system.carbonate * volume * _squares(CARBONIC, inverse_h, g, system)
         whole = system.sample_volume + volume
@@ -192,9 +180,7 @@ def _may_have(group: str, system: System) -> bool:
     """Carbonate beside the analyte: not in an acid titrant, and not where the analyte itself is carbonate."""
     if group == "titrant carbonate" and system.titrant == "acid":
         return False
-    return all(
-        min((abs(pKa - CARBONIC.pKa[0]) for pKa in item.pKa), default=9.0) > 0.3 for item in system.analytes
-    )
+    return all(min((abs(pKa - CARBONIC.pKa[0]) for pKa in item.pKa), default=9.0) > 0.3 for item in system.analytes)
 
 
 def _lost_at_start(item: Analyte, system: System) -> float:
@@ -208,9 +194,7 @@ def _squares(item: Analyte, inverse_h: FloatArray, g: FloatArray, system: System
     if not item.pKa:
         return 1.0
     counter = abs(_lost_at_start(item, system) - item.charge)
-    states = fractions(
-        inverse_h, [10.0**-pKa * g ** (2 * (item.charge - k) - 1) for k, pKa in enumerate(item.pKa)]
-    )
+    states = fractions(inverse_h, [10.0**-pKa * g ** (2 * (item.charge - k) - 1) for k, pKa in enumerate(item.pKa)])
     whole: FloatArray | float = counter
     for k, state in enumerate(states):
         whole = whole + (item.charge - k) ** 2 * state

@@ -69,9 +69,7 @@ def electrode_slope(
         if not math.isfinite(number):
             raise ValueError(f"{name} is {number} mV; a finite number is expected.")
     if not math.isfinite(first_ph - second_ph) or first_ph == second_ph:
-        raise ValueError(
-            f"pH of the buffers are {first_ph} and {second_ph}; two different numbers are expected."
-        )
+        raise ValueError(f"pH of the buffers are {first_ph} and {second_ph}; two different numbers are expected.")
     return 100 * (first_mv - second_mv) / (second_ph - first_ph) / nernst_slope(temperature)
 
 
@@ -86,11 +84,7 @@ def water_ion_product(temperature: float) -> float:
     kelvin, molar_mass = temperature + KELVIN, 18.015268
     density = water_density(temperature) / 1000  # g/cm3
     z = density * math.exp(-0.864671 + 8659.19 / kelvin - 22786.2 / kelvin**2 * density ** (2 / 3))
-    liquid = (
-        -2
-        * 6
-        * (math.log10(1 + z) - z / (z + 1) * density * (0.642044 - 56.8534 / kelvin - 0.375754 * density))
-    )
+    liquid = -2 * 6 * (math.log10(1 + z) - z / (z + 1) * density * (0.642044 - 56.8534 / kelvin - 0.375754 * density))
     gas = 0.61415 + 48251.33 / kelvin - 67707.93 / kelvin**2 + 10102100.0 / kelvin**3
     return liquid + gas + 2 * math.log10(molar_mass / 1000)
 

@@ -47,9 +47,7 @@ class Calculation:
         known = {field.name for field in self.fields}
         unknown = sorted(set(inputs) - known)
         if unknown:
-            raise ValueError(
-                f"{self.name}: input {unknown[0]!r} is not known; expected {', '.join(sorted(known))}."
-            )
+            raise ValueError(f"{self.name}: input {unknown[0]!r} is not known; expected {', '.join(sorted(known))}.")
         missing = [field.name for field in self.fields if field.is_needed and inputs.get(field.name) is None]
         if missing:
             raise ValueError(f"{self.name}: input {missing[0]!r} is missing.")

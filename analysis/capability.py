@@ -135,9 +135,7 @@ def capability_from(
     )
 
 
-def cp_index(
-    sigma: float, *, freedom: float, lower: float | None, upper: float | None, level: float
-) -> Index | None:
+def cp_index(sigma: float, *, freedom: float, lower: float | None, upper: float | None, level: float) -> Index | None:
     """(upper - lower) / (6 sigma), its interval from the chi-squared distribution of the variance."""
     if lower is None or upper is None:
         return None
@@ -197,15 +195,11 @@ def _off_centre(mean: float, lower: float | None, upper: float | None) -> float 
     return abs((upper + lower) / 2 - mean) / ((upper - lower) / 2)
 
 
-def _check(
-    lower: float | None, upper: float | None, within: float, overall: float, n: int, level: float
-) -> None:
+def _check(lower: float | None, upper: float | None, within: float, overall: float, n: int, level: float) -> None:
     if lower is None and upper is None:
         raise ValueError("Lower and upper limit are both empty; at least one is expected.")
     if lower is not None and upper is not None and lower >= upper:
-        raise ValueError(
-            f"Lower limit is {lower} and upper limit {upper}; the lower must be below the upper."
-        )
+        raise ValueError(f"Lower limit is {lower} and upper limit {upper}; the lower must be below the upper.")
     for name, sigma in (("Spread within", within), ("Whole spread", overall)):
         if not (sigma > 0 and math.isfinite(sigma)):
             raise ValueError(f"{name} is {sigma}; a finite number above 0 is expected.")

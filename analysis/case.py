@@ -67,9 +67,7 @@ def case_from(data: Any, *, place: int) -> Case:
         if not isinstance(data[key], str) or not data[key].strip():
             raise ValueError(f"{where} has {data[key]!r} as {key}; some text is expected.")
     if not isinstance(data["inputs"], Mapping):
-        raise ValueError(
-            f"{where} has inputs of type {type(data['inputs']).__name__}; an object is expected."
-        )
+        raise ValueError(f"{where} has inputs of type {type(data['inputs']).__name__}; an object is expected.")
     return Case(**data)
 
 
@@ -123,9 +121,7 @@ def _misses(expected: Any, found: Any, tolerance: Any, *, where: str) -> Iterato
         yield f"{at}expected {expected!r}, found {found!r}"
 
 
-def _misses_in_object(
-    expected: Mapping[str, Any], found: Any, tolerance: Any, *, where: str
-) -> Iterator[str]:
+def _misses_in_object(expected: Mapping[str, Any], found: Any, tolerance: Any, *, where: str) -> Iterator[str]:
     for key, value in expected.items():
         inside = f"{where}.{key}" if where else key
         if not isinstance(found, Mapping) or key not in found:

@@ -35,18 +35,14 @@ def _molar_mass(inputs: Inputs) -> dict[str, float]:
     if weights is None:
         found = molar_mass(inputs["formula"])
     else:
-        found = molar_mass(
-            inputs["formula"], weights={key: (value, u) for key, (value, u) in weights.items()}
-        )
+        found = molar_mass(inputs["formula"], weights={key: (value, u) for key, (value, u) in weights.items()})
     return {"value": found.value, "standard_uncertainty": found.standard_uncertainty}
 
 
 def _titrant_equivalent(inputs: Inputs) -> float:
     """Milligrams of a substance that 1 mL of titrant stands for."""
     mass = inputs["molar_mass"] if "molar_mass" in inputs else molar_mass(inputs["formula"]).value
-    return _real(
-        amount_direct(concentration=inputs["concentration"], net=1.0, ratio=_ratio(inputs)) * mass * 1000
-    )
+    return _real(amount_direct(concentration=inputs["concentration"], net=1.0, ratio=_ratio(inputs)) * mass * 1000)
 
 
 def _by_mass(inputs: Inputs) -> float:

@@ -54,9 +54,7 @@ def _distribution(data: Mapping[str, Any]) -> str:
 
 def _monte_carlo(inputs: Inputs) -> dict[str, Any]:
     sources = [_input(name, data) for name, data in inputs["inputs"].items()]
-    settings = {
-        key: inputs[key] for key in ("level", "digits", "most_draws", "seed") if inputs.get(key) is not None
-    }
+    settings = {key: inputs[key] for key in ("level", "digits", "most_draws", "seed") if inputs.get(key) is not None}
     found = monte_carlo(parse_model(inputs["formula"]), sources, **settings)
     return {
         "value": found.value, "u": found.u, "interval": list(found.interval),

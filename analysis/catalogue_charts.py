@@ -82,9 +82,7 @@ def _ewma_lengths(inputs: Inputs) -> list[float]:
 def _cusum_lengths(inputs: Inputs) -> list[float]:
     settings = {"reference": inputs["reference"], "interval": inputs["interval"]}
     sides, start = int(inputs.get("sides", 2)), inputs.get("head_start", 0.0)
-    return [
-        cusum_run_length(**settings, shift=shift, sides=sides, head_start=start) for shift in inputs["shifts"]
-    ]
+    return [cusum_run_length(**settings, shift=shift, sides=sides, head_start=start) for shift in inputs["shifts"]]
 
 
 def _capability(inputs: Inputs) -> dict[str, Any]:

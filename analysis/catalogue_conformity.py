@@ -44,12 +44,8 @@ def _probability(inputs: Inputs) -> dict[str, float]:
     value, u = inputs["value"], inputs["standard_uncertainty"]
     lower, upper = inputs.get("lower"), inputs.get("upper")
     inside = probability_within(value, standard_uncertainty=u, lower=lower, upper=upper)
-    below = (
-        0.0 if lower is None else probability_within(value, standard_uncertainty=u, lower=None, upper=lower)
-    )
-    above = (
-        0.0 if upper is None else probability_within(value, standard_uncertainty=u, lower=upper, upper=None)
-    )
+    below = 0.0 if lower is None else probability_within(value, standard_uncertainty=u, lower=None, upper=lower)
+    above = 0.0 if upper is None else probability_within(value, standard_uncertainty=u, lower=upper, upper=None)
     return {"inside": inside, "below": below, "above": above}
 
 

@@ -18,9 +18,7 @@ from analysis.system import System
 VOLUME = Field("volume", "mL", "volumes of titrant")
 READING = Field("reading", "pH, mV, mS/cm, degC or absorbance", "readings at these volumes")
 TEMPERATURE = Field("temperature", "degC", "temperature")
-SPECIES = Field(
-    "species", "", "acids, each with concentration [mol/L], pKa (list) and charge when fully protonated"
-)
+SPECIES = Field("species", "", "acids, each with concentration [mol/L], pKa (list) and charge when fully protonated")
 P_KW = optional("pKw", "", "ion product of water, 14 when left out")
 
 
@@ -35,9 +33,7 @@ def _endpoint(inputs: Inputs) -> dict[str, Any]:
     found = evaluate_curve(
         clean_curve(inputs["volume"], inputs["reading"], quantity=inputs["quantity"]), settings=settings
     )
-    checked = (
-        None if found.checked is None else {"volume": found.checked.volume, "family": found.checked.family}
-    )
+    checked = None if found.checked is None else {"volume": found.checked.volume, "family": found.checked.family}
     return {
         "volume": found.decided.volume, "standard_uncertainty": found.decided.standard_uncertainty,
         "kind": found.decided.kind, "checked": checked, "agreement": found.agreement,

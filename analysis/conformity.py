@@ -77,20 +77,14 @@ def round_significant(value: float | Decimal, *, figures: int, rounding: str) ->
     if number == 0:
         return Decimal(0)
     if not number.is_finite() or rounding not in ROUNDINGS:
-        raise ValueError(
-            f"Value is {value} and rounding {rounding!r}; a finite number, half_up or half_even expected."
-        )
-    rounded = number.quantize(
-        Decimal(1).scaleb(number.adjusted() - figures + 1), rounding=ROUNDINGS[rounding]
-    )
+        raise ValueError(f"Value is {value} and rounding {rounding!r}; a finite number, half_up or half_even expected.")
+    rounded = number.quantize(Decimal(1).scaleb(number.adjusted() - figures + 1), rounding=ROUNDINGS[rounding])
     if rounded.adjusted() == number.adjusted():
         return rounded
     return rounded.quantize(Decimal(1).scaleb(rounded.adjusted() - figures + 1))  # 9.995 became 10.00: 10.0
 
 
-def probability_within(
-    value: float, *, standard_uncertainty: float, lower: float | None, upper: float | None
-) -> float:
+def probability_within(value: float, *, standard_uncertainty: float, lower: float | None, upper: float | None) -> float:
     """Probability that the true value lies within the limits, for a normal distribution about the result.
 
     References
@@ -98,9 +92,7 @@ def probability_within(
     JCGM 106:2012, equations 16 to 18 (a uniform prior).
     """
     if not (standard_uncertainty >= 0 and math.isfinite(standard_uncertainty)):
-        raise ValueError(
-            f"Standard uncertainty is {standard_uncertainty}; a finite number not below 0 is expected."
-        )
+        raise ValueError(f"Standard uncertainty is {standard_uncertainty}; a finite number not below 0 is expected.")
     if not math.isfinite(value):
         raise ValueError(f"Value is {value}; a finite number is expected.")
     low, high = -math.inf if lower is None else lower, math.inf if upper is None else upper
@@ -182,19 +174,11 @@ def _outcome(value: Decimal, rounded: Decimal, limits: Pair, accept: Pair, *, gu
 def _sentence(outcome: str, rounded: Decimal, limits: Pair, accept: Pair, *, guard: Decimal) -> str:
     low, high = limits
     if outcome == "does_not_conform":
-        side = (
-            f"below the lower limit {low}"
-            if low is not None and rounded < low
-            else f"above the upper limit {high}"
-        )
+        side = f"below the lower limit {low}" if low is not None and rounded < low else f"above the upper limit {high}"
         return f"{rounded} after rounding is {side}."
     if outcome == "inconclusive":
         narrow = accept[0] is not None and accept[1] is not None and accept[0] > accept[1]
-        never = (
-            " The guard bands of both limits meet: no result can conform with this uncertainty."
-            if narrow
-            else ""
-        )
+        never = " The guard bands of both limits meet: no result can conform with this uncertainty." if narrow else ""
         band = f"within the guard band of {float(guard):.2g}"
         return f"{rounded} after rounding is inside the limits but {band}.{never}"
     beside = " and outside the guard band" if guard else ""

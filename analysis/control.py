@@ -80,9 +80,7 @@ class SubgroupLimits:
     excluded: dict[int, str]
 
 
-def individuals_limits(
-    values: Sequence[float], *, excluded: Mapping[int, str] | None = None
-) -> IndividualsLimits:
+def individuals_limits(values: Sequence[float], *, excluded: Mapping[int, str] | None = None) -> IndividualsLimits:
     """Centre line and limits of individual values from their mean moving range.
 
     An excluded point takes no part, and neither do the two moving ranges that touch it.
@@ -144,9 +142,7 @@ def subgroup_limits(
     ValueError
         When a subgroup has fewer than two values, none is left, or nothing varies.
     """
-    estimates = [
-        spread_estimate(each, spread=spread, place=place) for place, each in enumerate(subgroups, start=1)
-    ]
+    estimates = [spread_estimate(each, spread=spread, place=place) for place, each in enumerate(subgroups, start=1)]
     left_out = _exclusions(excluded, count=len(subgroups), what="subgroup")
     kept = [place for place in range(len(subgroups)) if place not in left_out]
     if not kept:
@@ -214,9 +210,7 @@ def _exclusions(excluded: Mapping[int, str] | None, *, count: int, what: str) ->
         if not 0 <= place < count:
             raise ValueError(f"Excluded {what} is at place {place}; expected 0 to {count - 1}.")
         if not reason.strip():
-            raise ValueError(
-                f"The {what} at place {place} is excluded without a reason; a sentence is expected."
-            )
+            raise ValueError(f"The {what} at place {place} is excluded without a reason; a sentence is expected.")
     return dict(excluded or {})
 
 

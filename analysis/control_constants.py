@@ -93,6 +93,4 @@ def legendre(count: int) -> tuple[FloatArray, FloatArray]:
 
 def _check(n: int) -> None:
     if n < 2:
-        raise ValueError(
-            f"Subgroups hold {n} values; at least 2 are needed for a range or a standard deviation."
-        )
+        raise ValueError(f"Subgroups hold {n} values; at least 2 are needed for a range or a standard deviation.")

@@ -76,9 +76,7 @@ def propagate_together(
     values = np.array([model(at).real for model in models])
     if not np.all(np.isfinite(values)):
         raise ValueError(f"Results are {values.tolist()}; the inputs do not give numbers.")
-    slopes = np.array(
-        [[model({**at, x.name: complex(x.value, STEP)}).imag / STEP for x in inputs] for model in models]
-    )
+    slopes = np.array([[model({**at, x.name: complex(x.value, STEP)}).imag / STEP for x in inputs] for model in models])
     covariance = slopes @ input_covariance(inputs, correlations=correlations or {}) @ slopes.T
     u = np.sqrt(np.clip(np.diag(covariance), 0, None))
     scale = np.outer(u, u)

@@ -57,7 +57,9 @@ def clean_curve(volume: Sequence[float] | FloatArray, reading: Sequence[float] |
         raise ValueError(f"Quantity is {quantity!r}; expected one of {', '.join(QUANTITIES)}.")
     v, y = np.asarray(volume, dtype=float), np.asarray(reading, dtype=float)
     if v.ndim != 1 or v.shape != y.shape:
-        raise ValueError(f"There are {v.size} volumes and {y.size} readings; as many of both are expected, in one row each.")
+        raise ValueError(
+            f"There are {v.size} volumes and {y.size} readings; as many of both are expected, in one row each."
+        )
     _check_values(v, y, quantity=quantity)
     notes: list[str] = []
     forward = _forward(v, notes)
@@ -77,7 +79,9 @@ def _check_values(v: FloatArray, y: FloatArray, *, quantity: str) -> None:
     low, high = LARGEST.get(quantity, (-np.inf, np.inf))
     outside = np.flatnonzero((y < low) | (y > high))
     if outside.size and quantity == "pH":
-        raise ValueError(f"Reading {outside[0] + 1} is {y[outside[0]]:g}: values outside -2 to 16 look like mV, but pH was declared.")
+        raise ValueError(
+            f"Reading {outside[0] + 1} is {y[outside[0]]:g}: values outside -2 to 16 look like mV, but pH was declared."
+        )
     if outside.size:
         raise ValueError(f"Reading {outside[0] + 1} is {y[outside[0]]:g} {quantity}; {low:g} to {high:g} is expected.")
 
@@ -86,7 +90,10 @@ def _forward(v: FloatArray, notes: list[str]) -> FloatArray:
     highest = np.maximum.accumulate(v) if v.size else v
     backward = np.flatnonzero(v < highest)
     if backward.size:
-        notes.append(f"{backward.size} rows go backwards in volume (first at row {backward[0] + 1}, {v[backward[0]]:g} mL) and were left out.")
+        notes.append(
+            f"{backward.size} rows go backwards in volume (first at row "
+            f"{backward[0] + 1}, {v[backward[0]]:g} mL) and were left out."
+        )
     return v >= highest  # type: ignore[return-value]
 
 

@@ -31,7 +31,10 @@ def endpoints_near(curve: Curve, *, noise: float) -> list[float]:
     volumes = np.interp(edges, y_strict, curve.volume)
     log_width = np.log10(np.maximum(np.diff(volumes), 1e-4))
     least = PROMINENCE + 3 * 2 * noise / (width * LN_10)
-    found = [(float(log_width[at]), float((volumes[at] + volumes[at + 1]) / 2)) for at in _minima(log_width, prominence=least)]
+    found = [
+        (float(log_width[at]), float((volumes[at] + volumes[at + 1]) / 2))
+        for at in _minima(log_width, prominence=least)
+    ]
     return _merged(found, curve)
 
 

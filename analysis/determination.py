@@ -13,11 +13,17 @@ from typing import Any
 import analysis
 from analysis import model
 from analysis.conformity import verdict
+from analysis.determination_budget import all_inputs, propagated
 from analysis.outliers import dixon, grubbs
-from analysis.replicates import Spread, concordant_set, spread
+from analysis.replicate_choice import titrations_that_count
+from analysis.replicates import spread
 from analysis.titration_inputs import Titration, choice, positive
-from analysis.titration_reading import blank_of, read_titrations, titre_inputs
-from analysis.uncertainty import BudgetLine, Input, Propagated, coverage_factor, from_budget, merged, propagate
+from analysis.titration_reading import blank_of, read_titrations
+from analysis.uncertainty import (
+    BudgetLine,
+    Propagated,
+    coverage_factor,
+)
 
 Inputs = Mapping[str, Any]
 
@@ -52,25 +58,47 @@ def compute(inputs: Inputs) -> dict[str, Any]:
     outputs = _frame(inputs, titrations, blank)
     if _blanks_missing(inputs, blank):
         return outputs | {"reasons": ["The blank is not complete. Titrate the blank, then the result follows."]}
-    values = {item.number: _value_of(inputs, item, blank, kind=kind) for item in titrations if not item.is_blank and _complete(item)}
+    values = {
+        item.number: _value_of(inputs, item, blank, kind=kind)
+        for item in titrations
+        if not item.is_blank and _complete(item)
+    }
     _fill_titrations(outputs, values, blank)
     if not counted:
         return outputs | {"reasons": [_missing(inputs, counted)]}
-    inside, reasons, tie = _inside(inputs, counted, values)
+    inside, reasons, tie = titrations_that_count(inputs, counted, values)
     _mark_set(outputs, inside)
-    whole = _propagated(inputs, inside, titrations, blank, kind=kind)
-    return outputs | _result(inputs, whole, inside, counted, values, reasons=reasons, tie=tie, titrations=titrations, blank=blank)
+    whole = propagated(inputs, inside, titrations, blank, kind=kind)
+    return outputs | _result(
+        inputs, whole, inside, counted, values, reasons=reasons, tie=tie, titrations=titrations, blank=blank
+    )
 
 
 def _frame(inputs: Inputs, titrations: Sequence[Titration], blank: float | None) -> dict[str, Any]:
     flags = [flag for item in titrations if item.endpoint for flag in item.endpoint["flags"]]
     return {
-        "kind": inputs["kind"], "engine": analysis.VERSION, "titrations": [_titration_output(item) for item in titrations],
-        "blank": blank, "statistics": None, "outlier_tests": [], "acceptable": False, "reasons": [],
+        "kind": inputs["kind"],
+        "engine": analysis.VERSION,
+        "titrations": [_titration_output(item) for item in titrations],
+        "blank": blank,
+        "statistics": None,
+        "outlier_tests": [],
+        "acceptable": False,
+        "reasons": [],
         "needs_person": any(item.endpoint and item.endpoint["needs_person"] for item in titrations),
-        "flags": flags, "value": None, "u": None, "degrees_of_freedom": None, "k": None, "U": None,
-        "unit": _unit(inputs), "value_with_all": None, "budget": [], "advice": "", "factor": None, "verdict": None,
-    }  # fmt: skip
+        "flags": flags,
+        "value": None,
+        "u": None,
+        "degrees_of_freedom": None,
+        "k": None,
+        "U": None,
+        "unit": _unit(inputs),
+        "value_with_all": None,
+        "budget": [],
+        "advice": "",
+        "factor": None,
+        "verdict": None,
+    }
 
 
 def _titration_output(item: Titration) -> dict[str, Any]:
@@ -95,116 +123,17 @@ def _mark_set(outputs: dict[str, Any], inside: Sequence[Titration]) -> None:
 
 
 def _value_of(inputs: Inputs, item: Titration, blank: float | None, *, kind: str) -> float:
-    estimates = {each.name: complex(each.value) for each in _all_inputs(inputs, [item], [], blank, kind=kind)}
+    estimates = {each.name: complex(each.value) for each in all_inputs(inputs, [item], [], blank, kind=kind)}
     make = model.run_value if kind == "run" else model.standardization_value
     try:
         value = make(inputs, item)({**estimates, "repeatability": 1}).real
     except ZeroDivisionError:
         value = math.inf
     if not math.isfinite(value):
-        raise ValueError(f"Titration {item.number} gives no number: its net titre is 0 mL. Check its readings and the blank.")
-    return value
-
-
-def _inside(inputs: Inputs, counted: Sequence[Titration], values: Mapping[int, float]) -> tuple[list[Titration], list[str], str]:
-    """The titrations that count by the method's policy, what is not acceptable about them, and how a tie went."""
-    method = inputs["method"]
-    policy = choice(method["policy"], ("concordance", "all"), name="Policy")
-    limit_kind = choice(method["limit_kind"], ("range_mL", "rsd_percent"), name="Kind of limit")
-    limit, needed = positive(method["limit"], name="Limit"), int(method["replicates_needed"])
-    scaled = _titres_for_equal_amounts(counted)
-    tie, inside = "", list(counted)
-    if policy == "concordance" and limit_kind == "range_mL":
-        found = concordant_set(scaled, limit=limit)
-        inside, tie = [counted[place] for place in found.indices], found.tie_sentence
-    reasons = [] if len(inside) >= needed else [_too_few(inside, counted, needed=needed, limit=limit, policy=policy)]
-    if policy == "all" or limit_kind == "rsd_percent":
-        reasons += _too_wide(inside, values, scaled, limit=limit, limit_kind=limit_kind)
-    return inside, reasons, tie
-
-
-def _titres_for_equal_amounts(counted: Sequence[Titration]) -> list[float]:
-    """Titres as they would be for the first sample amount, so that weighed samples can be compared."""
-    first = counted[0].amount or 1.0
-    return [float(item.titre or 0.0) * first / (item.amount or first) for item in counted]
-
-
-def _too_few(inside: Sequence[Titration], counted: Sequence[Titration], *, needed: int, limit: float, policy: str) -> str:
-    if policy == "concordance" and len(counted) >= needed:
-        return f"{len(inside)} titres agree within {limit:g} mL, {needed} are needed. Titrate another."
-    return f"{len(counted)} of {needed} titrations are complete. Titrate {needed - len(counted)} more."
-
-
-def _too_wide(
-    inside: Sequence[Titration], values: Mapping[int, float], scaled: Sequence[float], *, limit: float, limit_kind: str
-) -> list[str]:
-    if len(inside) < 2:
-        return []
-    if limit_kind == "range_mL":
-        width = spread(scaled).range
-        return [f"The titres range over {width:.3f} mL, up to {limit:g} mL is accepted. Titrate another or find the cause."] if width > limit + 1e-9 else []
-    rsd = spread([values[item.number] for item in inside]).rsd_percent or 0.0
-    return [f"The RSD is {rsd:.2f} %, up to {limit:g} % is accepted. Titrate another or find the cause."] if rsd > limit else []
-
-
-def _all_inputs(
-    inputs: Inputs, inside: Sequence[Titration], titrations: Sequence[Titration], blank: float | None, *, kind: str
-) -> list[Input]:
-    others = model.run_inputs(inputs) if kind == "run" else model.standardization_inputs(inputs)
-    return [*others, *titre_inputs(inputs, inside, titrations, blank)]
-
-
-def _propagated(
-    inputs: Inputs, inside: Sequence[Titration], titrations: Sequence[Titration], blank: float | None, *, kind: str
-) -> Propagated:
-    """Value, uncertainty and budget; a solution's line is opened into the physical inputs it rests on."""
-    make = model.run_value if kind == "run" else model.standardization_value
-    models = [make(inputs, item) for item in inside]
-    alone = [model({each.name: complex(each.value) for each in _all_inputs(inputs, [item], [], blank, kind=kind)} | {"repeatability": 1}).real for model, item in zip(models, inside, strict=True)]
-    named = [*_all_inputs(inputs, inside, titrations, blank, kind=kind), _repeatability(spread(alone))]
-    whole = _without_the_smaller(propagate(model.mean_model(models), named))
-    opened = [line for each in whole.budget for line in _opened(each, inputs)]
-    used = [line for line in merged(opened) if line.u > 0 or line.contribution]
-    return from_budget(whole.value, sorted(used, key=lambda line: -abs(line.contribution)))
-
-
-def _without_the_smaller(whole: Propagated) -> Propagated:
-    """Scatter of the titrations contains the scatter of reading: the larger of the two counts, not both."""
-    lines = {line.key: line for line in whole.budget}
-    smaller = min(("reading", "repeatability"), key=lambda key: abs(lines[key].contribution))
-    return from_budget(whole.value, [line for line in whole.budget if line.key != smaller])
-
-
-def _repeatability(alone: Spread) -> Input:
-    """Type A: the standard deviation of the mean of the titrations that count, as a factor of the result."""
-    relative = (alone.sd or 0.0) / math.sqrt(alone.n) / abs(alone.mean) if alone.mean else 0.0
-    return Input("repeatability", "repeatability", f"repeatability of {alone.n} titrations", 1.0, relative, "", "t", "A", float(max(alone.n - 1, 1)))
-
-
-def _opened(line: BudgetLine, inputs: Inputs) -> list[BudgetLine]:
-    """A solution's concentration as the inputs of its standardization, each with its sign; the rest as one line."""
-    solution = next((item for item in _solutions(inputs) if line.key == f"solution:{item['lot']}"), None)
-    parts = (solution or {}).get("components") or []
-    if solution is None or not parts:
-        return [line]
-    lines = [
-        BudgetLine(
-            part["key"], part["label"], line.value, line.unit, abs(float(part["u"])), "normal", "B", line.sensitivity,
-            line.sensitivity * float(part["u"]), 0.0, float(part.get("degrees_of_freedom") or math.inf),
+        raise ValueError(
+            f"Titration {item.number} gives no number: its net titre is 0 mL. Check its readings and the blank."
         )
-        for part in parts
-    ]  # fmt: skip
-    known = sum(float(part["u"]) ** 2 for part in parts)
-    rest = math.sqrt(max(line.u**2 - known, 0.0))
-    if rest > 1e-3 * line.u:
-        lines.append(BudgetLine(line.key, line.label, line.value, line.unit, rest, "normal", "B", line.sensitivity, line.sensitivity * rest, 0.0, math.inf))
-    return lines
-
-
-def _solutions(inputs: Inputs) -> list[Inputs]:
-    standard = inputs.get("standard") or {}
-    found = [inputs.get("titrant"), inputs.get("excess"), standard if standard.get("basis") == "titrant" else None]
-    return [item for item in found if item]
+    return value
 
 
 def _result(
@@ -218,13 +147,27 @@ def _result(
     titres = spread([float(item.titre or 0.0) for item in inside])
     flags = [flag for item in titrations if item.endpoint for flag in item.endpoint["flags"]] + ([tie] if tie else [])
     result: dict[str, Any] = {
-        "value": whole.value, "u": whole.u, "degrees_of_freedom": None if math.isinf(dof) else dof, "k": k, "U": k * whole.u,
-        "budget": [_line_output(line) for line in whole.budget], "advice": _advice(whole), "acceptable": not reasons,
-        "reasons": reasons, "flags": flags, "outlier_tests": _outlier_tests([values[item.number] for item in counted]),
-        "statistics": {"n": counts.n, "mean_titre": titres.mean, "mean": counts.mean, "sd": counts.sd,
-                       "rsd_percent": counts.rsd_percent, "range": titres.range},
+        "value": whole.value,
+        "u": whole.u,
+        "degrees_of_freedom": None if math.isinf(dof) else dof,
+        "k": k,
+        "U": k * whole.u,
+        "budget": [_line_output(line) for line in whole.budget],
+        "advice": _advice(whole),
+        "acceptable": not reasons,
+        "reasons": reasons,
+        "flags": flags,
+        "outlier_tests": _outlier_tests([values[item.number] for item in counted]),
+        "statistics": {
+            "n": counts.n,
+            "mean_titre": titres.mean,
+            "mean": counts.mean,
+            "sd": counts.sd,
+            "rsd_percent": counts.rsd_percent,
+            "range": titres.range,
+        },
         "value_with_all": _with_all(titrations, values),
-    }  # fmt: skip
+    }
     if inputs["kind"] == "standardization":
         return result | _against_window(inputs, whole.value, flags)
     if inputs.get("specification"):
@@ -235,7 +178,16 @@ def _result(
 def _against_window(inputs: Inputs, value: float, flags: list[str]) -> dict[str, Any]:
     nominal, window = positive(inputs["nominal"], name="Nominal concentration"), inputs["window"]
     low, high = positive(window["low"], name="Window"), positive(window["high"], name="Window")
-    outside = [] if low <= value <= high else [f"{value:.5f} mol/L is outside the accepted {low:g} to {high:g} mol/L. Adjust the solution or prepare a new lot."]
+    outside = (
+        []
+        if low <= value <= high
+        else [
+            (
+                f"{value:.5f} mol/L is outside the accepted {low:g} to "
+                f"{high:g} mol/L. Adjust the solution or prepare a new lot."
+            )
+        ]
+    )
     return {"factor": value / nominal, "flags": flags + outside}
 
 
@@ -270,7 +222,10 @@ def _advice(whole: Propagated) -> str:
         return ""
     main = whole.budget[0]
     without = math.sqrt(max(whole.u**2 - main.contribution**2, 0.0))
-    return f"Most comes from {main.label}, {main.share:.0%} of the variance; without it u would be {without:.2g} instead of {whole.u:.2g}."
+    return (
+        f"Most comes from {main.label}, {main.share:.0%} of the variance; "
+        f"without it u would be {without:.2g} instead of {whole.u:.2g}."
+    )
 
 
 def _line_output(line: BudgetLine) -> dict[str, Any]:

@@ -67,9 +67,7 @@ class Electrode:
         if "slope" in at:
             turned = 1.0 / (1.0 + theta[:, at["slope"], None])
             away = away * turned
-        return away + self.centre, [
-            self._column(item.group, away, turned, behind) for item in self.parameters
-        ]
+        return away + self.centre, [self._column(item.group, away, turned, behind) for item in self.parameters]
 
     def steps(self, theta: FloatArray, away: FloatArray) -> FloatArray:
         """The step of the reading from the point before, cleared of how far each point lies ``away`` from the

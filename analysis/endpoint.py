@@ -11,7 +11,11 @@ import numpy.typing as npt
 
 from analysis.curve import Curve
 from analysis.derivative import (
-    derivative_parabola, first_derivative, inverse_square_parabola, local_polynomial, second_derivative_zero,
+    derivative_parabola,
+    first_derivative,
+    inverse_square_parabola,
+    local_polynomial,
+    second_derivative_zero,
 )  # fmt: skip
 from analysis.detection import LEAST_RISE, endpoints_near
 from analysis.equilibrium import Fit, fit_equilibrium
@@ -84,12 +88,16 @@ def evaluate_curve(curve: Curve, *, settings: CurveSettings) -> CurveEvaluation:
     near = _near(curve, settings, noise=noise)
     found, problems, fit = _all_families(curve, settings, near, noise=noise)
     if settings.deciding not in found:
-        raise ValueError(problems.get(settings.deciding, f"The family {settings.deciding} finds no endpoint on this curve."))
+        raise ValueError(
+            problems.get(settings.deciding, f"The family {settings.deciding} finds no endpoint on this curve.")
+        )
     decided = _chosen(found[settings.deciding], settings)
     checked = _nearest(found.get(settings.checking or "", ()), decided)
     agreement = _agreement(decided, checked)
     flags += _flags_of_endpoints(curve, settings, near, decided, checked, agreement, fit, problems)
-    needs = (agreement is not None and agreement > settings.agreement_limit) or _is_doubtful(settings, near, fit, checked)
+    needs = (agreement is not None and agreement > settings.agreement_limit) or _is_doubtful(
+        settings, near, fit, checked
+    )
     model = (curve.volume, fit.fitted) if fit else None
     return CurveEvaluation(
         curve, settings, found, decided, checked, agreement, needs, tuple(flags), first_derivative(curve), model,
@@ -174,7 +182,9 @@ def _endpoint(curve: Curve, volume: float, u: float, family: str, dof: float = m
 
 def _chosen(ends: tuple[Endpoint, ...], settings: CurveSettings) -> Endpoint:
     if settings.chosen > len(ends):
-        raise ValueError(f"Endpoint {settings.chosen} is wanted and {len(ends)} found by the family {settings.deciding}.")
+        raise ValueError(
+            f"Endpoint {settings.chosen} is wanted and {len(ends)} found by the family {settings.deciding}."
+        )
     return ends[settings.chosen - 1]
 
 
@@ -217,12 +227,27 @@ def _flags_of_endpoints(
     at = int(np.clip(np.searchsorted(curve.volume, decided.volume), 1, curve.volume.size - 1))
     step = float(curve.volume[at] - curve.volume[at - 1])
     if step > 0.3 and decided.family in ("derivative", "parabola", "polynomial"):
-        found.append(f"Volume step at the endpoint {step:.2f} mL: a derivative endpoint is uncertain by {step / 2:.2f} mL.")
+        found.append(
+            f"Volume step at the endpoint {step:.2f} mL: a derivative endpoint is uncertain by {step / 2:.2f} mL."
+        )
     if agreement is not None and checked is not None and agreement > settings.agreement_limit:
-        found.append(f"{decided.family.capitalize()} and {checked.family} differ by {agreement:.1f} combined standard uncertainties.")
+        found.append(
+            f"{decided.family.capitalize()} and {checked.family} differ "
+            f"by {agreement:.1f} combined standard uncertainties."
+        )
     if settings.checking and checked is None:
-        found.append(f"The checking family {settings.checking} finds no endpoint: {problems.get(settings.checking, 'nothing to go by')}")
+        found.append(
+            f"The checking family {settings.checking} finds no endpoint: "
+            f"{problems.get(settings.checking, 'nothing to go by')}"
+        )
     return found + (list(fit.flags) if fit else [])
 
 
-__all__ = ["FAMILIES", "CurveEvaluation", "CurveSettings", "Endpoint", "derivative_parabola", "evaluate_curve"]
+__all__ = [
+    "FAMILIES",
+    "CurveEvaluation",
+    "CurveSettings",
+    "Endpoint",
+    "derivative_parabola",
+    "evaluate_curve",
+]

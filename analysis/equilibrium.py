@@ -122,9 +122,7 @@ def fit_equilibrium(
     fitted, readings = _fitted(curve, found)
     points = tuple(
         Equivalence(step.analyte, step.proton, float(volume), float(u), float(reading), step.is_jump)
-        for step, volume, u, reading in zip(
-            steps, summary.volumes[0], summary.volume_us[0], readings, strict=True
-        )
+        for step, volume, u, reading in zip(steps, summary.volumes[0], summary.volume_us[0], readings, strict=True)
     )
     ends = _endpoints(points, last=float(curve.volume[-1]))
     us = np.sqrt(np.maximum(np.diag(summary.covariance[0]), 0.0))
@@ -157,9 +155,7 @@ def _fitted(curve: Curve, found: Outcome) -> tuple[FloatArray, FloatArray]:
     slope = problem.unit
     if "slope" in problem.groups:
         slope *= 1 + float(theta[0, problem.groups.index("slope")])
-    fitted = (
-        curve.reading - (problem.observed.electrode.read(theta, optimum.behind)[0][0] - x[0, :size]) * slope
-    )
+    fitted = curve.reading - (problem.observed.electrode.read(theta, optimum.behind)[0][0] - x[0, :size]) * slope
     return fitted, slope * x[0, size:] + np.interp(ends, curve.volume, fitted - slope * x[0, :size])
 
 

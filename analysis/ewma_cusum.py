@@ -105,9 +105,7 @@ def ewma(
         young = min(x.size, math.ceil(40 / weight))  # later (1 - lambda)^(2 i) is lost beside 1
         half[:young] *= np.sqrt(1 - (1 - weight) ** (2 * np.arange(1, young + 1, dtype=float)))
     out = np.flatnonzero(np.abs(z - target) > half)
-    return Ewma(
-        z, target - half, target + half, target, sigma, weight, width, tuple(int(place) for place in out)
-    )
+    return Ewma(z, target - half, target + half, target, sigma, weight, width, tuple(int(place) for place in out))
 
 
 def ewma_from(x: FloatArray, *, previous: float, weight: float) -> FloatArray:

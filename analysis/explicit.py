@@ -19,9 +19,7 @@ from analysis.system import System
 
 FloatArray = npt.NDArray[np.float64]
 NERNST = nernst(25.0)  # mV
-CORNER = (
-    0.1  # mL over which the corner is rounded where a halide begins to precipitate, as coprecipitation does
-)
+CORNER = 0.1  # mL over which the corner is rounded where a halide begins to precipitate, as coprecipitation does
 
 
 class Precipitation:
@@ -36,9 +34,7 @@ class Precipitation:
         self.system, self.count = system, len(system.analytes)
         sd = prior("pKs")
         self.parameters = (
-            tuple(Parameter(f"pKs of {item.name}", "pKs", sd) for item in system.analytes)
-            if sd is not None
-            else ()
+            tuple(Parameter(f"pKs of {item.name}", "pKs", sd) for item in system.analytes) if sd is not None else ()
         )
         self.limits = (-1.0, 25.0)
         self.least = max(range(self.count), key=lambda k: system.analytes[k].pKs or 0.0)
@@ -83,9 +79,7 @@ class Redox:
         sd = prior("potential")
         names = [item.name for item in system.analytes] + ["the titrant"]
         self.parameters = (
-            tuple(Parameter(f"potential of {name}", "potential", sd) for name in names)
-            if sd is not None
-            else ()
+            tuple(Parameter(f"potential of {name}", "potential", sd) for name in names) if sd is not None else ()
         )
         potentials = [self.turn * float(item.potential or 0.0) / self.slope for item in system.analytes]
         self.potentials = [*potentials, self.turn * float(system.titrant_potential or 0.0) / self.slope]
@@ -97,9 +91,7 @@ class Redox:
     def balance(self, x: FloatArray, volume: FloatArray, theta: FloatArray, medium: None) -> Balance:
         """F and its derivatives by x, volume and parameters."""
         system = self.system
-        reacted = 1.0 / (
-            1.0 + np.exp(LN_10 * system.titrant_electrons * (x - self._potential(self.count, theta)))
-        )
+        reacted = 1.0 / (1.0 + np.exp(LN_10 * system.titrant_electrons * (x - self._potential(self.count, theta))))
         change = LN_10 * system.titrant_electrons * volume * reacted * (1 - reacted)
         value, by_x = volume * reacted, -change
         columns: list[FloatArray] = []
@@ -126,9 +118,7 @@ class Complex:
     def __init__(self, system: System, *, prior: PriorOf) -> None:
         self.system, self.count = system, 1
         sd = prior("log_K")
-        self.parameters = (
-            (Parameter(f"log K of {system.analytes[0].name}", "log_K", sd),) if sd is not None else ()
-        )
+        self.parameters = (Parameter(f"log K of {system.analytes[0].name}", "log_K", sd),) if sd is not None else ()
         self.log_K = float(system.analytes[0].log_K or 0.0)
         self.limits = (-1.0, self.log_K + 8.0)
 
@@ -152,9 +142,7 @@ class Complex:
         )
 
 
-def conditional_constant(
-    log_K: float, *, pH: float, pKa: tuple[float, ...], log_alpha_metal: float = 0.0
-) -> float:
+def conditional_constant(log_K: float, *, pH: float, pKa: tuple[float, ...], log_alpha_metal: float = 0.0) -> float:
     """Logarithm of the conditional constant of a complex at a pH.
 
     Parameters

@@ -38,13 +38,10 @@ def flags_of_fit(
         )
     if runs_z < -3 or lag_1 > 3 / math.sqrt(points):
         found.append(
-            "The residuals of the model follow one another: look for drift, a slow electrode or a second "
-            "analyte."
+            "The residuals of the model follow one another: look for drift, a slow electrode or a second analyte."
         )
     if endpoint > last_volume:
-        found.append(
-            f"The curve stops at {last_volume:.2f} mL, before the equivalence point at {endpoint:.2f} mL."
-        )
+        found.append(f"The curve stops at {last_volume:.2f} mL, before the equivalence point at {endpoint:.2f} mL.")
     return tuple(found)
 
 

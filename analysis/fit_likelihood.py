@@ -100,9 +100,7 @@ def maximise(
     for step in range(most):
         if step < MEDIUM_UNTIL:
             medium = chemistry.medium(x, volume, theta)
-        rows, slopes, root = _rows(
-            chemistry.balance(x, volume, theta, medium), observed, reading, x, volume, x_sd
-        )
+        rows, slopes, root = _rows(chemistry.balance(x, volume, theta, medium), observed, reading, x, volume, x_sd)
         if robust and step >= plain and not is_settled:
             weight = _weights(rows[:, -1], observed.mask)
         information, gradient = _normal(rows, weight, theta - centre, precision)
@@ -125,9 +123,7 @@ def maximise(
     return Optimum(theta, information, z, weight, x, decrement, x_sd, behind)
 
 
-def _bounded(
-    theta: FloatArray, chemistry: Chemistry, observed: Observed, precision: FloatArray
-) -> FloatArray:
+def _bounded(theta: FloatArray, chemistry: Chemistry, observed: Observed, precision: FloatArray) -> FloatArray:
     """Amounts between nothing and 20 times what was delivered; the rest within 15 deviations of their
     priors.
     """
@@ -186,9 +182,7 @@ def _scale(
     return np.asarray(np.sqrt(squares / dof)[:, None])
 
 
-def degrees_of_freedom(
-    information: FloatArray, precision: FloatArray, points: FloatArray | float
-) -> FloatArray:
+def degrees_of_freedom(information: FloatArray, precision: FloatArray, points: FloatArray | float) -> FloatArray:
     """Points less the parameters the curve had to tell: a parameter known by its prior counts for nothing."""
     known = np.clip(np.einsum("bii->bi", inverse(information)) * precision, 0.0, 1.0)
     return np.asarray(np.maximum(points - (1.0 - known).sum(axis=1), 1.0))

@@ -86,9 +86,7 @@ class Problem:
         return np.where(np.isfinite(self.priors), self.priors, np.inf) ** -2.0
 
 
-def prepare(
-    curves: Sequence[Curve], *, system: System, guess: float | None, settings: FitSettings
-) -> Problem:
+def prepare(curves: Sequence[Curve], *, system: System, guess: float | None, settings: FitSettings) -> Problem:
     """Check the curves against the system and lay them out."""
     _check(curves, system=system, guess=guess, settings=settings)
     volume, reading, mask, points = _rows(curves)
@@ -148,9 +146,7 @@ def _check_rows(volume: FloatArray, reading: FloatArray, mask: FloatArray | None
     if mask is not None:
         forward |= mask[:, 1:] == 0
     if not forward.all() or volume[:, 0].min() < 0:
-        raise ValueError(
-            "The volumes do not rise from point to point, from 0 on; a cleaned curve is expected."
-        )
+        raise ValueError("The volumes do not rise from point to point, from 0 on; a cleaned curve is expected.")
 
 
 def _is_reversed(reading: FloatArray, *, quantity: str, system: System) -> npt.NDArray[np.bool_]:

@@ -57,8 +57,6 @@ def anchor(
     a complex.
     """
     c, rows = system.titrant_concentration, np.arange(volume.shape[0])
-    at = (
-        np.zeros(volume.shape[0], dtype=np.intp) if system.kind == "complex" else (points - 1).astype(np.intp)
-    )
+    at = np.zeros(volume.shape[0], dtype=np.intp) if system.kind == "complex" else (points - 1).astype(np.intp)
     away = np.maximum(np.abs(volume[rows, at] - guess), 0.02 * guess)
     return -np.log10(c * away / (system.sample_volume + volume[rows, at])), at

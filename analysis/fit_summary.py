@@ -17,9 +17,7 @@ from analysis.fit_likelihood import HUBER_SHARE, Optimum, degrees_of_freedom, in
 from analysis.fit_problem import Problem
 
 FloatArray = npt.NDArray[np.float64]
-SMALLEST = (
-    1e-10  # share of a parameter's information that the others leave, below which nothing is known of it
-)
+SMALLEST = 1e-10  # share of a parameter's information that the others leave, below which nothing is known of it
 MOST_CORRELATED = 0.9
 NOT_NEGATIVE, SWEEPS = ("sample carbonate", "titrant carbonate", "lag"), 4
 
@@ -68,9 +66,7 @@ def unknown_parameter(information: FloatArray, names: tuple[str, ...]) -> str:
     return names[int(np.abs(vectors[:, 0]).argmax())]
 
 
-def _not_negative(
-    problem: Problem, mean: FloatArray, covariance: FloatArray
-) -> tuple[FloatArray, FloatArray]:
+def _not_negative(problem: Problem, mean: FloatArray, covariance: FloatArray) -> tuple[FloatArray, FloatArray]:
     """The mean and covariance given that carbonate and lag are not below nothing.
 
     Each condition is replaced by a normal factor that gives the same moments as the cut distribution would,
@@ -86,9 +82,7 @@ def _not_negative(
             column = covariance[:, :, place].copy()
             shrink = 1.0 / (1.0 + precision * column[:, place])
             mean = mean + column * ((pull - precision * mean[:, place]) * shrink)[:, None]
-            covariance = (
-                covariance - column[:, :, None] * column[:, None, :] * (precision * shrink)[:, None, None]
-            )
+            covariance = covariance - column[:, :, None] * column[:, None, :] * (precision * shrink)[:, None, None]
             factors[place] = factor
     return mean, covariance
 

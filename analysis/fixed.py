@@ -8,7 +8,10 @@ import numpy as np
 
 from analysis.curve import Curve
 
-READING_U = {"pH": 0.03, "mV": 2.0}  # of the calibration of the electrode (common practice), beside the scatter
+READING_U = {
+    "pH": 0.03,
+    "mV": 2.0,
+}  # of the calibration of the electrode (common practice), beside the scatter
 
 
 def fixed_reading(curve: Curve, *, reading: float, noise: float) -> tuple[float, float]:

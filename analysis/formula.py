@@ -48,9 +48,7 @@ def parse_model(text: str) -> Formula:
     try:
         body = ast.parse(text, mode="eval").body
     except (SyntaxError, ValueError, MemoryError, RecursionError) as problem:
-        raise ValueError(
-            f"Formula is {text!r}; an expression such as 1000*m*P/(M*V) is expected."
-        ) from problem
+        raise ValueError(f"Formula is {text!r}; an expression such as 1000*m*P/(M*V) is expected.") from problem
     compute = _node(body)
 
     def model(values: Mapping[str, Any]) -> Any:
@@ -64,11 +62,7 @@ def parse_model(text: str) -> Formula:
 
 
 def _node(node: ast.expr) -> Formula:
-    if (
-        isinstance(node, ast.Constant)
-        and isinstance(node.value, int | float)
-        and not isinstance(node.value, bool)
-    ):
+    if isinstance(node, ast.Constant) and isinstance(node.value, int | float) and not isinstance(node.value, bool):
         number = float(node.value)
         return lambda values: number
     if isinstance(node, ast.Name):
@@ -79,24 +73,15 @@ def _node(node: ast.expr) -> Formula:
     if isinstance(node, ast.BinOp) and type(node.op) in OPERATORS:
         left, right, combine = _node(node.left), _node(node.right), OPERATORS[type(node.op)]
         return lambda values: combine(left(values), right(values))
-    if (
-        isinstance(node, ast.Call)
-        and isinstance(node.func, ast.Name)
-        and len(node.args) == 1
-        and not node.keywords
-    ):
+    if isinstance(node, ast.Call) and isinstance(node.func, ast.Name) and len(node.args) == 1 and not node.keywords:
         return _function(node.func.id, _node(node.args[0]))
-    raise ValueError(
-        f"Formula has {ast.unparse(node)!r}; numbers, inputs, + - * / ** and {_known()} are known."
-    )
+    raise ValueError(f"Formula has {ast.unparse(node)!r}; numbers, inputs, + - * / ** and {_known()} are known.")
 
 
 def _input(name: str) -> Formula:
     def value(values: Mapping[str, Any]) -> Any:
         if name not in values:
-            raise ValueError(
-                f"Formula uses {name!r}, which is not among the inputs {', '.join(sorted(values))}."
-            )
+            raise ValueError(f"Formula uses {name!r}, which is not among the inputs {', '.join(sorted(values))}.")
         return values[name]
 
     return value

@@ -64,7 +64,7 @@ def _line(v: FloatArray, g: FloatArray) -> tuple[float, float] | None:
     if not np.all(np.isfinite(g)) or np.any(g <= 0):
         return None
     design = np.column_stack([np.ones_like(v), v]) / g[:, None]
-    coefficients, residual, rank, _ = np.linalg.lstsq(design, np.ones_like(v), rcond=None)
+    coefficients, _, rank, _ = np.linalg.lstsq(design, np.ones_like(v), rcond=None)
     if rank < 2 or coefficients[1] == 0:
         return None
     a, b = map(float, coefficients)

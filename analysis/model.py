@@ -60,7 +60,9 @@ def result_scale(inputs: Mapping[str, Any]) -> Scale:
     factor = unit.factor(quantity, method["unit"], equivalent=equivalent)
     needs = "volume" if quantity.endswith("concentration") else "mass"
     if sample["by"] != needs:
-        raise ValueError(f"{quantity.replace('_', ' ').capitalize()} needs a sample by {needs}; it is by {sample['by']}.")
+        raise ValueError(
+            f"{quantity.replace('_', ' ').capitalize()} needs a sample by {needs}; it is by {sample['by']}."
+        )
     if sample["unit"] != {"volume": "mL", "mass": "g"}[needs]:
         raise ValueError(f"Sample unit is {sample['unit']!r}; mL for a volume, g for a mass.")
     if quantity == "amount_concentration":
@@ -106,34 +108,56 @@ def run_inputs(inputs: Mapping[str, Any]) -> list[Input]:
     method, substance, sample = inputs["method"], inputs["substance"], inputs["sample"]
     found = [
         _solution(inputs["titrant"], name="c"),
-        Input("amount", sample["key"], sample["label"], 0.0, number(sample["u"], name="u of the sample"), sample["unit"]),
+        Input(
+            "amount", sample["key"], sample["label"], 0.0, number(sample["u"], name="u of the sample"), sample["unit"]
+        ),
         _molar_mass(substance["formula"], substance["molar_mass"], substance["u"]),
         Input(
-            "loss", "loss", "loss on drying", number(method.get("loss_percent") or 0, name="Loss on drying"),
-            number(method.get("loss_u") or 0, name="u of the loss"), "%",
+            "loss",
+            "loss",
+            "loss on drying",
+            number(method.get("loss_percent") or 0, name="Loss on drying"),
+            number(method.get("loss_u") or 0, name="u of the loss"),
+            "%",
         ),
-    ]  # fmt: skip
-    excess = inputs.get("excess")
-    if excess:
-        volume = positive(excess["volume"], name="Excess volume")
-        found.append(_solution(excess, name="excess"))
-        found.append(Input("excess_volume", excess["key"], _spoken(excess["key"]), volume, number(excess["volume_u"], name="u of the excess volume"), "mL"))
-    for place, step in enumerate(inputs.get("dilutions") or [], start=1):
+    ]
+    return [*found, *_excess_inputs(inputs.get("excess")), *_dilution_inputs(inputs.get("dilutions") or [])]
+
+
+def _excess_inputs(excess: Mapping[str, Any] | None) -> list[Input]:
+    if not excess:
+        return []
+    volume = positive(excess["volume"], name="Excess volume")
+    u = number(excess["volume_u"], name="u of the excess volume")
+    return [
+        _solution(excess, name="excess"),
+        Input("excess_volume", excess["key"], _spoken(excess["key"]), volume, u, "mL"),
+    ]
+
+
+def _dilution_inputs(steps: Sequence[Mapping[str, Any]]) -> list[Input]:
+    found = []
+    for place, step in enumerate(steps, start=1):
         for part in ("flask", "aliquot"):
-            found.append(
-                Input(
-                    f"{part} {place}", step[f"{part}_key"], _spoken(step[f"{part}_key"]),
-                    positive(step[part], name=f"{part.capitalize()} {place}"),
-                    number(step[f"{part}_u"], name=f"u of {part} {place}"), "mL", "triangular",
-                )
-            )  # fmt: skip
+            key, volume = step[f"{part}_key"], positive(step[part], name=f"{part.capitalize()} {place}")
+            u = number(step[f"{part}_u"], name=f"u of {part} {place}")
+            found.append(Input(f"{part} {place}", key, _spoken(key), volume, u, "mL", "triangular"))
     return found
 
 
 def standardization_inputs(inputs: Mapping[str, Any]) -> list[Input]:
     """The inputs of a standardization that are no titre."""
     standard, sample = inputs["standard"], inputs["sample"]
-    found = [Input("amount", sample["key"], sample["label"], 0.0, number(sample["u"], name="u of the amount"), sample["unit"])]
+    found = [
+        Input(
+            "amount",
+            sample["key"],
+            sample["label"],
+            0.0,
+            number(sample["u"], name="u of the amount"),
+            sample["unit"],
+        )
+    ]
     if standard["basis"] == "titrant":
         return [*found, _solution(standard, name="c_standard")]
     purity = positive(standard["purity"], name="Purity")
@@ -141,7 +165,14 @@ def standardization_inputs(inputs: Mapping[str, Any]) -> list[Input]:
         raise ValueError(f"Purity is {standard['purity']}; a mass fraction from 0 to 1 is expected, not a percentage.")
     return [
         *found,
-        Input("purity", standard["key"], standard["label"], purity, number(standard["purity_u"], name="u of the purity"), "g/g"),
+        Input(
+            "purity",
+            standard["key"],
+            standard["label"],
+            purity,
+            number(standard["purity_u"], name="u of the purity"),
+            "g/g",
+        ),
         _molar_mass(standard["formula"], standard["molar_mass"], standard["molar_mass_u"]),
     ]
 
@@ -157,7 +188,15 @@ def _solution(solution: Mapping[str, Any], *, name: str) -> Input:
 
 def _molar_mass(formula: str, value: Any, u: Any) -> Input:
     mass = positive(value, name="Molar mass")
-    return Input("molar_mass", f"molar_mass:{formula}", f"molar mass of {formula}", mass, number(u, name="u of the molar mass"), "g/mol", "rectangular")
+    return Input(
+        "molar_mass",
+        f"molar_mass:{formula}",
+        f"molar mass of {formula}",
+        mass,
+        number(u, name="u of the molar mass"),
+        "g/mol",
+        "rectangular",
+    )
 
 
 def _spoken(key: str) -> str:

@@ -120,9 +120,7 @@ def _blocks(model: Model, inputs: Sequence[Input], *, seed: int) -> Iterator[Flo
         with np.errstate(all="ignore"):
             block = np.broadcast_to(np.asarray(model(_draw(inputs, generator)), dtype=float), (BLOCK,))
         if not np.all(np.isfinite(block)):
-            raise ValueError(
-                "Some draws of the inputs give no number; an input may reach zero in a denominator."
-            )
+            raise ValueError("Some draws of the inputs give no number; an input may reach zero in a denominator.")
         yield block
 
 

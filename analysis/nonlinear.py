@@ -34,9 +34,7 @@ class NonlinearFit:
     n: int
 
 
-def fit_formula(
-    model: Model, *, x: Sequence[float], y: Sequence[float], start: Mapping[str, float]
-) -> NonlinearFit:
+def fit_formula(model: Model, *, x: Sequence[float], y: Sequence[float], start: Mapping[str, float]) -> NonlinearFit:
     """Fit a model of x and named parameters.
 
     Parameters
@@ -59,9 +57,7 @@ def fit_formula(
     scale = np.where(guess == 0, 1.0, np.abs(guess))
 
     def away(p: FloatArray) -> FloatArray:
-        return (
-            _numbers(model({"x": points, **dict(zip(names, p * scale, strict=True))}), points.size) - readings
-        )
+        return _numbers(model({"x": points, **dict(zip(names, p * scale, strict=True))}), points.size) - readings
 
     def slopes(p: FloatArray) -> FloatArray:
         return _slopes(model, points, dict(zip(names, p * scale, strict=True))) * scale
@@ -70,9 +66,7 @@ def fit_formula(
         away, guess / scale, jac=slopes, method="lm", xtol=1e-15, ftol=1e-15, gtol=1e-15, max_nfev=MOST_STEPS
     )
     if found.status <= 0:
-        raise ValueError(
-            f"The fit has not converged after {found.nfev} steps; a better first guess is expected."
-        )
+        raise ValueError(f"The fit has not converged after {found.nfev} steps; a better first guess is expected.")
     return _fitted(
         names,
         found.x * scale,
@@ -81,15 +75,11 @@ def fit_formula(
     )
 
 
-def _fitted(
-    names: Sequence[str], values: FloatArray, jacobian: FloatArray, residuals: FloatArray
-) -> NonlinearFit:
+def _fitted(names: Sequence[str], values: FloatArray, jacobian: FloatArray, residuals: FloatArray) -> NonlinearFit:
     size = np.sqrt((jacobian**2).sum(axis=0))
     for name, length in zip(names, size, strict=True):
         if not length > 0:
-            raise ValueError(
-                f"Parameter {name} cannot be known: the formula does not change with it at these points."
-            )
+            raise ValueError(f"Parameter {name} cannot be known: the formula does not change with it at these points.")
     _, singular, rows = np.linalg.svd(jacobian / size, full_matrices=False)
     if singular[-1] < 1e-12 * singular[0]:
         vague = names[int(np.abs(rows[-1]).argmax())]

@@ -120,9 +120,7 @@ def grubbs_pair(values: Sequence[float], *, alpha: float = 0.05, sides: int = 2)
     low, high = _sum_of_squares(order[2:]) / whole, _sum_of_squares(order[:-2]) / whole
     ratio, pair = (low, order[:2]) if low < high else (high, order[:-3:-1])
     critical = pair_critical(len(values), alpha, sides)
-    return OutlierTest(
-        "Grubbs, a pair at one end", pair[0], ratio, critical, alpha, sides, (pair[1],), is_small=True
-    )
+    return OutlierTest("Grubbs, a pair at one end", pair[0], ratio, critical, alpha, sides, (pair[1],), is_small=True)
 
 
 def grubbs_opposite(values: Sequence[float], *, alpha: float = 0.05) -> OutlierTest:
@@ -130,14 +128,10 @@ def grubbs_opposite(values: Sequence[float], *, alpha: float = 0.05) -> OutlierT
     _check(values, least=4)
     low, high = min(values), max(values)
     critical = opposite_critical(len(values), alpha)
-    return OutlierTest(
-        "Grubbs, one at each end", low, (high - low) / stdev(values), critical, alpha, 2, (high,)
-    )
+    return OutlierTest("Grubbs, one at each end", low, (high - low) / stdev(values), critical, alpha, 2, (high,))
 
 
-def dixon(
-    values: Sequence[float], *, alpha: float = 0.05, sides: int = 2, ratio: str | None = None
-) -> OutlierTest:
+def dixon(values: Sequence[float], *, alpha: float = 0.05, sides: int = 2, ratio: str | None = None) -> OutlierTest:
     """Dixon's test: the gap at the suspect end over a range, the ratio chosen by the number of values.
 
     r10 for 3 to 7 values, r11 for 8 to 10, r21 for 11 to 13, r22 from 14 on, unless a ratio is named.
@@ -186,18 +180,14 @@ def esd(values: Sequence[float], *, most: int, alpha: float = 0.05) -> tuple[tup
     """
     _check(values, least=3)
     if not 1 <= most <= len(values) - 2:
-        raise ValueError(
-            f"Most outliers is {most}; expected 1 to {len(values) - 2} for {len(values)} values."
-        )
+        raise ValueError(f"Most outliers is {most}; expected 1 to {len(values) - 2} for {len(values)} values.")
     left, steps = dict(enumerate(values)), []
     for _ in range(most):
         mean, sd = fmean(left.values()), stdev(left.values())
         if sd == 0:
             break
         place = max(left, key=lambda key: abs(left[key] - mean))
-        steps.append(
-            EsdStep(left[place], place, abs(left[place] - mean) / sd, grubbs_critical(len(left), alpha))
-        )
+        steps.append(EsdStep(left[place], place, abs(left[place] - mean) / sd, grubbs_critical(len(left), alpha)))
         del left[place]
     beyond = [number for number, step in enumerate(steps, start=1) if step.statistic > step.critical]
     return tuple(steps), max(beyond, default=0)

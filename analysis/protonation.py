@@ -34,9 +34,7 @@ def fractions(inverse_h: FloatArray, constants: Sequence[FloatArray]) -> list[Fl
     return [term * inverse for term in terms]
 
 
-def protons_lost(
-    inverse_h: FloatArray, constants: Sequence[FloatArray]
-) -> tuple[FloatArray, list[FloatArray]]:
+def protons_lost(inverse_h: FloatArray, constants: Sequence[FloatArray]) -> tuple[FloatArray, list[FloatArray]]:
     """Mean number of protons lost, and its covariance with having lost at least j, for each step j.
 
     The covariances sum to the variance. d(mean)/dpH = ln10 * variance; d(mean)/dpK_j = -ln10 * covariance_j.

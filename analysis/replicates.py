@@ -8,9 +8,7 @@ from dataclasses import dataclass
 from itertools import pairwise
 from statistics import fmean, stdev
 
-EDGE = (
-    1e-12  # relative: titres are differences of decimals, 10.05 - 9.95 is a little more than 0.10 in binary
-)
+EDGE = 1e-12  # relative: titres are differences of decimals, 10.05 - 9.95 is a little more than 0.10 in binary
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,9 +105,7 @@ def lag_1_autocorrelation(values: Sequence[float]) -> float:
     away = [value - mean for value in values]
     whole = math.fsum(a * a for a in away)
     if len(values) < 3 or max(values) == min(values):
-        raise ValueError(
-            f"{len(values)} values are given; at least 3 that are not all the same are expected."
-        )
+        raise ValueError(f"{len(values)} values are given; at least 3 that are not all the same are expected.")
     return math.fsum(a * b for a, b in pairwise(away)) / whole
 
 

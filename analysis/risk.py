@@ -65,16 +65,12 @@ def guard_band_for(risk: float, *, standard_uncertainty: float) -> float:
     return float(-special.ndtri(risk) * standard_uncertainty)
 
 
-def acceptance_limits(
-    *, lower: float | None, upper: float | None, guard: float
-) -> tuple[float | None, float | None]:
+def acceptance_limits(*, lower: float | None, upper: float | None, guard: float) -> tuple[float | None, float | None]:
     """Limits of acceptance a guard band inside the limits; ValueError when nothing would be accepted."""
     low = None if lower is None else lower + guard
     high = None if upper is None else upper - guard
     if low is not None and high is not None and low > high:
-        raise ValueError(
-            f"Guard band is {guard}; twice that is more than the limits {lower} to {upper} are apart."
-        )
+        raise ValueError(f"Guard band is {guard}; twice that is more than the limits {lower} to {upper} are apart.")
     return low, high
 
 
@@ -116,9 +112,7 @@ def process_risks(
             f"Mean is {mean}, limits {lower} and {upper}; a finite mean and at least one limit are expected."
         )
     if lower is not None and upper is not None and lower >= upper:
-        raise ValueError(
-            f"Lower limit is {lower} and upper limit {upper}; the lower must be below the upper."
-        )
+        raise ValueError(f"Lower limit is {lower} and upper limit {upper}; the lower must be below the upper.")
     accept_low, accept_high = acceptance_limits(lower=lower, upper=upper, guard=guard)
     low, high = _open(lower, -1), _open(upper, 1)
     edges = (_open(accept_low, -1), _open(accept_high, 1))
@@ -144,9 +138,7 @@ def _mass(
     first, last = max(start, mean - 10 * sd), min(end, mean + 10 * sd)
     if first >= last:
         return 0.0
-    cuts = {first, last} | {
-        edge + step * u for edge in edges for step in (-8, 0, 8) if first < edge + step * u < last
-    }
+    cuts = {first, last} | {edge + step * u for edge in edges for step in (-8, 0, 8) if first < edge + step * u < last}
     places = sorted(cuts)
     nodes, weights = legendre(80)
     total = 0.0

@@ -81,10 +81,7 @@ def _zone_probabilities(shift: float) -> np.ndarray:
 
 def _reachable(parts: Sequence[ZoneRule]) -> list[list[int]]:
     """For each state, from the first on, the state after a point in each zone; -1 for a signal."""
-    inside = [
-        [part.low <= low and high <= part.high for low, high in pairwise(CUTS)]
-        for part in parts
-    ]
+    inside = [[part.low <= low and high <= part.high for low, high in pairwise(CUTS)] for part in parts]
     start: State = (0,) * len(parts)
     number, order, steps = {start: 0}, [start], []
     for state in order:  # grows while it is read

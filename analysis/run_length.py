@@ -110,9 +110,7 @@ def siegmund_run_length(*, reference: float, interval: float, shift: float = 0.0
 def ewma_width_for(run_length: float, *, weight: float) -> float:
     """The width L of an EWMA chart whose average run length without a shift is the one wanted."""
     _check_wanted(run_length)
-    return float(
-        optimize.brentq(lambda width: ewma_run_length(weight=weight, width=width) - run_length, 0.05, 5.0)
-    )
+    return float(optimize.brentq(lambda width: ewma_run_length(weight=weight, width=width) - run_length, 0.05, 5.0))
 
 
 def cusum_interval_for(run_length: float, *, reference: float) -> float:
@@ -135,9 +133,7 @@ def _one_sided(reference: float, *, interval: float, shift: float, start: float)
     matrix[:, 0] = special.ndtr(reference - states - shift)
     matrix[:, 1:] = w * _density(y + reference - states[:, None] - shift)
     lengths = np.linalg.solve(np.eye(states.size) - matrix, np.ones(states.size))
-    row = np.concatenate(
-        [[special.ndtr(reference - start - shift)], w * _density(y + reference - start - shift)]
-    )
+    row = np.concatenate([[special.ndtr(reference - start - shift)], w * _density(y + reference - start - shift)])
     return float(lengths[0]), float(1 + row @ lengths)
 
 

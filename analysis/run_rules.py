@@ -132,9 +132,7 @@ def flags_of(
     return {name: _rule(name)(z) if z.size else np.zeros(0, dtype=bool) for name in rules}
 
 
-def signals_at_last(
-    tail: Sequence[float], *, centre: float, sigma: float, rules: Iterable[str]
-) -> tuple[str, ...]:
+def signals_at_last(tail: Sequence[float], *, centre: float, sigma: float, rules: Iterable[str]) -> tuple[str, ...]:
     """The rules that the newest point breaks, from the last points alone: the same as of the whole series.
 
     Parameters
@@ -154,9 +152,7 @@ def _standardized(values: Sequence[float] | FloatArray, *, centre: float, sigma:
     given = np.asarray(values, dtype=float)
     wrong = np.flatnonzero(~np.isfinite(given))
     if wrong.size:
-        raise ValueError(
-            f"Value {wrong[0] + 1} of the chart is {given[wrong[0]]}; a finite number is expected."
-        )
+        raise ValueError(f"Value {wrong[0] + 1} of the chart is {given[wrong[0]]}; a finite number is expected.")
     return np.asarray((given - centre) / sigma)
 
 

@@ -116,9 +116,7 @@ class RunningChart:
         average = ewma_from(x, previous=before, weight=self.weight)[-1]
         start = (self.head_start, 0.0)
         upper, up = one_sided(z - self.reference, total=(self.up or start)[0], least=(self.up or start)[1])
-        lower, down = one_sided(
-            -z - self.reference, total=(self.down or start)[0], least=(self.down or start)[1]
-        )
+        lower, down = one_sided(-z - self.reference, total=(self.down or start)[0], least=(self.down or start)[1])
         tail = (*self.tail, value)[-REACH:]
         broken = signals_at_last(tail, centre=self.centre, sigma=self.sigma, rules=self.rules)
         return replace(

@@ -44,7 +44,7 @@ def _fit(v: FloatArray, y: FloatArray) -> tuple[FloatArray, FloatArray]:
     design = np.column_stack([np.ones_like(v), v])
     line, *_ = np.linalg.lstsq(design, y, rcond=None)
     variance = float(((y - design @ line) ** 2).sum()) / max(v.size - 2, 1)
-    return line, np.linalg.inv(design.T @ design) * variance
+    return np.asarray(line, dtype=np.float64), np.linalg.inv(design.T @ design) * variance
 
 
 def _misfit(v: FloatArray, y: FloatArray) -> float:

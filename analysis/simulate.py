@@ -92,9 +92,7 @@ def true_x(
         if name not in names:
             raise ValueError(f"Constant is {name!r}; expected one of {', '.join(names)}.")
         theta[:, chemistry.count + names.index(name)] = value
-    return solved_with_activity(
-        chemistry, np.broadcast_to(volumes, (len(theta), np.shape(volumes)[-1])), theta
-    )
+    return solved_with_activity(chemistry, np.broadcast_to(volumes, (len(theta), np.shape(volumes)[-1])), theta)
 
 
 def shiftable(system: System) -> tuple[str, ...]:
@@ -102,9 +100,7 @@ def shiftable(system: System) -> tuple[str, ...]:
     return tuple(item.name for item in MODELS[system.kind](system, prior=prior_of(NUISANCE, {})).parameters)
 
 
-def grid(
-    *, end: float, near: float, coarse: float = 0.5, fine: float = 0.1, width: float = 0.8
-) -> FloatArray:
+def grid(*, end: float, near: float, coarse: float = 0.5, fine: float = 0.1, width: float = 0.8) -> FloatArray:
     """Volumes [mL] as a titration is recorded: coarse steps, finer ones about the endpoint."""
     outside = np.arange(0.0, end + coarse / 2, coarse)
     inside = np.arange(max(near - width, 0.0), near + width + fine / 2, fine)
@@ -119,9 +115,7 @@ def _column(value: Value) -> FloatArray:
 
 def _check(system: System, *, amounts: FloatArray, generator: Any, random: float) -> None:
     if amounts.shape[1] != len(system.analytes):
-        raise ValueError(
-            f"{amounts.shape[1]} amounts are given; {len(system.analytes)} are expected, one an analyte."
-        )
+        raise ValueError(f"{amounts.shape[1]} amounts are given; {len(system.analytes)} are expected, one an analyte.")
     if not (np.isfinite(amounts).all() and (amounts >= 0).all()):
         raise ValueError(f"Amounts are {amounts.tolist()}; finite numbers from 0 are expected [mmol].")
     if random > 0 and generator is None:
@@ -147,9 +141,7 @@ def _equivalents(system: System) -> FloatArray:
     return np.array([item.electrons / system.titrant_electrons for item in system.analytes])
 
 
-def _scattered(
-    reading: FloatArray, generator: np.random.Generator, *, noise: float, outliers: float
-) -> FloatArray:
+def _scattered(reading: FloatArray, generator: np.random.Generator, *, noise: float, outliers: float) -> FloatArray:
     found = reading + generator.normal(0.0, noise, reading.shape)
     if outliers > 0 and not math.isclose(outliers, 0.0):
         bad = generator.random(reading.shape) < outliers

@@ -111,9 +111,7 @@ def _check(species: Sequence[Species], strong: float, pKw: float) -> None:
             raise ValueError(f"{name} is {number}; a finite number is expected.")
     for place, each in enumerate(species, start=1):
         if not (each.concentration >= 0 and math.isfinite(each.concentration)):
-            raise ValueError(
-                f"Concentration {place} is {each.concentration} mol/L; a number not below 0 is expected."
-            )
+            raise ValueError(f"Concentration {place} is {each.concentration} mol/L; a number not below 0 is expected.")
         if list(each.pKa) != sorted(each.pKa) or not all(math.isfinite(pKa) for pKa in each.pKa):
             raise ValueError(
                 f"pKa of species {place} are {list(each.pKa)}; finite numbers in rising order are expected."

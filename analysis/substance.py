@@ -68,7 +68,11 @@ def molar_mass(formula: str, *, weights: Mapping[str, tuple[float, float]] = WEI
     value = sum(weights[element][0] * count for element, count in composition)
     variance = sum((weights[element][1] * count) ** 2 / 3 for element, count in composition)
     return MolarMass(
-        formula=formula, composition=composition, value=value, standard_uncertainty=variance**0.5, edition=EDITION
+        formula=formula,
+        composition=composition,
+        value=value,
+        standard_uncertainty=variance**0.5,
+        edition=EDITION,
     )
 
 
@@ -101,7 +105,7 @@ def _group(text: str, formula: str, *, known: Mapping[str, object]) -> dict[str,
         token = TOKEN.match(text, position)
         if token is None:
             raise ValueError(f"Formula is {formula!r}: {text[position]!r} at place {position + 1} is not expected.")
-        element, number, opened, closed = token.groups()
+        element, number, opened, _ = token.groups()
         if element and element not in known:
             raise ValueError(f"Formula is {formula!r}: {element} is not an element with a standard atomic weight.")
         if number:

@@ -53,9 +53,7 @@ class Analyte:
 
     def __post_init__(self) -> None:
         if len(self.pKa) > MOST_STEPS:
-            raise ValueError(
-                f"{self.name} has {len(self.pKa)} pKa values; at most {MOST_STEPS} are expected."
-            )
+            raise ValueError(f"{self.name} has {len(self.pKa)} pKa values; at most {MOST_STEPS} are expected.")
         for value in self.pKa:
             if not LOWEST_PKA <= value <= HIGHEST_PKA:
                 raise ValueError(
@@ -63,9 +61,7 @@ class Analyte:
                     "(none at all for a strong acid or base)."
                 )
         if self.lost is not None and not 0 <= self.lost <= len(self.pKa):
-            raise ValueError(
-                f"Protons lost of {self.name} are {self.lost}; 0 to {len(self.pKa)} is expected."
-            )
+            raise ValueError(f"Protons lost of {self.name} are {self.lost}; 0 to {len(self.pKa)} is expected.")
         if self.electrons < 1:
             raise ValueError(f"Electrons of {self.name} are {self.electrons}; 1 or more are expected.")
 
@@ -118,9 +114,7 @@ class System:
         for name in ("titrant_concentration", "sample_volume"):
             value = getattr(self, name)
             if not (value > 0 and math.isfinite(value)):
-                raise ValueError(
-                    f"{name.replace('_', ' ').capitalize()} is {value}; a number above 0 is expected."
-                )
+                raise ValueError(f"{name.replace('_', ' ').capitalize()} is {value}; a number above 0 is expected.")
         _check_range("Carbonate", self.carbonate, low=0.0, high=0.5)
         _check_range("Temperature", self.temperature, low=0.0, high=60.0)
         _check_range("Background", self.background, low=0.0, high=1.0)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import Any
 
 Inputs = Mapping[str, Any]
@@ -62,7 +63,7 @@ def correction_at(reading: float, table: Sequence[Sequence[Any]]) -> float:
         return 0.0
     if reading <= points[0][0]:
         return points[0][1]
-    for (low, below), (high, above) in zip(points, points[1:], strict=False):
+    for (low, below), (high, above) in pairwise(points):
         if reading <= high:
             return below + (above - below) * (reading - low) / (high - low)
     return points[-1][1]
@@ -76,6 +77,8 @@ def burette_titre(line: Inputs, burette: Inputs) -> float | None:
     if start is None or end is None:
         return None
     if start < 0 or end < start:
-        raise ValueError(f"Readings of {where} are {line['start']} and {line['end']} mL; the end must not be below the start.")
+        raise ValueError(
+            f"Readings of {where} are {line['start']} and {line['end']} mL; the end must not be below the start."
+        )
     table = burette.get("table") or []
     return round(end - start, 9) + correction_at(end, table) - correction_at(start, table)

@@ -47,10 +47,25 @@ def titre_inputs(
     from_curve = any(item.endpoint for item in inside)
     label = "endpoint of the curve" if from_curve else "reading the burette"
     return [
-        Input("volume", burette["key"], f"burette {burette['identifier']}", 0.0, tolerance / SQRT_6, "mL", "triangular"),
+        Input(
+            "volume",
+            burette["key"],
+            f"burette {burette['identifier']}",
+            0.0,
+            tolerance / SQRT_6,
+            "mL",
+            "triangular",
+        ),
         Input("reading", "reading", label, 0.0, random, "mL", "normal" if from_curve else "rectangular"),
         Input("blank", "blank", "blank", blank or 0.0, blank_u, "mL", "rectangular"),
-        Input("bias", "indicator", "indicator past equivalence", 0.0 if blank is not None else bias, bias_u, "mL"),
+        Input(
+            "bias",
+            "indicator",
+            "indicator past equivalence",
+            0.0 if blank is not None else bias,
+            bias_u,
+            "mL",
+        ),
     ]
 
 

@@ -131,7 +131,10 @@ def from_budget(value: float, budget: Sequence[BudgetLine]) -> Propagated:
     variance = sum(line.contribution**2 for line in budget)
     shared = tuple(_with_share(line, variance) for line in budget)
     return Propagated(
-        value=value, u=math.sqrt(variance), degrees_of_freedom=effective_degrees_of_freedom(shared), budget=shared
+        value=value,
+        u=math.sqrt(variance),
+        degrees_of_freedom=effective_degrees_of_freedom(shared),
+        budget=shared,
     )
 
 

@@ -7,7 +7,14 @@ from __future__ import annotations
 # titrant equivalent mol of titrant's equivalents per kg of sample ("mg X/g" needs the molar mass of X).
 UNITS: dict[str, dict[str, float]] = {
     "amount_concentration": {"mol/L": 1.0, "mmol/L": 1e3, "umol/L": 1e6},
-    "mass_concentration": {"g/L": 1.0, "mg/L": 1e3, "ug/L": 1e6, "g/100 mL": 0.1, "mg/100 mL": 100.0, "mg/mL": 1.0},
+    "mass_concentration": {
+        "g/L": 1.0,
+        "mg/L": 1e3,
+        "ug/L": 1e6,
+        "g/100 mL": 0.1,
+        "mg/100 mL": 100.0,
+        "mg/mL": 1.0,
+    },
     "mass_fraction": {"%": 100.0, "g/100 g": 100.0, "g/kg": 1e3, "mg/g": 1e3, "mg/kg": 1e6, "g/g": 1.0},
     "titrant_equivalent": {"mol/kg": 1.0, "mmol/kg": 1e3, "meq/kg": 1e3, "meq/g": 1.0, "mmol/g": 1.0},
 }

@@ -3,6 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
+from typing import TypeVar
+
+Value = TypeVar("Value")
 
 
 class Refused(Exception):
@@ -18,3 +21,10 @@ def refuse_if(objections: Iterable[str]) -> None:
     reasons = tuple(objections)
     if reasons:
         raise Refused(reasons)
+
+
+def sure_of(value: Value | None) -> Value:
+    """A value that the rules have seen to; were it missing after all, the change is refused and nothing is kept."""
+    if value is None:
+        raise Refused(["What this rests on is gone. Open the page again and choose anew."])
+    return value

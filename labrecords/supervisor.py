@@ -102,9 +102,7 @@ def run(stack: contextlib.ExitStack, stopping: Stopping) -> None:
     say("stopping")
 
 
-def open_site(
-    programs: dict[str, local.Program], env: local.Environment, *, port: int, stopping: Stopping
-) -> None:
+def open_site(programs: dict[str, local.Program], env: local.Environment, *, port: int, stopping: Stopping) -> None:
     """Start the programs, wait for the first page, and say where it is."""
     commands = local.commands(DATA, port=port)
 

@@ -35,9 +35,7 @@ def administrator(db: None) -> User:
 
 
 def _person(administrator: User, username: str, full_name: str, *roles: str) -> User:
-    return record_user(
-        by=administrator, username=username, full_name=full_name, roles=list(roles), password=PASSWORD
-    )
+    return record_user(by=administrator, username=username, full_name=full_name, roles=list(roles), password=PASSWORD)
 
 
 @pytest.fixture

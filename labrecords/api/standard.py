@@ -84,9 +84,7 @@ class StandardEntry(serializers.Serializer[ReferenceStandard]):
     methods=["GET"], parameters=[OpenApiParameter("q"), OpenApiParameter("state")],
     responses=StandardShape(many=True), operation_id="standards",
 )  # fmt: skip
-@extend_schema(
-    methods=["POST"], request=StandardEntry, responses={201: StandardShape}, operation_id="record_standard"
-)
+@extend_schema(methods=["POST"], request=StandardEntry, responses={201: StandardShape}, operation_id="record_standard")
 @api_view(["GET", "POST"])
 def list(request: Request) -> Response:
     """Lots by number; POST records one into quarantine."""

@@ -77,9 +77,7 @@ class TitrantEntry(serializers.Serializer[Titrant]):
     responses=TitrantShape(many=True),
     operation_id="titrants",
 )
-@extend_schema(
-    methods=["POST"], request=TitrantEntry, responses={201: TitrantShape}, operation_id="record_titrant"
-)
+@extend_schema(methods=["POST"], request=TitrantEntry, responses={201: TitrantShape}, operation_id="record_titrant")
 @api_view(["GET", "POST"])
 def list(request: Request) -> Response:
     """Titrants by code; POST records one."""

@@ -79,9 +79,7 @@ class LotEntry(serializers.Serializer[TitrantLot]):
     responses=LotShape(many=True),
     operation_id="titrant_lots",
 )  # fmt: skip
-@extend_schema(
-    methods=["POST"], request=LotEntry, responses={201: LotShape}, operation_id="record_titrant_lot"
-)
+@extend_schema(methods=["POST"], request=LotEntry, responses={201: LotShape}, operation_id="record_titrant_lot")
 @api_view(["GET", "POST"])
 def list(request: Request) -> Response:
     """Lots, the newest first; POST records one into quarantine."""

@@ -17,9 +17,7 @@ substance_urls = [
 instrument_urls = [
     path("instruments/", instrument.list, name="instrument-list"),
     path("instruments/<str:identifier>/", instrument.detail, name="instrument-detail"),
-    path(
-        "instruments/<str:identifier>/calibrations/", instrument.calibrations, name="instrument-calibrations"
-    ),
+    path("instruments/<str:identifier>/calibrations/", instrument.calibrations, name="instrument-calibrations"),
 ]
 
 standard_urls = [

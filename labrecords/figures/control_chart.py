@@ -36,9 +36,7 @@ def control_chart_figure(
     ]
     return plot.figure(
         traces,
-        x=plot.axis(
-            "", tickvals=places, ticktext=[str(point["label"]) for point in points], nticks=12, tickangle=0
-        )
+        x=plot.axis("", tickvals=places, ticktext=[str(point["label"]) for point in points], nticks=12, tickangle=0)
         if len(points) <= 12
         else plot.axis("Point, in time order"),
         y=plot.axis(title),
@@ -83,9 +81,7 @@ def _hover(point: Mapping[str, Any], *, digits: int) -> str:
 
 def _limit_lines(limits: Mapping[str, Any], *, places: list[int], digits: int) -> list[go.Scatter]:
     return [
-        _limit_line(
-            limits[key], words=_named(limits[key], name=name, digits=digits), look=look, places=places
-        )
+        _limit_line(limits[key], words=_named(limits[key], name=name, digits=digits), look=look, places=places)
         for key, name, *look in LIMITS
         if limits.get(key) is not None
     ]

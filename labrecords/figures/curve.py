@@ -38,9 +38,7 @@ def curve_figure(
         y=plot.axis(READINGS.get(quantity, quantity)),
         columns=("Volume, mL", READINGS.get(quantity, quantity)),
         rows=[(writing.reading(v), writing.reading(r)) for v, r in zip(volume, reading, strict=True)],
-        yaxis2=plot.axis(
-            "Change per mL", overlaying="y", side="right", showgrid=False, tickmode="auto", nticks=6
-        ),
+        yaxis2=plot.axis("Change per mL", overlaying="y", side="right", showgrid=False, tickmode="auto", nticks=6),
         shapes=_lines(endpoint),
     )
 

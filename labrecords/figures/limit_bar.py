@@ -16,9 +16,7 @@ MIDDLE = (TOP + FOOT) / 2
 COLOUR = {"conforms": "ink", "inconclusive": "amber", "does_not_conform": "magenta"}
 
 
-def limit_bar(
-    output: Mapping[str, Any], *, places: int, width: int | None = None, compact: bool = False
-) -> SafeString:
+def limit_bar(output: Mapping[str, Any], *, places: int, width: int | None = None, compact: bool = False) -> SafeString:
     """The result of ``compute``'s output against its specification; empty where there is none."""
     verdict = output["verdict"]
     if verdict is None or output["value"] is None:
@@ -135,9 +133,7 @@ def _description(output: Mapping[str, Any], *, places: int) -> str:
     verdict = output["verdict"]
     bounds = (("lower", verdict["lower"]), ("upper", verdict["upper"]))
     limits = [
-        f"{name} limit {writing.places(bound, digits=places)}"
-        for name, bound in bounds
-        if bound not in (None, "")
+        f"{name} limit {writing.places(bound, digits=places)}" for name, bound in bounds if bound not in (None, "")
     ]
     words = writing.result(output["value"], expanded=output["U"], unit=output["unit"])
     return f"{words}; {', '.join(limits)}. {verdict['sentence']}"

@@ -32,9 +32,7 @@ def residual_figure(residuals: Sequence[float], *, volume: Sequence[float | str]
         "line": {"color": plot.TEAL, "width": 1.5},
     }
     name = f"Residual, {quantity}"
-    rows = [
-        (writing.reading(v), writing.significant(r, figures=3)) for v, r in zip(x, residuals, strict=True)
-    ]
+    rows = [(writing.reading(v), writing.significant(r, figures=3)) for v, r in zip(x, residuals, strict=True)]
     return plot.figure(
         [points],
         x=plot.axis("Volume of titrant, mL"),

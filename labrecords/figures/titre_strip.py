@@ -62,9 +62,7 @@ def _scale(shown: Sequence[Mapping[str, Any]], *, limit: float | None) -> tuple[
     return low, high
 
 
-def _bracket(
-    counted: Sequence[float], *, limit: float | None, limit_kind: str, low: float, high: float
-) -> list[str]:
+def _bracket(counted: Sequence[float], *, limit: float | None, limit_kind: str, low: float, high: float) -> list[str]:
     """The window the titres must lie in, around those that count, and how far apart they are."""
     if not counted:
         return []

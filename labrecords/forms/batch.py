@@ -9,9 +9,21 @@ from django import forms
 from django.utils import timezone
 
 from labrecords.forms.fields import CountField, DayField, NumberField
-from labrecords.models import Batch, BatchState, ControlSample, Method, MethodVersion, Product, Substance, Titrant
+from labrecords.models import (
+    Batch,
+    BatchState,
+    ControlSample,
+    Method,
+    MethodVersion,
+    Product,
+    Substance,
+    Titrant,
+)
 
-FAMILIES = [("", "none"), *((name, name) for name in ("model", "gran", "derivative", "parabola", "polynomial", "segments", "fixed"))]
+FAMILIES = [
+    ("", "none"),
+    *((name, name) for name in ("model", "gran", "derivative", "parabola", "polynomial", "segments", "fixed")),
+]
 
 
 class BatchForm(forms.Form):
@@ -32,10 +44,13 @@ class SampleForm(forms.Form):
         required=False,
     )  # fmt: skip
     control_sample = forms.ModelChoiceField(
-        queryset=ControlSample.objects.filter(withdrawn_reason=""), label="or from the control sample", required=False
+        queryset=ControlSample.objects.filter(withdrawn_reason=""),
+        label="or from the control sample",
+        required=False,
     )
     drawn_at = forms.CharField(
-        label="Drawn at", widget=forms.DateTimeInput(attrs={"type": "datetime-local"}, format="%Y-%m-%dT%H:%M")
+        label="Drawn at",
+        widget=forms.DateTimeInput(attrs={"type": "datetime-local"}, format="%Y-%m-%dT%H:%M"),
     )
     drawn_by = forms.CharField(max_length=120, label="Drawn by")
     place = forms.CharField(max_length=120, label="Where", required=False)
@@ -64,11 +79,17 @@ class VersionForm(forms.Form):
 
     reason = forms.CharField(max_length=500, label="Why this version is made")
     titrant = forms.ModelChoiceField(queryset=Titrant.objects.filter(superseded_by=None), label="Titrant")
-    expressed_as = forms.ModelChoiceField(queryset=Substance.objects.filter(superseded_by=None), label="Result expressed as")
+    expressed_as = forms.ModelChoiceField(
+        queryset=Substance.objects.filter(superseded_by=None), label="Result expressed as"
+    )
     titration = forms.ChoiceField(choices=MethodVersion._meta.get_field("titration").choices, label="Titration")
-    ratio = forms.CharField(max_length=12, label="Ratio", help_text="mol of that substance per mol of titrant: 1, 2 or 1/2")
+    ratio = forms.CharField(
+        max_length=12, label="Ratio", help_text="mol of that substance per mol of titrant: 1, 2 or 1/2"
+    )
     excess_titrant = forms.ModelChoiceField(
-        queryset=Titrant.objects.filter(superseded_by=None), label="Excess solution (back titration)", required=False
+        queryset=Titrant.objects.filter(superseded_by=None),
+        label="Excess solution (back titration)",
+        required=False,
     )
     excess_volume = NumberField(label="Its volume, mL", required=False)
     sample_by = forms.ChoiceField(choices=[("volume", "volume, mL"), ("mass", "mass, g")], label="Sample by")
@@ -82,7 +103,9 @@ class VersionForm(forms.Form):
     indicator_bias = NumberField(label="Indicator past equivalence, mL", required=False)
     indicator_u = NumberField(label="Its standard uncertainty, mL", required=False)
     curve_quantity = forms.ChoiceField(
-        choices=[("", "none"), *MethodVersion._meta.get_field("curve_quantity").choices], label="Curve of", required=False
+        choices=[("", "none"), *MethodVersion._meta.get_field("curve_quantity").choices],
+        label="Curve of",
+        required=False,
     )
     deciding_family = forms.ChoiceField(choices=FAMILIES, label="Deciding family", required=False)
     checking_family = forms.ChoiceField(choices=FAMILIES, label="Checking family", required=False)
@@ -90,9 +113,13 @@ class VersionForm(forms.Form):
     endpoints_expected = CountField(label="Endpoints expected", initial="1")
     endpoint_chosen = CountField(label="The one that counts", initial="1")
     system = forms.JSONField(
-        label="Chemistry for the model", required=False,
-        help_text='such as {"kind": "acid_base", "titrant": "base", "analytes": [{"name": "acetic acid", "pKa": [4.756], "charge": 0}]}',
-    )  # fmt: skip
+        label="Chemistry for the model",
+        required=False,
+        help_text=(
+            'such as {"kind": "acid_base", "titrant": "base", '
+            '"analytes": [{"name": "acetic acid", "pKa": [4.756], "charge": 0}]}'
+        ),
+    )
     initial_volume = NumberField(label="Volume in the vessel at the start, mL", required=False)
     blanks_needed = CountField(label="Blanks needed", initial="0")
     replicates_needed = CountField(label="Replicates needed", initial="3")
@@ -104,7 +131,9 @@ class VersionForm(forms.Form):
     places = CountField(label="Decimals")
     basis = forms.ChoiceField(choices=MethodVersion._meta.get_field("basis").choices, label="Basis")
     coverage = forms.ChoiceField(choices=MethodVersion._meta.get_field("coverage").choices, label="Coverage factor")
-    instructions = forms.CharField(label="How the method goes", required=False, widget=forms.Textarea(attrs={"rows": 5}))
+    instructions = forms.CharField(
+        label="How the method goes", required=False, widget=forms.Textarea(attrs={"rows": 5})
+    )
 
     def clean_dilutions(self) -> list[dict[str, str]]:
         """Steps as flask and aliquot."""
@@ -114,7 +143,9 @@ class VersionForm(forms.Form):
             if not parts:
                 continue
             if len(parts) != 2 or not all(part.replace(".", "", 1).isdigit() for part in parts):
-                raise forms.ValidationError(f"Dilution {place} is {line!r}; flask and aliquot in mL are expected, such as 100 20.")
+                raise forms.ValidationError(
+                    f"Dilution {place} is {line!r}; flask and aliquot in mL are expected, such as 100 20."
+                )
             steps.append({"flask": parts[0], "aliquot": parts[1]})
         return steps
 

@@ -25,9 +25,7 @@ class TextField(forms.CharField):
     def run_validators(self, value: Any) -> None:
         """The framework's checks, with the length in a sentence of our own."""
         if self.max_length is not None and len(value) > self.max_length:
-            raise forms.ValidationError(
-                f"{self.label} has {len(value)} characters; up to {self.max_length} are kept."
-            )
+            raise forms.ValidationError(f"{self.label} has {len(value)} characters; up to {self.max_length} are kept.")
         super().run_validators(value)
 
 
@@ -107,9 +105,7 @@ class DayField(forms.CharField):
     def __init__(self, **options: Any) -> None:
         options.setdefault("widget", forms.DateInput(attrs={"type": "date"}, format="%Y-%m-%d"))
         super().__init__(**options)
-        self.error_messages["required"] = (
-            f"{self.label}: no day is typed; a day such as 24 Nov 2026 is expected."
-        )
+        self.error_messages["required"] = f"{self.label}: no day is typed; a day such as 24 Nov 2026 is expected."
 
     def clean(self, value: Any) -> date | None:
         """The day, or ValidationError with the sentence."""
@@ -141,9 +137,7 @@ class CountField(forms.CharField):
         if not text:
             return None
         if not text.isascii() or not text.isdigit():
-            raise forms.ValidationError(
-                f"{self.label} is {shown(text)}; a whole number from 0 on is expected."
-            )
+            raise forms.ValidationError(f"{self.label} is {shown(text)}; a whole number from 0 on is expected.")
         return int(text)
 
 

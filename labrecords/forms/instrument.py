@@ -44,9 +44,7 @@ class CalibrationForm(forms.Form):
     )  # fmt: skip
     slope_percent = NumberField(label="Electrode slope, %", required=False)
     remarks = TextField(max_length=2000, label="Remarks", required=False)
-    certificate = CertificateField(
-        label="Certificate", required=False, help_text="PDF, PNG or JPEG up to 5 MB"
-    )
+    certificate = CertificateField(label="Certificate", required=False, help_text="PDF, PNG or JPEG up to 5 MB")
 
     def clean_corrections(self) -> list[tuple[str, ...]]:
         """The table as typed, line by line; a decimal comma is taken as a point."""

@@ -23,7 +23,12 @@ class ConclusionForm(forms.Form):
 
     conclusion = forms.ChoiceField(choices=Conclusion.choices, label="Conclusion", required=False)
     cause = forms.CharField(max_length=2000, label="Assignable cause, if one was found", required=False)
-    text = forms.CharField(max_length=4000, label="What was found, in sentences", widget=forms.Textarea(attrs={"rows": 3}), required=False)
+    text = forms.CharField(
+        max_length=4000,
+        label="What was found, in sentences",
+        widget=forms.Textarea(attrs={"rows": 3}),
+        required=False,
+    )
 
 
 def typed_checklist(data: Mapping[str, str]) -> dict[str, dict[str, str]]:

@@ -19,9 +19,15 @@ def typed_components(data: object) -> tuple[str, str, str]:
     """Name, password and reason of a signing; Refused naming what is empty."""
     form = SigningForm(data)  # type: ignore[arg-type]
     if not form.is_valid():
-        raise Refused([f"{form.fields[name].label}: {error}" for name, errors in form.errors.items() for error in errors])
+        raise Refused(
+            [f"{form.fields[name].label}: {error}" for name, errors in form.errors.items() for error in errors]
+        )
     clean = form.cleaned_data
-    empty = [f"{form.fields[name].label} is empty. Both are typed at every signing." for name in ("username", "password") if not clean[name]]
+    empty = [
+        f"{form.fields[name].label} is empty. Both are typed at every signing."
+        for name in ("username", "password")
+        if not clean[name]
+    ]
     if empty:
         raise Refused(empty)
     return clean["username"], clean["password"], clean["reason"].strip()

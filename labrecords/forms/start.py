@@ -31,11 +31,13 @@ class StartForm(forms.Form):
             self.fields[name] = _choice(name, [(lot.number, f"{lot.number}, {lot.titrant.name}") for lot in choices])
         if needs_standard:
             self.fields["reference standard"] = _choice(
-                "reference standard", [(item.number, f"{item.number}, {item.substance.name}") for item in standards]
+                "reference standard",
+                [(item.number, f"{item.number}, {item.substance.name}") for item in standards],
             )
         for part in parts:
             self.fields[part] = _choice(
-                part, [(item.identifier, f"{item.identifier}, {item.description}") for item in instruments[part]]
+                part,
+                [(item.identifier, f"{item.identifier}, {item.description}") for item in instruments[part]],
             )
         self._instruments = {item.identifier: item for items in instruments.values() for item in items}
         self._lots = {lot.number: lot for items in lots.values() for lot in items}

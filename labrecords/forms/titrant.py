@@ -26,9 +26,7 @@ class TitrantForm(forms.Form):
     standard_titrant = RecordField(
         Titrant.objects.filter(superseded_by=None), label="or against the titrant", required=False
     )
-    ratio = TextField(
-        max_length=12, label="Ratio", help_text="mol of titrant per mol of standard: 1, 2 or 1/2"
-    )
+    ratio = TextField(max_length=12, label="Ratio", help_text="mol of titrant per mol of standard: 1, 2 or 1/2")
     aliquot = NumberField(label="Aliquot of the other titrant, mL", required=False)
     standard_mass = NumberField(label="Mass of the standard usually weighed, g", required=False)
     indicator = TextField(max_length=120, label="Indicator and colour change", required=False)
@@ -55,6 +53,4 @@ class LotForm(forms.Form):
     )
     reagent_lot = TextField(max_length=80, label="Reagent lot")
     volume = NumberField(label="Volume prepared, mL")
-    expires_on = DayField(
-        label="Expires on", required=False, help_text="left empty: the titrant's shelf life"
-    )
+    expires_on = DayField(label="Expires on", required=False, help_text="left empty: the titrant's shelf life")

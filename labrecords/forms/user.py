@@ -24,9 +24,7 @@ class SignInForm(forms.Form):
 class AccountForm(forms.Form):
     """A new account."""
 
-    username = TextField(
-        max_length=40, label="Name for signing in", help_text="small letters, digits, dots or hyphens"
-    )
+    username = TextField(max_length=40, label="Name for signing in", help_text="small letters, digits, dots or hyphens")
     full_name = TextField(max_length=120, label="Full name", help_text="printed beside every signature")
     roles = SomeOfField(choices=Role.choices, label="Roles")
     password = TextField(

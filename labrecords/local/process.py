@@ -38,9 +38,7 @@ def unprivileged() -> dict[str, Any]:
         except KeyError:
             continue
         return {"user": entry.pw_uid, "group": entry.pw_gid, "extra_groups": []}
-    raise RuntimeError(
-        "This is root, and there is no account postgres or nobody to run PostgreSQL as. Add one."
-    )
+    raise RuntimeError("This is root, and there is no account postgres or nobody to run PostgreSQL as. Add one.")
 
 
 def cluster_dir(data_dir: Path) -> Path:

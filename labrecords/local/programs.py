@@ -36,9 +36,7 @@ def manage(*arguments: str, env: Environment, stopping: Callable[[], bool]) -> N
         with contextlib.suppress(subprocess.TimeoutExpired):
             process.wait(0.1)
     if process.returncode:
-        raise RuntimeError(
-            f"manage.py {arguments[0]} ended with {process.returncode}; what it said stands above."
-        )
+        raise RuntimeError(f"manage.py {arguments[0]} ended with {process.returncode}; what it said stands above.")
 
 
 def commands(data: Path, *, port: int) -> dict[str, list[str]]:

@@ -25,7 +25,11 @@ class AuditEvent(models.Model):
 
     class Meta:
         ordering = ["id"]
-        indexes = [models.Index(fields=["action"]), models.Index(fields=["actor"]), models.Index(fields=["subject"])]
+        indexes = [
+            models.Index(fields=["action"]),
+            models.Index(fields=["actor"]),
+            models.Index(fields=["subject"]),
+        ]
         constraints = [
             models.CheckConstraint(condition=~models.Q(actor_name=""), name="audit_event_has_an_actor"),
             models.CheckConstraint(condition=~models.Q(action=""), name="audit_event_has_an_action"),

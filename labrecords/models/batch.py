@@ -59,7 +59,8 @@ class Sample(models.Model):
         ordering = ["-drawn_at", "-id"]
         constraints = [
             models.CheckConstraint(
-                condition=Q(batch__isnull=True) ^ Q(control_sample__isnull=True), name="sample_from_one_source"
+                condition=Q(batch__isnull=True) ^ Q(control_sample__isnull=True),
+                name="sample_from_one_source",
             ),
         ]
 

@@ -35,7 +35,8 @@ class Calculation(models.Model):
         ordering = ["id"]
         constraints = [
             models.CheckConstraint(
-                condition=Q(run__isnull=True) ^ Q(standardization__isnull=True), name="calculation_of_one_record"
+                condition=Q(run__isnull=True) ^ Q(standardization__isnull=True),
+                name="calculation_of_one_record",
             ),
             models.UniqueConstraint(fields=["run", "number"], name="calculation_number_once_in_run"),
             models.UniqueConstraint(
@@ -54,9 +55,7 @@ class CalculationRequest(models.Model):
     """
 
     run = models.ForeignKey("Run", on_delete=models.PROTECT, null=True, related_name="requests")
-    standardization = models.ForeignKey(
-        "Standardization", on_delete=models.PROTECT, null=True, related_name="requests"
-    )
+    standardization = models.ForeignKey("Standardization", on_delete=models.PROTECT, null=True, related_name="requests")
     requested_by = models.ForeignKey(settings.AUTH_USER_MODEL, on_delete=models.PROTECT, related_name="+")
     requested_at = models.DateTimeField()
     state = models.CharField(max_length=8, choices=[("waiting", "waiting"), ("done", "done"), ("failed", "failed")])
@@ -71,11 +70,11 @@ class CalculationRequest(models.Model):
             models.CheckConstraint(
                 condition=Q(run__isnull=True) ^ Q(standardization__isnull=True), name="request_of_one_record"
             ),
+            models.UniqueConstraint(fields=["run"], condition=Q(state="waiting"), name="request_one_waiting_for_run"),
             models.UniqueConstraint(
-                fields=["run"], condition=Q(state="waiting"), name="request_one_waiting_for_run"
-            ),
-            models.UniqueConstraint(
-                fields=["standardization"], condition=Q(state="waiting"), name="request_one_waiting_for_standardization"
+                fields=["standardization"],
+                condition=Q(state="waiting"),
+                name="request_one_waiting_for_standardization",
             ),
         ]
 

@@ -21,7 +21,8 @@ class ControlChart(models.Model):
         ordering = ["code"]
         constraints = [
             models.CheckConstraint(
-                condition=Q(control_sample__isnull=True) ^ Q(titrant__isnull=True), name="control_chart_of_one_thing"
+                condition=Q(control_sample__isnull=True) ^ Q(titrant__isnull=True),
+                name="control_chart_of_one_thing",
             ),
         ]
 

@@ -87,7 +87,8 @@ class UsedInstrument(models.Model):
         ordering = ["id"]
         constraints = [
             models.CheckConstraint(
-                condition=Q(run__isnull=True) ^ Q(standardization__isnull=True), name="used_instrument_in_one_record"
+                condition=Q(run__isnull=True) ^ Q(standardization__isnull=True),
+                name="used_instrument_in_one_record",
             ),
             models.UniqueConstraint(fields=["run", "part"], name="used_instrument_one_per_part_of_run"),
             models.UniqueConstraint(

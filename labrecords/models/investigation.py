@@ -59,7 +59,11 @@ class Investigation(models.Model):
                 condition=~Q(state="phase 2")
                 | (
                     ~Q(plan="")
-                    & Q(retests_planned__gte=1, plan_authorised_by__isnull=False, plan_authorised_at__isnull=False)
+                    & Q(
+                        retests_planned__gte=1,
+                        plan_authorised_by__isnull=False,
+                        plan_authorised_at__isnull=False,
+                    )
                 ),
                 name="investigation_phase_2_has_a_plan",
             ),
@@ -87,7 +91,8 @@ class Question(models.Model):
         ordering = ["id"]
         constraints = [
             models.CheckConstraint(
-                condition=Q(run__isnull=True) ^ Q(standardization__isnull=True), name="question_about_one_record"
+                condition=Q(run__isnull=True) ^ Q(standardization__isnull=True),
+                name="question_about_one_record",
             ),
             models.CheckConstraint(
                 condition=Q(answered_at__isnull=True) | (~Q(answer="") & Q(answered_by__isnull=False)),

@@ -88,10 +88,14 @@ class MethodVersion(models.Model):
     unit = models.CharField(max_length=16)
     places = models.PositiveSmallIntegerField(help_text="decimals of the reported result")
     basis = models.CharField(
-        max_length=10, choices=[("as_is", "as is"), ("dried", "dried"), ("anhydrous", "anhydrous")], default="as_is"
+        max_length=10,
+        choices=[("as_is", "as is"), ("dried", "dried"), ("anhydrous", "anhydrous")],
+        default="as_is",
     )
     coverage = models.CharField(
-        max_length=10, choices=[("k2", "k = 2"), ("effective", "from the effective degrees of freedom")], default="k2"
+        max_length=10,
+        choices=[("k2", "k = 2"), ("effective", "from the effective degrees of freedom")],
+        default="k2",
     )
     instructions = models.TextField(blank=True)
 
@@ -104,7 +108,8 @@ class MethodVersion(models.Model):
             ),
             models.CheckConstraint(condition=Q(state__in=VersionState.values), name="method_version_state_known"),
             models.CheckConstraint(
-                condition=Q(state="draft") | Q(effective_from__isnull=False), name="method_version_effective_is_dated"
+                condition=Q(state="draft") | Q(effective_from__isnull=False),
+                name="method_version_effective_is_dated",
             ),
             models.CheckConstraint(
                 condition=~Q(titration="back") | Q(excess_titrant__isnull=False, excess_volume__gt=0),

@@ -40,7 +40,8 @@ class Specification(models.Model):
             ),
             models.CheckConstraint(condition=Q(state__in=VersionState.values), name="specification_state_known"),
             models.CheckConstraint(
-                condition=Q(state="draft") | Q(effective_from__isnull=False), name="specification_effective_is_dated"
+                condition=Q(state="draft") | Q(effective_from__isnull=False),
+                name="specification_effective_is_dated",
             ),
         ]
 
@@ -66,7 +67,8 @@ class SpecificationLimit(models.Model):
         constraints = [
             models.UniqueConstraint(fields=["specification", "method"], name="specification_limit_one_per_test"),
             models.CheckConstraint(
-                condition=Q(lower__isnull=False) | Q(upper__isnull=False), name="specification_limit_has_a_limit"
+                condition=Q(lower__isnull=False) | Q(upper__isnull=False),
+                name="specification_limit_has_a_limit",
             ),
             models.CheckConstraint(
                 condition=Q(lower__isnull=True) | Q(upper__isnull=True) | Q(lower__lt=F("upper")),

@@ -53,7 +53,8 @@ class Replicate(models.Model):
         ordering = ["kind", "number"]
         constraints = [
             models.CheckConstraint(
-                condition=Q(run__isnull=True) ^ Q(standardization__isnull=True), name="replicate_in_one_record"
+                condition=Q(run__isnull=True) ^ Q(standardization__isnull=True),
+                name="replicate_in_one_record",
             ),
             models.UniqueConstraint(fields=["run", "kind", "number"], name="replicate_number_once_in_run"),
             models.UniqueConstraint(
@@ -68,7 +69,9 @@ class Replicate(models.Model):
                 ),
                 name="replicate_excluded_with_cause_and_name",
             ),
-            models.CheckConstraint(condition=Q(amount__isnull=True) | Q(amount__gt=0), name="replicate_amount_positive"),
+            models.CheckConstraint(
+                condition=Q(amount__isnull=True) | Q(amount__gt=0), name="replicate_amount_positive"
+            ),
             models.CheckConstraint(
                 condition=Q(start__isnull=True) | Q(start__gte=0), name="replicate_start_not_negative"
             ),

@@ -32,7 +32,11 @@ class Run(models.Model):
     returned_reason = models.TextField(blank=True)
     void_reason = models.TextField(blank=True)
     calculation = models.ForeignKey(
-        "Calculation", on_delete=models.PROTECT, null=True, related_name="+", help_text="the one that was submitted"
+        "Calculation",
+        on_delete=models.PROTECT,
+        null=True,
+        related_name="+",
+        help_text="the one that was submitted",
     )
 
     class Meta:

@@ -38,7 +38,8 @@ class ReferenceStandard(models.Model):
             models.CheckConstraint(condition=Q(purity_k__gte=1), name="standard_purity_k_at_least_one"),
             models.CheckConstraint(condition=Q(state__in=LotState.values), name="standard_state_known"),
             models.CheckConstraint(
-                condition=~Q(state="withdrawn") | ~Q(withdrawn_reason=""), name="standard_withdrawn_with_a_reason"
+                condition=~Q(state="withdrawn") | ~Q(withdrawn_reason=""),
+                name="standard_withdrawn_with_a_reason",
             ),
             models.CheckConstraint(
                 condition=Q(state="quarantined") | Q(state="withdrawn") | Q(certificate__isnull=False),

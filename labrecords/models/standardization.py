@@ -39,7 +39,11 @@ class Standardization(models.Model):
     returned_reason = models.TextField(blank=True)
     void_reason = models.TextField(blank=True)
     calculation = models.ForeignKey(
-        "Calculation", on_delete=models.PROTECT, null=True, related_name="+", help_text="the one that was submitted"
+        "Calculation",
+        on_delete=models.PROTECT,
+        null=True,
+        related_name="+",
+        help_text="the one that was submitted",
     )
     in_force_from = models.DateTimeField(null=True)
     in_force_until = models.DateField(null=True)

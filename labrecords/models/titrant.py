@@ -24,7 +24,10 @@ class Titrant(models.Model):
     standard_titrant = models.ForeignKey("self", on_delete=models.PROTECT, null=True, related_name="standardizes")
     ratio = models.CharField(max_length=12, help_text="mol of titrant per mol of standard, 1 or 1/2 or 2")
     aliquot = models.DecimalField(
-        max_digits=10, decimal_places=4, null=True, help_text="mL of the standardized titrant that is pipetted"
+        max_digits=10,
+        decimal_places=4,
+        null=True,
+        help_text="mL of the standardized titrant that is pipetted",
     )
     standard_mass = models.DecimalField(
         max_digits=10, decimal_places=5, null=True, help_text="g of the standard usually weighed"
@@ -37,7 +40,9 @@ class Titrant(models.Model):
     limit = models.DecimalField(max_digits=8, decimal_places=4)
     limit_kind = models.CharField(max_length=12, choices=[("range_mL", "range, mL"), ("rsd_percent", "RSD, %")])
     coverage = models.CharField(
-        max_length=10, choices=[("k2", "k = 2"), ("effective", "from the effective degrees of freedom")], default="k2"
+        max_length=10,
+        choices=[("k2", "k = 2"), ("effective", "from the effective degrees of freedom")],
+        default="k2",
     )
     superseded_by = models.ForeignKey("self", on_delete=models.PROTECT, null=True, related_name="supersedes")
 
@@ -83,7 +88,8 @@ class TitrantLot(models.Model):
             models.CheckConstraint(condition=Q(expires_on__gte=F("prepared_on")), name="titrant_lot_dates_in_order"),
             models.CheckConstraint(condition=Q(state__in=LotState.values), name="titrant_lot_state_known"),
             models.CheckConstraint(
-                condition=~Q(state="withdrawn") | ~Q(withdrawn_reason=""), name="titrant_lot_withdrawn_with_a_reason"
+                condition=~Q(state="withdrawn") | ~Q(withdrawn_reason=""),
+                name="titrant_lot_withdrawn_with_a_reason",
             ),
         ]
 

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import ClassVar
+
 from django.contrib.auth.base_user import AbstractBaseUser, BaseUserManager
 from django.contrib.auth.hashers import check_password
 from django.contrib.postgres.fields import ArrayField
@@ -27,7 +29,7 @@ class User(AbstractBaseUser):
     objects = BaseUserManager()
 
     USERNAME_FIELD = "username"
-    REQUIRED_FIELDS: list[str] = []
+    REQUIRED_FIELDS: ClassVar[list[str]] = []
 
     class Meta:
         ordering = ["full_name"]
@@ -39,7 +41,7 @@ class User(AbstractBaseUser):
     def __str__(self) -> str:
         return self.full_name
 
-    def check_password(self, raw_password: str) -> bool:
+    def check_password(self, raw_password: str | None) -> bool:
         """Whether a password is the person's; unlike the framework's own, it never rewrites the stored hash."""
         return check_password(raw_password, self.password)
 

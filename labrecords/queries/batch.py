@@ -10,7 +10,17 @@ from typing import Any
 
 from django.db.models import Count, Prefetch, Q, QuerySet
 
-from labrecords.models import Batch, Conclusion, Investigation, InvestigationState, Question, RecordState, Run, Sample, SpecificationLimit
+from labrecords.models import (
+    Batch,
+    Conclusion,
+    Investigation,
+    InvestigationState,
+    Question,
+    RecordState,
+    Run,
+    Sample,
+    SpecificationLimit,
+)
 from labrecords.models.batch import BatchState
 
 
@@ -34,9 +44,11 @@ class RequiredTest:
 
 def batches() -> QuerySet[Batch]:
     """All batches with what a list shows, newest first."""
-    return Batch.objects.select_related("product", "specification", "disposed_by").annotate(
-        sample_count=Count("samples", distinct=True)
-    ).order_by("-made_on", "-id")
+    return (
+        Batch.objects.select_related("product", "specification", "disposed_by")
+        .annotate(sample_count=Count("samples", distinct=True))
+        .order_by("-made_on", "-id")
+    )
 
 
 def samples() -> QuerySet[Sample]:
@@ -71,7 +83,11 @@ def runs_of_batch(batch: Batch) -> QuerySet[Run]:
         Run.objects.filter(sample__batch=batch)
         .select_related("sample", "method_version__method", "standardization__lot", "calculation", "retest_for")
         .prefetch_related(
-            Prefetch("questions", queryset=Question.objects.filter(answered_at__isnull=True), to_attr="open_questions"),
+            Prefetch(
+                "questions",
+                queryset=Question.objects.filter(answered_at__isnull=True),
+                to_attr="open_questions",
+            ),
             Prefetch(
                 "investigations",
                 queryset=Investigation.objects.exclude(state=InvestigationState.CLOSED),
@@ -98,12 +114,17 @@ def _required_test(limit: SpecificationLimit, runs: list[Run]) -> RequiredTest:
         ("open", [run for run in live if run.state == RecordState.OPEN]),
         ("submitted", [run for run in live if run.state == RecordState.SUBMITTED]),
         ("in question", [run for run in live if run.open_questions]),  # type: ignore[attr-defined]
-        ("out of limits", [run for run in live if _outcome(run) == "does_not_conform" and not run.not_confirmed]),  # type: ignore[attr-defined]
+        ("out of limits", [run for run in live if _is_outside(run)]),
         ("inconclusive", [run for run in live if _outcome(run) == "inconclusive"]),
     ):
         if chosen:
             return RequiredTest(limit=limit, runs=runs, status=status, run=chosen[-1])
     return RequiredTest(limit=limit, runs=runs, status="approved", run=live[-1])
+
+
+def _is_outside(run: Run) -> bool:
+    """Out of limits, unless an investigation's planned retests did not confirm it."""
+    return _outcome(run) == "does_not_conform" and not run.not_confirmed  # type: ignore[attr-defined]
 
 
 def _outcome(run: Run) -> str:

@@ -10,7 +10,15 @@ from django.db.models import OuterRef, Q, QuerySet, Subquery
 from django.utils import timezone
 
 from labrecords.models import (
-    InstrumentCalibration, LotState, MethodVersion, RecordState, Run, Sample, Standardization, TitrantLot, User,
+    InstrumentCalibration,
+    LotState,
+    MethodVersion,
+    RecordState,
+    Run,
+    Sample,
+    Standardization,
+    TitrantLot,
+    User,
 )  # fmt: skip
 from labrecords.models.instrument import Instrument
 
@@ -62,9 +70,7 @@ def lots_in_use(*, at: datetime) -> list[LotInUse]:
         .annotate(held_id=Subquery(held.values("pk")[:1]))
         .order_by("titrant__code", "number")
     )
-    by_id = Standardization.objects.select_related("calculation").in_bulk(
-        [lot.held_id for lot in lots if lot.held_id]
-    )
+    by_id = Standardization.objects.select_related("calculation").in_bulk([lot.held_id for lot in lots if lot.held_id])
     return [_lot_in_use(lot, by_id.get(lot.held_id), day=day) for lot in lots]
 
 

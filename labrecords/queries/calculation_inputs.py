@@ -2,14 +2,23 @@
 
 from __future__ import annotations
 
-from decimal import Decimal
 from typing import Any
 
 import analysis
 from labrecords.models import (
-    Basis, Calculation, Instrument, InstrumentCalibration, InstrumentKind, Replicate, ReplicateKind, Run,
-    Standardization, Substance, UsedInstrument,
+    Basis,
+    Calculation,
+    Instrument,
+    InstrumentCalibration,
+    InstrumentKind,
+    Replicate,
+    ReplicateKind,
+    Run,
+    Standardization,
+    Substance,
+    UsedInstrument,
 )  # fmt: skip
+from labrecords.queries.method_inputs import as_text, run_method, standardization_method
 from labrecords.queries.replicate import instruments_of, replicates_of
 
 SQRT_6 = 6**0.5
@@ -55,48 +64,6 @@ def inputs_for_standardization(standardization: Standardization) -> dict[str, An
     if by_mass:
         inputs["balance"] = _balance(used["balance"])
     return inputs
-
-
-def run_method(run: Run) -> dict[str, Any]:
-    """The method part of a run's inputs."""
-    version = run.method_version
-    return {
-        "titration": version.titration,
-        "ratio": version.ratio,
-        "quantity": version.quantity,
-        "unit": version.unit,
-        "basis": version.basis,
-        "loss_percent": _text(run.loss_percent),
-        "loss_u": None,
-        "policy": version.policy,
-        "limit": str(version.limit),
-        "limit_kind": version.limit_kind,
-        "replicates_needed": version.replicates_needed,
-        "places": version.places,
-        "coverage": version.coverage,
-        "indicator_bias_mL": str(version.indicator_bias) if version.endpoint == "indicator" else None,
-        "indicator_u_mL": str(version.indicator_u) if version.endpoint == "indicator" else None,
-        "curve": _curve_settings(run),
-        "equivalent_formula": version.expressed_as.formula if version.quantity == "titrant_equivalent" else None,
-    }
-
-
-def standardization_method(standardization: Standardization) -> dict[str, Any]:
-    """The method part of a standardization's inputs, from the titrant's rule."""
-    titrant = standardization.lot.titrant
-    return {
-        "titration": "direct",
-        "ratio": titrant.ratio,
-        "policy": titrant.policy,
-        "limit": str(titrant.limit),
-        "limit_kind": titrant.limit_kind,
-        "replicates_needed": titrant.replicates_needed,
-        "places": 5,
-        "coverage": titrant.coverage,
-        "indicator_bias_mL": str(titrant.indicator_bias),
-        "indicator_u_mL": str(titrant.indicator_u),
-        "curve": None,
-    }
 
 
 def titrant_inputs(standardization: Standardization) -> dict[str, Any]:
@@ -228,7 +195,7 @@ def _standard(standardization: Standardization) -> dict[str, Any]:
         "molar_mass_u": repr(standard.substance.molar_mass_u),
         "purity": str(standard.purity),
         "purity_u": str(standard.purity_expanded / standard.purity_k),
-        "buoyancy_density": _text(standard.substance.density),
+        "buoyancy_density": as_text(standard.substance.density),
     }
 
 
@@ -244,33 +211,12 @@ def _titration(item: Replicate) -> dict[str, Any]:
     curve = item.curve
     return {
         "number": item.number,
-        "amount": _text(item.amount),
-        "start": _text(item.start),
-        "end": _text(item.end),
-        "temperature": _text(item.temperature),
+        "amount": as_text(item.amount),
+        "start": as_text(item.start),
+        "end": as_text(item.end),
+        "temperature": as_text(item.temperature),
         "curve": {"volume": curve.volumes, "reading": curve.readings} if curve else None,
         "excluded": item.is_excluded,
-    }
-
-
-def _curve_settings(run: Run) -> dict[str, Any] | None:
-    version = run.method_version
-    if version.endpoint != "curve":
-        return None
-    system = dict(version.system) if version.system else None
-    if system is not None:
-        calculation = run.standardization.calculation
-        system["titrant_concentration"] = calculation.value if calculation else float(version.titrant.nominal)
-        system["sample_volume"] = float(version.initial_volume or 50)
-    return {
-        "quantity": version.curve_quantity,
-        "deciding": version.deciding_family,
-        "checking": version.checking_family or None,
-        "fixed_reading": _text(version.fixed_reading),
-        "expected": version.endpoints_expected,
-        "chosen": version.endpoint_chosen,
-        "agreement_limit": str(version.agreement_limit),
-        "system": system,
     }
 
 
@@ -279,8 +225,8 @@ def _specification(run: Run) -> dict[str, Any] | None:
     if limit is None:
         return None
     return {
-        "lower": _text(limit.lower),
-        "upper": _text(limit.upper),
+        "lower": as_text(limit.lower),
+        "upper": as_text(limit.upper),
         "places": limit.places,
         "rounding": limit.rounding,
         "rule": limit.rule,
@@ -290,7 +236,3 @@ def _specification(run: Run) -> dict[str, Any] | None:
 
 def _key(used: UsedInstrument) -> str:
     return f"{used.instrument.kind}:{used.instrument.identifier}"
-
-
-def _text(value: Decimal | None) -> str | None:
-    return None if value is None else str(value)

@@ -48,9 +48,7 @@ def effective_limits(chart: ControlChart) -> ControlLimits | None:
 
 def versions_of(chart: ControlChart) -> list[ControlLimits]:
     """Every version of a chart's limits that was in force, the first one first."""
-    return sorted(
-        (limits for limits in chart.limits.all() if limits.effective_from), key=lambda limits: limits.number
-    )
+    return sorted((limits for limits in chart.limits.all() if limits.effective_from), key=lambda limits: limits.number)
 
 
 def points_of(chart: ControlChart) -> list[ChartPoint]:
@@ -65,15 +63,12 @@ def points_of(chart: ControlChart) -> list[ChartPoint]:
         ordered = of_sample.select_related("run__sample").order_by("run__started_at", "run_id")
         return [_run_point(row) for row in ordered]
     of_titrant = rows.filter(
-        standardization__lot__titrant_id=chart.titrant_id,
+        standardization__lot__titrant=chart.titrant,
         standardization__state=RecordState.APPROVED,
         standardization__calculation_id=F("pk"),
     )
     begun = of_titrant.select_related("standardization__lot")
-    return [
-        _standardization_point(row)
-        for row in begun.order_by("standardization__started_at", "standardization_id")
-    ]
+    return [_standardization_point(row) for row in begun.order_by("standardization__started_at", "standardization_id")]
 
 
 def limits_from_baseline(
@@ -85,16 +80,12 @@ def limits_from_baseline(
     """
     chosen = [point for point in points if point.calculation_id in set(baseline)]
     left_out = {
-        place: excluded[point.calculation_id]
-        for place, point in enumerate(chosen)
-        if point.calculation_id in excluded
+        place: excluded[point.calculation_id] for place, point in enumerate(chosen) if point.calculation_id in excluded
     }
     return individuals_limits([point.value for point in chosen], excluded=left_out)
 
 
-def limits_at_points(
-    points: Sequence[ChartPoint], versions: Sequence[ControlLimits]
-) -> list[ControlLimits | None]:
+def limits_at_points(points: Sequence[ChartPoint], versions: Sequence[ControlLimits]) -> list[ControlLimits | None]:
     """The limits that judge each point: those in force when it was begun, before the first ones the first."""
     return [_limits_at(point.at, versions) for point in points]
 

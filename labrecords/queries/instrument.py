@@ -31,9 +31,9 @@ def instruments_for_parts(
         instrument=OuterRef("pk"), calibrated_on__lte=day, due_on__gte=day, withdrawn_at__isnull=True
     )
     usable = list(
-        Instrument.objects.filter(
-            Exists(holds), withdrawn_at__isnull=True, superseded_by__isnull=True
-        ).order_by("identifier")
+        Instrument.objects.filter(Exists(holds), withdrawn_at__isnull=True, superseded_by__isnull=True).order_by(
+            "identifier"
+        )
     )
     return {
         part: [item for item in usable if item.kind == kinds[part] and volume in (None, item.capacity)]
@@ -49,6 +49,4 @@ def calibrations_of(instrument: Instrument) -> list[InstrumentCalibration]:
 
 def records_using(instrument: Instrument, *, most: int = 20) -> list[UsedInstrument]:
     """The last runs and standardizations an instrument had a part in."""
-    return list(
-        instrument.uses.select_related("run", "standardization", "calibration").order_by("-id")[:most]
-    )
+    return list(instrument.uses.select_related("run", "standardization", "calibration").order_by("-id")[:most])

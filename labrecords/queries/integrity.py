@@ -87,7 +87,8 @@ def records_unlike_signatures() -> Iterator[str]:
             .values_list("record_id", "content")
         )
         for record in model.objects.filter(state=RecordState.APPROVED).iterator(chunk_size=500):
-            if record.pk in signed and canonical_json(content(record)) != signed[record.pk]:
+            now = canonical_json(content(record))  # type: ignore[arg-type]
+            if record.pk in signed and now != signed[record.pk]:
                 yield f"{record.number} is not what its reviewer signed."
 
 
@@ -105,9 +106,7 @@ def missing_numbers() -> Iterator[str]:
     for series in NumberSeries.objects.filter(series__in=SERIES):
         prefix = f"{series.series}-{series.year % 100:02d}-"
         with connection.cursor() as cursor:
-            cursor.execute(
-                f"SELECT count(*) FROM {SERIES[series.series]} WHERE number LIKE %s", [f"{prefix}%"]
-            )
+            cursor.execute(f"SELECT count(*) FROM {SERIES[series.series]} WHERE number LIKE %s", [f"{prefix}%"])
             (count,) = cursor.fetchone()
         if count != series.last:
             yield f"Series {prefix} gave {series.last} numbers and {count} records have one."

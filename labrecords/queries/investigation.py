@@ -12,7 +12,11 @@ from labrecords.models import Investigation, InvestigationState, Sample
 def investigations() -> QuerySet[Investigation]:
     """All investigations with what a list shows, newest first."""
     return Investigation.objects.select_related(
-        "run__sample__batch__product", "run__method_version__method", "calculation", "closed_by", "plan_authorised_by"
+        "run__sample__batch__product",
+        "run__method_version__method",
+        "calculation",
+        "closed_by",
+        "plan_authorised_by",
     )
 
 

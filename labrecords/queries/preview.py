@@ -39,4 +39,11 @@ def preview(record: Record, *, typed: Mapping[tuple[int, str], str | None]) -> d
     try:
         return compute(json.loads(canonical_json(inputs)))
     except ValueError as error:
-        return {"titrations": [], "value": None, "reasons": [str(error)], "flags": [], "verdict": None, "problem": True}
+        return {
+            "titrations": [],
+            "value": None,
+            "reasons": [str(error)],
+            "flags": [],
+            "verdict": None,
+            "problem": True,
+        }

@@ -42,9 +42,7 @@ def containing(found: QuerySet[Any], q: str, *places: str) -> QuerySet[Any]:
 
 def substances(*, q: str = "") -> QuerySet[Substance]:
     """Substances by name."""
-    return containing(
-        Substance.objects.select_related("superseded_by").order_by("name"), q, "name", "formula"
-    )
+    return containing(Substance.objects.select_related("superseded_by").order_by("name"), q, "name", "formula")
 
 
 def instruments(*, day: date, q: str = "", kind: str = "") -> QuerySet[Instrument]:

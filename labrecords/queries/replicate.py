@@ -52,6 +52,10 @@ def replicates_as_signed(record: Record) -> list[dict[str, Any]]:
 def used_instruments_as_signed(record: Record) -> list[dict[str, Any]]:
     """The instruments with the calibration day that held."""
     return [
-        {"part": part, "instrument": used.instrument.identifier, "calibrated_on": used.calibration.calibrated_on}
+        {
+            "part": part,
+            "instrument": used.instrument.identifier,
+            "calibrated_on": used.calibration.calibrated_on,
+        }
         for part, used in sorted(instruments_of(record).items())
     ]

@@ -31,14 +31,19 @@ def runs_found(*, q: str = "", state: str = "") -> QuerySet[Run]:
         found = found.filter(state=state)
     if not q:
         return found
-    places = ("number", "sample__number", "sample__batch__number", "sample__batch__product__name",
-              "standardization__lot__number", "method_version__method__code", "method_version__method__title")  # fmt: skip
+    places = (
+        "number",
+        "sample__number",
+        "sample__batch__number",
+        "sample__batch__product__name",
+        "standardization__lot__number",
+        "method_version__method__code",
+        "method_version__method__title",
+    )
     return found.filter(reduce(or_, (Q(**{f"{place}__icontains": q}) for place in places)))
 
 
-def unfinished_runs_of(
-    sample: Sample, *, method_id: int, apart_from: Investigation | None = None
-) -> QuerySet[Run]:
+def unfinished_runs_of(sample: Sample, *, method_id: int, apart_from: Investigation | None = None) -> QuerySet[Run]:
     """Runs of a sample under a method that are open or wait for review, without the one that is investigated."""
     found = Run.objects.filter(
         sample=sample,

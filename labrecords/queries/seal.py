@@ -52,9 +52,7 @@ def root_hash(leaves: Sequence[bytes]) -> bytes:
         return hashlib.sha256(b"").digest()
     level = list(leaves)
     while len(level) > 1:
-        pairs = [
-            hashlib.sha256(NODE + level[at] + level[at + 1]).digest() for at in range(0, len(level) - 1, 2)
-        ]
+        pairs = [hashlib.sha256(NODE + level[at] + level[at + 1]).digest() for at in range(0, len(level) - 1, 2)]
         level = pairs + ([level[-1]] if len(level) % 2 else [])
     return level[0]
 

@@ -28,9 +28,7 @@ def standards(*, day: date) -> QuerySet[Any]:
 def shown_state(day: date) -> Case:
     """The state of a lot as it is on a day: time alone takes a lot out of use."""
     lapsed = Q(expires_on__lt=day, state__in=[LotState.QUARANTINED, LotState.IN_USE])
-    return Case(
-        When(lapsed, then=Value(LotState.EXPIRED.value)), default=F("state"), output_field=CharField()
-    )
+    return Case(When(lapsed, then=Value(LotState.EXPIRED.value)), default=F("state"), output_field=CharField())
 
 
 def standards_found(*, day: date, q: str = "", state: str = "") -> QuerySet[Any]:
@@ -39,9 +37,7 @@ def standards_found(*, day: date, q: str = "", state: str = "") -> QuerySet[Any]
     if state:
         found = found.filter(shown_state=state)
     if q:
-        found = found.filter(
-            Q(number__icontains=q) | Q(substance__name__icontains=q) | Q(supplier_lot__icontains=q)
-        )
+        found = found.filter(Q(number__icontains=q) | Q(substance__name__icontains=q) | Q(supplier_lot__icontains=q))
     return found
 
 

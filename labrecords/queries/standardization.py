@@ -16,9 +16,13 @@ from labrecords.queries.replicate import replicates_as_signed, used_instruments_
 
 def standardizations() -> QuerySet[Standardization]:
     """All standardizations with what a list shows, newest first."""
-    return Standardization.objects.select_related(
-        "lot__titrant", "reference_standard__substance", "against__lot", "started_by", "calculation"
-    ).annotate(open_questions=Count("questions", filter=Q(questions__answered_at__isnull=True))).order_by("-started_at", "-id")
+    return (
+        Standardization.objects.select_related(
+            "lot__titrant", "reference_standard__substance", "against__lot", "started_by", "calculation"
+        )
+        .annotate(open_questions=Count("questions", filter=Q(questions__answered_at__isnull=True)))
+        .order_by("-started_at", "-id")
+    )
 
 
 def standardizations_found(*, q: str = "", state: str = "") -> QuerySet[Standardization]:
@@ -28,7 +32,13 @@ def standardizations_found(*, q: str = "", state: str = "") -> QuerySet[Standard
         found = found.filter(state=state)
     if not q:
         return found
-    places = ("number", "lot__number", "lot__titrant__name", "reference_standard__number", "against__lot__number")
+    places = (
+        "number",
+        "lot__number",
+        "lot__titrant__name",
+        "reference_standard__number",
+        "against__lot__number",
+    )
     return found.filter(reduce(or_, (Q(**{f"{place}__icontains": q}) for place in places)))
 
 

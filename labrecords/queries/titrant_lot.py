@@ -34,9 +34,9 @@ def volume_balance(lot: TitrantLot) -> VolumeBalance:
 
     A bottle that empties faster than its records say was titrated with and not written down.
     """
-    rows = Replicate.objects.filter(
-        Q(run__standardization__lot=lot) | Q(standardization__lot=lot)
-    ).values_list("start", "end", "curve__volumes")
+    rows = Replicate.objects.filter(Q(run__standardization__lot=lot) | Q(standardization__lot=lot)).values_list(
+        "start", "end", "curve__volumes"
+    )
     delivered = [volume for row in rows if (volume := _delivered(*row)) is not None]
     return VolumeBalance(
         prepared=lot.volume,

@@ -110,9 +110,7 @@ def _replayed(table: str) -> dict[str, dict[str, Any]]:
 def _rows(table: str) -> Iterator[tuple[str, dict[str, Any]]]:
     with connection.cursor() as cursor:
         quoted = connection.ops.quote_name(table)
-        cursor.execute(
-            f"SELECT t.id::text, labrecords_row_as_text(to_jsonb(t), {HASHED})::text FROM {quoted} AS t"
-        )
+        cursor.execute(f"SELECT t.id::text, labrecords_row_as_text(to_jsonb(t), {HASHED})::text FROM {quoted} AS t")
         for key, row in cursor.fetchall():
             yield key, json.loads(row)
 
@@ -123,7 +121,5 @@ def anchors(path: Path) -> dict[int, str]:
         return {}
     lines = (line.split() for line in path.read_text(errors="replace").splitlines())
     return {
-        int(parts[0]) if parts[0].isdigit() else -1: parts[1] if len(parts) == 4 else ""
-        for parts in lines
-        if parts
+        int(parts[0]) if parts[0].isdigit() else -1: parts[1] if len(parts) == 4 else "" for parts in lines if parts
     }

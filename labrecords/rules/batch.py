@@ -10,7 +10,13 @@ from labrecords.queries.batch import RequiredTest, required_tests, runs_of_batch
 
 
 def objections_to_recording_batch(
-    number: str, *, by: User, product: Product, specification: Specification | None, made_on: date, today: date
+    number: str,
+    *,
+    by: User,
+    product: Product,
+    specification: Specification | None,
+    made_on: date,
+    today: date,
 ) -> list[str]:
     """A batch has a number of its own, a day that has come, and a product with effective limits."""
     found = _objections_to_recorder(by)
@@ -26,7 +32,14 @@ def objections_to_recording_batch(
 
 
 def objections_to_recording_sample(
-    number: str, *, by: User, batch: Batch | None, has_control: bool, drawn_at: datetime, drawn_by: str, now: datetime
+    number: str,
+    *,
+    by: User,
+    batch: Batch | None,
+    has_control: bool,
+    drawn_at: datetime,
+    drawn_by: str,
+    now: datetime,
 ) -> list[str]:
     """A sample has a number of its own, one source, who drew it and when."""
     found = _objections_to_recorder(by)

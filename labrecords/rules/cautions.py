@@ -18,27 +18,17 @@ BY_CLASS: dict[str, tuple[str, ...]] = {
         "Corrosive base: wear gloves. It harms eyes within seconds; rinse at once and get help.",
         "Dissolving solid hydroxide gives off much heat: add it to cold water in small portions, stirring.",
     ),
-    "oxidizer": (
-        "Oxidizer: keep it away from organic matter and reducing agents; rinse spills away with water.",
-    ),
+    "oxidizer": ("Oxidizer: keep it away from organic matter and reducing agents; rinse spills away with water.",),
     "toxic": (
         "Toxic: wear gloves, work so that no dust or spray arises, and wash hands afterwards.",
         "Where chromate is the indicator: it may cause cancer; weigh and dissolve it in the fume cupboard.",
     ),
-    "environment": (
-        "Harmful to water life: collect residues in the labelled waste bottle, nothing down the drain.",
-    ),
+    "environment": ("Harmful to water life: collect residues in the labelled waste bottle, nothing down the drain.",),
     "stains": ("Stains skin and benches black or brown within hours, silver salts above all: wear gloves.",),
-    "gas_from_acid": (
-        "Gives off gas with acid, as carbonates give carbon dioxide: add acid slowly, vessel open.",
-    ),
-    "irritant": (
-        "Irritates skin and eyes, as the powders of EDTA and of many acids do: avoid dust and splashes.",
-    ),
+    "gas_from_acid": ("Gives off gas with acid, as carbonates give carbon dioxide: add acid slowly, vessel open.",),
+    "irritant": ("Irritates skin and eyes, as the powders of EDTA and of many acids do: avoid dust and splashes.",),
 }
-ACID_WITH_BASE = (
-    "Acid and base give off heat when they meet: let strong solutions run together slowly, and cool."
-)
+ACID_WITH_BASE = "Acid and base give off heat when they meet: let strong solutions run together slowly, and cool."
 ACID_WITH_CARBONATE = (
     "Foam may carry acid out of the vessel: use a tall one, and let the foam settle between additions."
 )

@@ -16,9 +16,7 @@ def media_type_of(content: bytes) -> str | None:
 def objections_to_certificate(name: str, *, content: bytes, field: str = "Certificate") -> list[str]:
     """A PDF, PNG or JPEG up to 5 MB; the name of a file says nothing about what is in it."""
     if len(content) > LARGEST_FILE:
-        return [
-            f"{field}: {shown(name)} is larger than 5 MB. Choose a smaller copy, such as one of fewer pages."
-        ]
+        return [f"{field}: {shown(name)} is larger than 5 MB. Choose a smaller copy, such as one of fewer pages."]
     if media_type_of(content) is None:
         return [f"{field}: {shown(name)} is neither PDF, PNG nor JPEG. Choose the certificate's file."]
     return []

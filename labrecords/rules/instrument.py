@@ -76,7 +76,5 @@ def _objections_to_one(part: str, instrument: Instrument, *, volume: Decimal | N
             f"{volume:g} mL are expected."
         )
     if calibration_at(instrument, at=at) is None:
-        found.append(
-            f"{instrument.identifier} has no calibration that holds today. Calibrate it, or choose another."
-        )
+        found.append(f"{instrument.identifier} has no calibration that holds today. Calibrate it, or choose another.")
     return found

@@ -32,9 +32,7 @@ def objections_to_recording_instrument(instrument: Instrument, *, by: User) -> l
     if units and instrument.unit not in units:
         found.append(f"Unit is {shown(instrument.unit)}; {' or '.join(units)} is expected for its kind.")
     if not instrument.resolution > 0:
-        found.append(
-            f"Resolution is {plain(instrument.resolution)}: the smallest difference it is read to, above 0."
-        )
+        found.append(f"Resolution is {plain(instrument.resolution)}: the smallest difference it is read to, above 0.")
     if not instrument.tolerance >= 0:
         found.append(f"Tolerance is {plain(instrument.tolerance)}: the half-width of its class, 0 or more.")
     if instrument.capacity is not None and not instrument.capacity > 0:
@@ -48,9 +46,7 @@ def objections_to_superseding_instrument(instrument: Instrument, *, by: User) ->
     """Once only."""
     found = objections_to_keeping_registers(by)
     if instrument.superseded_by is not None:
-        found.append(
-            f"{instrument.identifier} is superseded already. Open {instrument.superseded_by} instead."
-        )
+        found.append(f"{instrument.identifier} is superseded already. Open {instrument.superseded_by} instead.")
     return found
 
 
@@ -68,9 +64,7 @@ def objections_to_calibrating(calibration: InstrumentCalibration, *, by: User, t
     found = objections_to_fit(calibration)
     if not (by.is_supervisor or by.is_administrator or by.is_analyst):
         found.append(f"{by.full_name} records no calibrations. Ask an analyst or a supervisor.")
-    found += objections_to_date(
-        calibration.calibrated_on, today=today, field="Calibrated on", may_be_future=False
-    )
+    found += objections_to_date(calibration.calibrated_on, today=today, field="Calibrated on", may_be_future=False)
     found += objections_to_date(calibration.due_on, today=today, field="Due on", may_be_future=True)
     found += objections_to_order(
         calibration.calibrated_on, calibration.due_on, earlier_field="Calibrated on", later_field="Due on"
@@ -101,9 +95,7 @@ def objections_to_corrections(rows: Sequence[Sequence[str]], *, instrument: Inst
             end = f" to {shortest(most)}" if most is not None else " on"
             return [f"Correction {place} is at {plain(at)} {unit}; a reading from 0{end} {unit} is expected."]
         if at <= before:
-            return [
-                f"Correction {place} is at {plain(at)} {unit}, not above the one before. Write them upward."
-            ]
+            return [f"Correction {place} is at {plain(at)} {unit}, not above the one before. Write them upward."]
         if abs(correction) > 1:
             return [f"Correction {place} is {plain(correction)} {unit}; within 1 {unit} is expected."]
         before = at

@@ -19,7 +19,9 @@ CHECKLIST = {
 }
 
 
-def objections_to_assessing(investigation: Investigation, *, by: User, checklist: Mapping[str, Mapping[str, str]]) -> list[str]:
+def objections_to_assessing(
+    investigation: Investigation, *, by: User, checklist: Mapping[str, Mapping[str, str]]
+) -> list[str]:
     """Phase 1 is a supervisor's who did not perform the run; every question of the list is answered."""
     found = objections_to_investigating(investigation, by=by)
     if investigation.state not in (InvestigationState.OPEN, InvestigationState.PHASE_1):

@@ -27,7 +27,10 @@ def objections_to_recording_version(version: MethodVersion, *, by: User) -> list
     """A recipe must hang together before it is kept even as a draft."""
     found = _objections_to_author(by)
     if version.state != VersionState.DRAFT:
-        return [*found, f"{version} is {version.state}; an effective version never changes. Record a new version."]
+        return [
+            *found,
+            f"{version} is {version.state}; an effective version never changes. Record a new version.",
+        ]
     found += objections_to_ratio(version.ratio)
     found += _objections_to_endpoint(version)
     if version.titration == "back" and (version.excess_titrant is None or not version.excess_volume):

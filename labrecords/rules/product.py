@@ -24,7 +24,10 @@ def objections_to_recording_product(*, by: User, code: str, name: str) -> list[s
 
 def objections_to_specifying(*, by: User, reason: str) -> list[str]:
     """Supervisors make specifications, and say why."""
-    return [*_objections_to_author(by), *([] if reason.strip() else ["Reason is empty: say why this version is made."])]
+    return [
+        *_objections_to_author(by),
+        *([] if reason.strip() else ["Reason is empty: say why this version is made."]),
+    ]
 
 
 def objections_to_limits(rows: Sequence[Mapping[str, Any]]) -> list[str]:

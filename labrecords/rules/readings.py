@@ -65,9 +65,7 @@ def remarks_on_burette_reading(value: Decimal | None, *, field: str, resolution:
     readable = places_of(Decimal(shortest(resolution)))
     if value is None or not value.is_finite() or places_of(value) >= readable:
         return []
-    return [
-        f"{field} is {plain(value)} mL with {_places(places_of(value))}; the burette is read to {readable}."
-    ]
+    return [f"{field} is {plain(value)} mL with {_places(places_of(value))}; the burette is read to {readable}."]
 
 
 def objections_to_sample_amount(
@@ -91,9 +89,7 @@ def objections_to_sample_amount(
         slip = _slip(amount, unit=unit, expected=expected)
         found.append(f"{field} is {plain(amount)} {unit}; {about} is expected. {slip}")
     elif capacity is not None and amount > capacity:
-        found.append(
-            f"{field} is {plain(amount)} {unit}; the instrument takes up to {shortest(capacity)} {unit}."
-        )
+        found.append(f"{field} is {plain(amount)} {unit}; the instrument takes up to {shortest(capacity)} {unit}.")
     return found
 
 
@@ -103,9 +99,7 @@ def remarks_on_sample_amount(
     """More than half away from the usual amount: possible, and worth a second look."""
     if amount is None or not expected or not amount.is_finite() or abs(amount - expected) <= expected / 2:
         return []
-    return [
-        f"{field} is {plain(amount)} {unit}, more than 50 % away from the usual {shortest(expected)} {unit}."
-    ]
+    return [f"{field} is {plain(amount)} {unit}, more than 50 % away from the usual {shortest(expected)} {unit}."]
 
 
 def objections_to_temperature(value: Decimal | None, *, field: str = "Temperature") -> list[str]:
@@ -163,9 +157,7 @@ def objections_to_purity(value: Decimal | None, *, field: str = "Purity") -> lis
     return found
 
 
-def objections_to_concentration(
-    value: Decimal | None, *, nominal: Decimal, field: str = "Concentration"
-) -> list[str]:
+def objections_to_concentration(value: Decimal | None, *, nominal: Decimal, field: str = "Concentration") -> list[str]:
     """A concentration in mol/L within twenty times of the nominal one; mmol/L is recognized."""
     return objections_to_sample_amount(value, unit="mol/L", expected=nominal, field=field)
 
@@ -183,15 +175,11 @@ def objections_to_date(value: date | None, *, today: date, field: str, may_be_fu
     return []
 
 
-def objections_to_order(
-    earlier: date | None, later: date | None, *, earlier_field: str, later_field: str
-) -> list[str]:
+def objections_to_order(earlier: date | None, later: date | None, *, earlier_field: str, later_field: str) -> list[str]:
     """The later of two days comes after the earlier one."""
     if earlier is None or later is None or later > earlier:
         return []
-    return [
-        f"{later_field} is {day(later)}; a day after {earlier_field.lower()}, {day(earlier)}, is expected."
-    ]
+    return [f"{later_field} is {day(later)}; a day after {earlier_field.lower()}, {day(earlier)}, is expected."]
 
 
 def day(value: date) -> str:

@@ -5,10 +5,20 @@ from __future__ import annotations
 from collections.abc import Mapping
 from decimal import Decimal
 
-from labrecords.models import ExclusionCause, RecordState, Replicate, ReplicateKind, Run, Standardization, User
+from labrecords.models import (
+    ExclusionCause,
+    RecordState,
+    Replicate,
+    ReplicateKind,
+    Run,
+    Standardization,
+    User,
+)
 from labrecords.queries.replicate import instruments_of
 from labrecords.rules.readings import (
-    objections_to_burette_reading, objections_to_sample_amount, objections_to_temperature,
+    objections_to_burette_reading,
+    objections_to_sample_amount,
+    objections_to_temperature,
 )  # fmt: skip
 
 MOST_REPLICATES = 20
@@ -86,9 +96,7 @@ def expected_amount(record: Record) -> tuple[str, Decimal | None]:
     return "mL", titrant.aliquot
 
 
-def objections_to_excluding(
-    replicate: Replicate, *, record: Record, by: User, cause: str, sentence: str
-) -> list[str]:
+def objections_to_excluding(replicate: Replicate, *, record: Record, by: User, cause: str, sentence: str) -> list[str]:
     """An exclusion names an assignable cause from the list and says in a sentence what happened."""
     found = objections_to_working_on(record, by=by)
     if replicate.is_excluded:
@@ -100,9 +108,7 @@ def objections_to_excluding(
     return found
 
 
-def objections_to_attaching(
-    replicate: Replicate, *, record: Record, by: User, digest: str, quantity: str
-) -> list[str]:
+def objections_to_attaching(replicate: Replicate, *, record: Record, by: User, digest: str, quantity: str) -> list[str]:
     """A curve goes to a titration without readings, is of the method's quantity, and is used once only."""
     found = objections_to_working_on(record, by=by)
     if isinstance(record, Standardization) or record.method_version.endpoint != "curve":
@@ -116,5 +122,3 @@ def objections_to_attaching(
     if twin is not None and twin.run is not None:
         found.append(f"This file is {twin} of {twin.run.number} already. One recording is one titration.")
     return found
-
-

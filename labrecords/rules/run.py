@@ -5,7 +5,15 @@ from __future__ import annotations
 from datetime import datetime
 
 from labrecords.models import (
-    BatchState, Investigation, InvestigationState, MethodVersion, RecordState, Run, Sample, TitrantLot, User,
+    BatchState,
+    Investigation,
+    InvestigationState,
+    MethodVersion,
+    RecordState,
+    Run,
+    Sample,
+    TitrantLot,
+    User,
     VersionState,
 )  # fmt: skip
 from labrecords.queries.calculation import latest_calculation, latest_request

@@ -15,9 +15,7 @@ def objections_to_recording_standard(standard: ReferenceStandard, *, by: User, t
     """A number of its own, a purity with its uncertainty, and dates in order."""
     found = [] if by.is_analyst or by.is_supervisor else [_not_their_work(by)]
     same = ReferenceStandard.objects.filter(number__iexact=standard.number)
-    found += objections_to_identifier(
-        standard.number, field="Number", known=same.values_list("number", flat=True)
-    )
+    found += objections_to_identifier(standard.number, field="Number", known=same.values_list("number", flat=True))
     if standard.substance.superseded_by_id is not None:
         found.append(f"{standard.substance.name} is superseded. Choose the entry that took its place.")
     return found + objections_to_certificate_values(standard, today=today)

@@ -7,7 +7,12 @@ from datetime import datetime
 from django.utils import timezone
 
 from labrecords.models import (
-    LotState, RecordState, ReferenceStandard, Standardization, TitrantLot, User,
+    LotState,
+    RecordState,
+    ReferenceStandard,
+    Standardization,
+    TitrantLot,
+    User,
 )  # fmt: skip
 from labrecords.rules.calculation import objections_to_latest_calculation
 from labrecords.rules.replicate import objections_to_working_on
@@ -52,7 +57,9 @@ def objections_to_using_standard(standard: ReferenceStandard, *, lot: TitrantLot
     if standard.expires_on < day:
         found.append(f"Reference standard {standard.number} lapsed on {standard.expires_on:%-d %b %Y}. Choose another.")
     if standard.superseded_by_id is not None:
-        found.append(f"Reference standard {standard.number} is superseded by {standard.superseded_by}. Choose that one.")
+        found.append(
+            f"Reference standard {standard.number} is superseded by {standard.superseded_by}. Choose that one."
+        )
     return found
 
 

@@ -22,16 +22,12 @@ def objections_to_recording_substance(substance: Substance, *, by: User) -> list
     if not substance.name.strip():
         found.append("Name is empty: write the substance's name.")
     if Substance.objects.filter(name=substance.name).exists():
-        found.append(
-            f"{substance.name} is in the register already. Supersede it under another name, or open it."
-        )
+        found.append(f"{substance.name} is in the register already. Supersede it under another name, or open it.")
     density, (low, high) = substance.density, DENSITIES
     if density is not None and not low <= density <= high:
         found.append(f"Density is {plain(density)} g/cm³; {low} to {high} g/cm³ is expected.")
     unknown = [hazard for hazard in substance.hazards if hazard not in Hazard.values]
-    found += [
-        f"Hazard {hazard!r} is not known; expected one of {', '.join(Hazard.values)}." for hazard in unknown
-    ]
+    found += [f"Hazard {hazard!r} is not known; expected one of {', '.join(Hazard.values)}." for hazard in unknown]
     return found
 
 

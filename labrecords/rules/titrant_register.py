@@ -72,9 +72,7 @@ def objections_to_recording_lot(lot: TitrantLot, *, by: User, today: date) -> li
     if lot.titrant.superseded_by is not None:
         found.append(f"{lot.titrant.code} is superseded. Choose {lot.titrant.superseded_by}.")
     if not (lot.prepared_by.is_analyst or lot.prepared_by.is_supervisor):
-        found.append(
-            f"Prepared by is {lot.prepared_by}, who is neither analyst nor supervisor. Choose who made it."
-        )
+        found.append(f"Prepared by is {lot.prepared_by}, who is neither analyst nor supervisor. Choose who made it.")
     if not lot.reagent_lot.strip():
         found.append("Reagent lot is empty: write the lot of the reagent it was made from.")
     if not 0 < lot.volume <= 200_000:
@@ -90,9 +88,7 @@ def _objections_to_lasting(lot: TitrantLot) -> list[str]:
             f"Expires on is {day(lot.expires_on)}, after the shelf life of {lot.titrant.shelf_life_days} "
             f"days ends on {day(last)}. Write that day or an earlier one."
         ]
-    return objections_to_order(
-        lot.prepared_on, lot.expires_on, earlier_field="Prepared on", later_field="Expires on"
-    )
+    return objections_to_order(lot.prepared_on, lot.expires_on, earlier_field="Prepared on", later_field="Expires on")
 
 
 def objections_to_expiring_lot(lot: TitrantLot, *, by: User, today: date) -> list[str]:

@@ -25,15 +25,12 @@ def objections_to_account(
     found = []
     if not USERNAME.fullmatch(username) or username in TAKEN_BY_ADDRESSES:
         found.append(
-            f"Name for signing in is {username!r}: 2 to 40 small letters, digits, dots or hyphens, "
-            "a letter first."
+            f"Name for signing in is {username!r}: 2 to 40 small letters, digits, dots or hyphens, a letter first."
         )
     if known is None and User.objects.filter(username=username).exists():
         found.append(f"Name for signing in {username!r} is taken. Choose another; names are never reused.")
     if not full_name.strip() or len(full_name) > 120:
-        found.append(
-            f"Full name is {full_name!r}: up to 120 characters; it is printed beside every signature."
-        )
+        found.append(f"Full name is {full_name!r}: up to 120 characters; it is printed beside every signature.")
     if not roles:
         found.append("Roles: choose at least one.")
     unknown = [role for role in roles if role not in Role.values]
@@ -41,9 +38,7 @@ def objections_to_account(
     return found
 
 
-def objections_to_correcting_account(
-    user: User, *, by: User, full_name: str, roles: Collection[str]
-) -> list[str]:
+def objections_to_correcting_account(user: User, *, by: User, full_name: str, roles: Collection[str]) -> list[str]:
     """By an administrator; nobody widens or narrows what they may do themselves."""
     found = objections_to_administering(by)
     if user.pk == by.pk and set(roles) != set(user.roles):

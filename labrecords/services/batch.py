@@ -7,12 +7,15 @@ from datetime import date, datetime
 from django.db import transaction
 from django.utils import timezone
 
-from labrecords.errors import refuse_if
+from labrecords.errors import refuse_if, sure_of
 from labrecords.models import Batch, BatchState, ControlSample, Meaning, Product, Sample, User
 from labrecords.queries.batch import as_signed
 from labrecords.queries.product import effective_specification
 from labrecords.rules.batch import (
-    objections_to_holding, objections_to_recording_batch, objections_to_recording_sample, objections_to_rejecting,
+    objections_to_holding,
+    objections_to_recording_batch,
+    objections_to_recording_sample,
+    objections_to_rejecting,
     objections_to_releasing,
 )  # fmt: skip
 from labrecords.rules.review import objections_to_reason
@@ -32,7 +35,7 @@ def record_batch(*, by: User, number: str, product: Product, made_on: date, size
             )
         )  # fmt: skip
         return Batch.objects.create(
-            number=number, product=product, specification=specification, made_on=made_on, size=size
+            number=number, product=product, specification=sure_of(specification), made_on=made_on, size=size
         )
 
 
@@ -104,9 +107,7 @@ def hold_batch(batch: Batch, *, by: User, credentials: Credentials, reason: str)
 
 
 def _locked(batch: Batch) -> Batch:
-    return (
-        Batch.objects.select_for_update(of=("self",)).select_related("product", "specification").get(pk=batch.pk)
-    )
+    return Batch.objects.select_for_update(of=("self",)).select_related("product", "specification").get(pk=batch.pk)
 
 
 def _disposed(

@@ -10,6 +10,7 @@ from django.utils import timezone
 
 from labrecords.background import after_commit
 from labrecords.canonical import sha256_of
+from labrecords.errors import sure_of
 from labrecords.models import Calculation, CalculationRequest, RecordState, Run, Standardization, User
 from labrecords.queries.calculation import latest_calculation, waiting_requests
 from labrecords.queries.preview import computed
@@ -75,7 +76,7 @@ def overdue_requests(*, seconds: int = 10) -> list[int]:
 def _locked_record(request: CalculationRequest) -> Record:
     if request.run_id:
         return Run.objects.select_for_update().get(pk=request.run_id)
-    return Standardization.objects.select_for_update().get(pk=request.standardization_id)
+    return Standardization.objects.select_for_update().get(pk=sure_of(request.standardization_id))
 
 
 def _stored(record: Record, *, text: str, outputs: dict[str, Any], by: User) -> Calculation:

@@ -8,13 +8,24 @@ from datetime import datetime
 from django.db import transaction
 from django.utils import timezone
 
-from labrecords.errors import refuse_if
+from labrecords.errors import refuse_if, sure_of
 from labrecords.models import (
-    Calculation, Conclusion, Investigation, InvestigationState, Meaning, RecordState, Run, User,
+    Calculation,
+    Conclusion,
+    Investigation,
+    InvestigationState,
+    Meaning,
+    RecordState,
+    Run,
+    User,
 )  # fmt: skip
 from labrecords.queries.investigation import as_signed
 from labrecords.queries.run import as_signed as run_as_signed
-from labrecords.rules.investigation import objections_to_assessing, objections_to_concluding, objections_to_planning
+from labrecords.rules.investigation import (
+    objections_to_assessing,
+    objections_to_concluding,
+    objections_to_planning,
+)
 from labrecords.services import audit
 from labrecords.services.number import next_number
 from labrecords.services.signature import Credentials, sign
@@ -23,7 +34,7 @@ from labrecords.services.signature import Credentials, sign
 def open_investigation(run: Run, *, calculation: Calculation | None, at: datetime) -> Investigation:
     """Open the investigation of an out-of-specification result; called inside the service that met it."""
     return Investigation.objects.create(
-        number=next_number("I", at=at, width=3), run=run, calculation=calculation, opened_at=at
+        number=next_number("I", at=at, width=3), run=run, calculation=sure_of(calculation), opened_at=at
     )
 
 
@@ -65,7 +76,13 @@ def plan_retests(
 
 @transaction.atomic(durable=True)
 def close_investigation(
-    investigation: Investigation, *, by: User, credentials: Credentials, conclusion: str, text: str, cause: str = ""
+    investigation: Investigation,
+    *,
+    by: User,
+    credentials: Credentials,
+    conclusion: str,
+    text: str,
+    cause: str = "",
 ) -> Investigation:
     """Sign the conclusion. An assignable cause makes the run void; otherwise the result stands."""
     investigation = _locked(investigation)

@@ -12,7 +12,9 @@ from labrecords.errors import refuse_if
 from labrecords.models import Meaning, Method, MethodVersion, User, VersionState
 from labrecords.queries.method import as_signed
 from labrecords.rules.method import (
-    objections_to_making_effective, objections_to_recording_method, objections_to_recording_version,
+    objections_to_making_effective,
+    objections_to_recording_method,
+    objections_to_recording_version,
 )  # fmt: skip
 from labrecords.services import audit
 from labrecords.services.signature import Credentials, sign

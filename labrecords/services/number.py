@@ -23,6 +23,4 @@ def next_number(series: str, *, at: datetime, width: int = 5) -> str:
 def reserve_name(register: str, name: str) -> None:
     """One person at a time records a name that is typed: the second waits, and then finds it taken."""
     with connection.cursor() as cursor:
-        cursor.execute(
-            "SELECT pg_advisory_xact_lock(hashtextextended(%s, 0))", [f"{register} {name.casefold()}"]
-        )
+        cursor.execute("SELECT pg_advisory_xact_lock(hashtextextended(%s, 0))", [f"{register} {name.casefold()}"])

@@ -12,7 +12,9 @@ from labrecords.errors import refuse_if
 from labrecords.models import Meaning, Product, Specification, SpecificationLimit, User, VersionState
 from labrecords.queries.product import specification_as_signed
 from labrecords.rules.product import (
-    objections_to_limits, objections_to_making_specification_effective, objections_to_recording_product,
+    objections_to_limits,
+    objections_to_making_specification_effective,
+    objections_to_recording_product,
     objections_to_specifying,
 )  # fmt: skip
 from labrecords.services import audit
@@ -63,9 +65,7 @@ def record_specification(
 
 
 @transaction.atomic(durable=True)
-def make_specification_effective(
-    specification: Specification, *, by: User, credentials: Credentials
-) -> Specification:
+def make_specification_effective(specification: Specification, *, by: User, credentials: Credentials) -> Specification:
     """Sign a draft into force; new batches are made under it, old ones keep theirs."""
     specification = (
         Specification.objects.select_for_update(of=("self",)).select_related("product").get(pk=specification.pk)

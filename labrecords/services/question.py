@@ -33,7 +33,9 @@ def raise_questions_on_runs(run_ids: Iterable[int], *, because: str, by: User) -
 @transaction.atomic(durable=True)
 def answer_question(question: Question, *, by: User, credentials: Credentials, answer: str) -> Question:
     """A supervisor re-evaluates the record and signs why it stands; or voids it instead."""
-    question = Question.objects.select_for_update(of=("self",)).select_related("run", "standardization").get(pk=question.pk)
+    question = (
+        Question.objects.select_for_update(of=("self",)).select_related("run", "standardization").get(pk=question.pk)
+    )
     refuse_if(objections_to_answering(question, by=by, answer=answer))
     record = question.run or question.standardization
     number, noun = str(record), "run" if question.run_id else "standardization"

@@ -10,12 +10,24 @@ from typing import Any
 
 from django.db import transaction
 
-from labrecords.errors import refuse_if
-from labrecords.models import Curve, Instrument, Replicate, ReplicateKind, Run, Standardization, UsedInstrument, User
+from labrecords.errors import refuse_if, sure_of
+from labrecords.models import (
+    Curve,
+    Instrument,
+    Replicate,
+    ReplicateKind,
+    Run,
+    Standardization,
+    UsedInstrument,
+    User,
+)
 from labrecords.queries.instrument import calibration_at
 from labrecords.queries.replicate import next_replicate_number
 from labrecords.rules.replicate import (
-    objections_to_adding, objections_to_attaching, objections_to_excluding, objections_to_readings,
+    objections_to_adding,
+    objections_to_attaching,
+    objections_to_excluding,
+    objections_to_readings,
 )  # fmt: skip
 from labrecords.services import audit
 from labrecords.services.calculation import ask_for_calculation
@@ -103,7 +115,7 @@ def record_used_instruments(record: Record, instruments: Mapping[str, Instrument
     """Fix each instrument in its part with the calibration that holds; called inside the starting service."""
     for part, instrument in instruments.items():
         UsedInstrument.objects.create(
-            **_owner(record), part=part, instrument=instrument, calibration=calibration_at(instrument, at=at)
+            **_owner(record), part=part, instrument=instrument, calibration=sure_of(calibration_at(instrument, at=at))
         )
 
 
@@ -122,7 +134,11 @@ def lock_record_of(replicate: Replicate) -> Record:
 
 def _added(record: Record, *, by: User, at: datetime, kind: str) -> Replicate:
     return Replicate.objects.create(
-        **_owner(record), kind=kind, number=next_replicate_number(record, kind=kind), entered_by=by, entered_at=at
+        **_owner(record),
+        kind=kind,
+        number=next_replicate_number(record, kind=kind),
+        entered_by=by,
+        entered_at=at,
     )
 
 

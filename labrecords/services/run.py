@@ -9,9 +9,17 @@ from typing import Any
 from django.db import transaction
 from django.utils import timezone
 
-from labrecords.errors import refuse_if
+from labrecords.errors import refuse_if, sure_of
 from labrecords.models import (
-    Instrument, Investigation, Meaning, MethodVersion, RecordState, Run, Sample, TitrantLot, User,
+    Instrument,
+    Investigation,
+    Meaning,
+    MethodVersion,
+    RecordState,
+    Run,
+    Sample,
+    TitrantLot,
+    User,
 )  # fmt: skip
 from labrecords.queries.calculation import latest_calculation
 from labrecords.queries.product import limit_for_sample
@@ -20,7 +28,11 @@ from labrecords.queries.standardization import in_force
 from labrecords.rules.instrument import objections_to_instruments, parts_of_method
 from labrecords.rules.review import objections_to_reason, objections_to_reviewing
 from labrecords.rules.run import (
-    needs_an_investigation, objections_to_approving_run, objections_to_starting_run, objections_to_submitting_run, objections_to_voiding_run,
+    needs_an_investigation,
+    objections_to_approving_run,
+    objections_to_starting_run,
+    objections_to_submitting_run,
+    objections_to_voiding_run,
 )  # fmt: skip
 from labrecords.services import audit
 from labrecords.services.calculation import ask_for_calculation
@@ -61,16 +73,15 @@ def start_run(
             sample=sample,
             method_version=method_version,
             specification_limit=limit_for_sample(sample, method=method_version.method),
-            standardization=in_force(lot, at=event.at),
+            standardization=sure_of(in_force(lot, at=event.at)),
             excess_standardization=in_force(excess_lot, at=event.at) if excess_lot else None,
             retest_for=retest_for,
             started_by=by,
             started_at=event.at,
         )
         record_used_instruments(run, instruments, at=event.at)
-        add_first_replicates(
-            run, by=by, at=event.at, replicates=method_version.replicates_needed, blanks=method_version.blanks_needed
-        )
+        needed = {"replicates": method_version.replicates_needed, "blanks": method_version.blanks_needed}
+        add_first_replicates(run, by=by, at=event.at, **needed)
     return run
 
 

@@ -30,7 +30,8 @@ def seal_trail() -> AuditCheckpoint | None:
         return None
     size = AuditLeaf.objects.count()
     AuditLeaf.objects.bulk_create(
-        AuditLeaf(position=size + offset, event=event, leaf_hash=leaf_hash(event)) for offset, event in enumerate(events)
+        AuditLeaf(position=size + offset, event=event, leaf_hash=leaf_hash(event))
+        for offset, event in enumerate(events)
     )
     known = list(leaves())
     root, now = root_hash(known), timezone.now()

@@ -43,9 +43,7 @@ def record_standard(
     )  # fmt: skip
     reserve_name("standard", number)
     with audit.event("standard.record", by=by, subject=number) as event:
-        refuse_if(
-            objections_to_recording_standard(standard, by=by, today=timezone.localtime(event.at).date())
-        )
+        refuse_if(objections_to_recording_standard(standard, by=by, today=timezone.localtime(event.at).date()))
         if certificate is not None:
             standard.certificate = store_certificate(certificate, by=by, at=event.at)
         standard.save()

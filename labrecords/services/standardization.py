@@ -11,15 +11,25 @@ from django.utils import timezone
 
 from labrecords.errors import refuse_if
 from labrecords.models import (
-    Basis, Instrument, LotState, Meaning, RecordState, ReferenceStandard, Standardization, TitrantLot, User,
+    Basis,
+    Instrument,
+    LotState,
+    Meaning,
+    RecordState,
+    ReferenceStandard,
+    Standardization,
+    TitrantLot,
+    User,
 )  # fmt: skip
 from labrecords.queries.calculation import latest_calculation
 from labrecords.queries.standardization import approved_for_lot, as_signed, in_force
 from labrecords.rules.instrument import objections_to_instruments, parts_of_standardization
 from labrecords.rules.review import objections_to_reason, objections_to_reviewing
 from labrecords.rules.standardization import (
-    objections_to_approving_standardization, objections_to_starting_standardization,
-    objections_to_submitting_standardization, objections_to_voiding_standardization,
+    objections_to_approving_standardization,
+    objections_to_starting_standardization,
+    objections_to_submitting_standardization,
+    objections_to_voiding_standardization,
 )  # fmt: skip
 from labrecords.services import audit
 from labrecords.services.calculation import ask_for_calculation
@@ -27,7 +37,6 @@ from labrecords.services.number import next_number
 from labrecords.services.question import raise_questions_on
 from labrecords.services.replicate import add_first_replicates, record_used_instruments
 from labrecords.services.signature import Credentials, sign
-
 
 Row = TypeVar("Row", ReferenceStandard, TitrantLot)
 
@@ -52,7 +61,9 @@ def start_standardization(
                     lot, by=by, reference_standard=reference_standard, against=against, at=event.at
                 ),
                 *objections_to_instruments(
-                    instruments, parts=parts_of_standardization(basis, aliquot=lot.titrant.aliquot), at=event.at
+                    instruments,
+                    parts=parts_of_standardization(basis, aliquot=lot.titrant.aliquot),
+                    at=event.at,
                 ),
             ]
         )
@@ -66,9 +77,7 @@ def start_standardization(
             started_at=event.at,
         )
         record_used_instruments(standardization, instruments, at=event.at)
-        add_first_replicates(
-            standardization, by=by, at=event.at, replicates=lot.titrant.replicates_needed, blanks=1
-        )
+        add_first_replicates(standardization, by=by, at=event.at, replicates=lot.titrant.replicates_needed, blanks=1)
     return standardization
 
 
@@ -165,7 +174,9 @@ def void_standardization(
         _sign(Meaning.VOIDED, standardization, by=by, credentials=credentials, reason=reason)
         if was_approved:
             raise_questions_on(
-                [standardization.pk], because=f"Standardization {standardization.number} is void: {reason}", by=by
+                [standardization.pk],
+                because=f"Standardization {standardization.number} is void: {reason}",
+                by=by,
             )
     return standardization
 
@@ -186,7 +197,12 @@ def _locked(standardization: Standardization) -> Standardization:
 
 
 def _sign(
-    meaning: Meaning, standardization: Standardization, *, by: User, credentials: Credentials, reason: str = ""
+    meaning: Meaning,
+    standardization: Standardization,
+    *,
+    by: User,
+    credentials: Credentials,
+    reason: str = "",
 ) -> None:
     sign(
         meaning, by=by, credentials=credentials, noun="standardization", record_id=standardization.pk,

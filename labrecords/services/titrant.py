@@ -39,9 +39,7 @@ def record_titrant(*, by: User, **rule: Any) -> Titrant:
 @transaction.atomic(durable=True)
 def supersede_titrant(titrant: Titrant, *, by: User, reason: str, **rule: Any) -> Titrant:
     """Replace a titrant's rule by a new entry under a new code; lots keep the one they were made under."""
-    titrant = (
-        Titrant.objects.select_for_update(of=("self",)).select_related("superseded_by").get(pk=titrant.pk)
-    )
+    titrant = Titrant.objects.select_for_update(of=("self",)).select_related("superseded_by").get(pk=titrant.pk)
     successor = Titrant(**rule)
     reserve_name("titrant", successor.code)
     refuse_if(
@@ -78,9 +76,7 @@ def record_lot(
 
 
 @transaction.atomic(durable=True)
-def withdraw_lot(
-    lot: TitrantLot, *, by: User, credentials: Credentials, reason: str, is_doubtful: bool
-) -> TitrantLot:
+def withdraw_lot(lot: TitrantLot, *, by: User, credentials: Credentials, reason: str, is_doubtful: bool) -> TitrantLot:
     """Take a lot out of use; when it is doubtful, everything that rests on it is put in question."""
     lot = TitrantLot.objects.select_for_update(of=("self",)).select_related("titrant").get(pk=lot.pk)
     refuse_if(

@@ -24,9 +24,7 @@ from labrecords.services.number import reserve_name
 def record_user(*, by: User, username: str, full_name: str, roles: list[str], password: str) -> User:
     """Record a new account; Refused when the name is taken, a role unknown or the password weak."""
     reserve_name("user", username)
-    refuse_if(
-        [*objections_to_administering(by), *objections_to_account(username, full_name=full_name, roles=roles)]
-    )
+    refuse_if([*objections_to_administering(by), *objections_to_account(username, full_name=full_name, roles=roles)])
     user = User(username=username, full_name=full_name, roles=roles)
     _set_password(user, password)
     with audit.event("user.record", by=by, subject=username):
@@ -41,11 +39,7 @@ def record_first_administrator(*, username: str, full_name: str, password: str) 
     reserve_name("user", "the first account")
     refuse_if(
         [
-            *(
-                ["There are accounts already; an administrator records others."]
-                if User.objects.exists()
-                else []
-            ),
+            *(["There are accounts already; an administrator records others."] if User.objects.exists() else []),
             *objections_to_account(username, full_name=full_name, roles=roles),
         ]
     )

@@ -18,7 +18,12 @@ from labrecords.models import Batch, BatchState, User
 from labrecords.queries.batch import RequiredTest, batches, batches_found, required_tests
 from labrecords.queries.history import sentences_about
 from labrecords.queries.signature import signatures_of
-from labrecords.rules.batch import is_ready, objections_to_holding, objections_to_rejecting, objections_to_releasing
+from labrecords.rules.batch import (
+    is_ready,
+    objections_to_holding,
+    objections_to_rejecting,
+    objections_to_releasing,
+)
 from labrecords.services import batch as service
 from labrecords.views.access import for_roles, signed_in
 from labrecords.views.recording import recorded

@@ -57,7 +57,13 @@ def _proposed(request: HttpRequest, replicate: Replicate) -> dict[str, Any]:
     content = upload.read()
     table = read_table(content, name=upload.name)
     mapping = propose_mapping(table, wanted=replicate.run.method_version.curve_quantity)
-    return {"table": table, "mapping": mapping, "packed": packed(content), "name": upload.name, **_drawn(table, mapping)}
+    return {
+        "table": table,
+        "mapping": mapping,
+        "packed": packed(content),
+        "name": upload.name,
+        **_drawn(table, mapping),
+    }
 
 
 def _drawn(table: Table, mapping: Any) -> dict[str, Any]:

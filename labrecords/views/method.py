@@ -39,9 +39,13 @@ def detail(request: HttpRequest, code: str) -> HttpResponse:
 def record(request: HttpRequest) -> HttpResponse:
     """Record a test."""
     return recorded(
-        request, MethodForm(request.POST or None), template="register/record.html", change=service.record_method,
-        to=lambda method: ("method-record_version", method.code), context={"title": "Record a method", "back": "method-list"},
-    )  # fmt: skip
+        request,
+        MethodForm(request.POST or None),
+        template="register/record.html",
+        change=service.record_method,
+        to=lambda method: ("method-record_version", method.code),
+        context={"title": "Record a method", "back": "method-list"},
+    )
 
 
 @for_roles("supervisor")
@@ -52,7 +56,10 @@ def record_version(request: HttpRequest, code: str) -> HttpResponse:
     newest = method.versions.order_by("-number").first()
     start = initial_of(newest, VersionForm) if newest else {}
     if newest:
-        start |= {"reason": "", "dilutions": "\n".join(f"{step['flask']} {step['aliquot']}" for step in newest.dilutions)}
+        start |= {
+            "reason": "",
+            "dilutions": "\n".join(f"{step['flask']} {step['aliquot']}" for step in newest.dilutions),
+        }
 
     def change(**clean: Any) -> MethodVersion:
         return service.record_version(method, **clean)

@@ -38,9 +38,13 @@ def detail(request: HttpRequest, code: str) -> HttpResponse:
 def record(request: HttpRequest) -> HttpResponse:
     """Record a product."""
     return recorded(
-        request, ProductForm(request.POST or None), template="register/record.html", change=service.record_product,
-        to=lambda product: ("product-specify", product.code), context={"title": "Record a product", "back": "product-list"},
-    )  # fmt: skip
+        request,
+        ProductForm(request.POST or None),
+        template="register/record.html",
+        change=service.record_product,
+        to=lambda product: ("product-specify", product.code),
+        context={"title": "Record a product", "back": "product-list"},
+    )
 
 
 @for_roles("supervisor")
@@ -52,7 +56,14 @@ def specify(request: HttpRequest, code: str) -> HttpResponse:
 
     def change(*, by: Any, reason: str) -> Specification:
         if not rows.is_valid():
-            raise Refused([f"Row {n}: {error}" for n, form in enumerate(rows, 1) for errors in form.errors.values() for error in errors])
+            raise Refused(
+                [
+                    f"Row {n}: {error}"
+                    for n, form in enumerate(rows, 1)
+                    for errors in form.errors.values()
+                    for error in errors
+                ]
+            )
         limits = [form.cleaned_data for form in rows if form.cleaned_data.get("method")]
         return service.record_specification(product, by=by, reason=reason, limits=limits)
 
@@ -78,4 +89,8 @@ def make_effective(request: HttpRequest, pk: int) -> HttpResponse:
 
 def _context(code: str) -> dict[str, Any]:
     product = get_object_or_404(products(), code=code)
-    return {"product": product, "specifications": product.specifications.all(), "history": sentences_about(product)}
+    return {
+        "product": product,
+        "specifications": product.specifications.all(),
+        "history": sentences_about(product),
+    }

@@ -28,7 +28,6 @@ def home(request: HttpRequest) -> HttpResponse:
     """Every register with the count of its entries."""
     known = counts()
     places = [
-        {"name": f"{noun}-list", "label": label, "words": words, "count": known[noun]}
-        for noun, label, words in PLACES
+        {"name": f"{noun}-list", "label": label, "words": words, "count": known[noun]} for noun, label, words in PLACES
     ]
     return render(request, "register/home.html", {"places": places})

@@ -35,8 +35,12 @@ def list(request: HttpRequest) -> HttpResponse:
 @require_http_methods(["GET", "POST"])
 def start(request: HttpRequest, sample_number: str, version_id: int) -> HttpResponse:
     """Choose what a run rests on, and reserve its number."""
-    sample = get_object_or_404(Sample.objects.select_related("batch__specification", "control_sample"), number=sample_number)
-    version = get_object_or_404(MethodVersion.objects.select_related("method", "titrant", "excess_titrant"), pk=version_id)
+    sample = get_object_or_404(
+        Sample.objects.select_related("batch__specification", "control_sample"), number=sample_number
+    )
+    version = get_object_or_404(
+        MethodVersion.objects.select_related("method", "titrant", "excess_titrant"), pk=version_id
+    )
     retest_for = Investigation.objects.filter(number=request.GET.get("retest_for", "")).first()
     form, reasons = run_form(version, data=request.POST if request.method == "POST" else None), ()
     if request.method == "POST" and form.is_valid():
@@ -48,7 +52,13 @@ def start(request: HttpRequest, sample_number: str, version_id: int) -> HttpResp
             return redirect("run-sheet", run.number)
         except Refused as refusal:
             reasons = refusal.reasons
-    context = {"sample": sample, "version": version, "form": form, "refused": reasons, "retest_for": retest_for}
+    context = {
+        "sample": sample,
+        "version": version,
+        "form": form,
+        "refused": reasons,
+        "retest_for": retest_for,
+    }
     context |= run_choices(version)
     return render(request, "run/start.html", context, status=400 if request.method == "POST" else 200)
 

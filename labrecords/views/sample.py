@@ -41,7 +41,11 @@ def detail(request: HttpRequest, number: str) -> HttpResponse:
 def record(request: HttpRequest) -> HttpResponse:
     """Record what was drawn."""
     batch = Batch.objects.filter(number=request.GET.get("batch", "")).first()
-    start = {"drawn_at": timezone.localtime(), "batch": batch.pk if batch else None, "drawn_by": request.user.full_name}
+    start = {
+        "drawn_at": timezone.localtime(),
+        "batch": batch.pk if batch else None,
+        "drawn_by": request.user.full_name,
+    }
     return recorded(
         request, SampleForm(request.POST or None, initial=start), template="register/record.html",
         change=service.record_sample, to=lambda sample: ("sample-detail", sample.number),

@@ -27,9 +27,14 @@ from labrecords.queries.standardization import attempts_on_lot
 from labrecords.rules.cautions import cautions_for
 from labrecords.rules.replicate import expected_amount, objections_to_working_on
 from labrecords.rules.review import objections_to_reviewing
-from labrecords.rules.run import objections_to_approving_run, objections_to_submitting_run, objections_to_voiding_run
+from labrecords.rules.run import (
+    objections_to_approving_run,
+    objections_to_submitting_run,
+    objections_to_voiding_run,
+)
 from labrecords.rules.standardization import (
-    objections_to_approving_standardization, objections_to_submitting_standardization,
+    objections_to_approving_standardization,
+    objections_to_submitting_standardization,
     objections_to_voiding_standardization,
 )  # fmt: skip
 from labrecords.services.signature import Credentials
@@ -156,7 +161,10 @@ def refused_sheet(request: HttpRequest, record: Record, refusal: Refused) -> Htt
 def _run_objections(run: Run, *, by: User) -> dict[str, list[str]]:
     return {
         "submit_objections": objections_to_submitting_run(run, by=by),
-        "approve_objections": [*objections_to_reviewing(run, by=by), *objections_to_approving_run(run, by=by)],
+        "approve_objections": [
+            *objections_to_reviewing(run, by=by),
+            *objections_to_approving_run(run, by=by),
+        ],
         "return_objections": objections_to_reviewing(run, by=by),
         "void_objections": objections_to_voiding_run(run, by=by),
         "investigations": list(run.investigations.all()),

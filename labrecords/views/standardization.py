@@ -27,7 +27,11 @@ def list(request: HttpRequest) -> HttpResponse:
     """All standardizations, found by number, lot, titrant or standard, and by state."""
     q, state = request.GET.get("q", ""), request.GET.get("state", "")
     page = Paginator(standardizations_found(q=q, state=state), 50).get_page(request.GET.get("page"))
-    return render(request, "standardization/list.html", {"page_obj": page, "q": q, "state": state, "states": RecordState.values})
+    return render(
+        request,
+        "standardization/list.html",
+        {"page_obj": page, "q": q, "state": state, "states": RecordState.values},
+    )
 
 
 @for_roles("analyst")
@@ -45,7 +49,13 @@ def start(request: HttpRequest, lot_number: str) -> HttpResponse:
             return redirect("standardization-sheet", standardization.number)
         except Refused as refusal:
             reasons = refusal.reasons
-    context = {"lot": lot, "form": form, "refused": reasons, "attempts": attempts_on_lot(lot), "cautions": cautions_for(lot.titrant.substance.hazards)}
+    context = {
+        "lot": lot,
+        "form": form,
+        "refused": reasons,
+        "attempts": attempts_on_lot(lot),
+        "cautions": cautions_for(lot.titrant.substance.hazards),
+    }
     return render(request, "standardization/start.html", context, status=400 if request.method == "POST" else 200)
 
 
@@ -116,7 +126,12 @@ def void(request: HttpRequest, number: str) -> HttpResponse:
 
 
 def _signed(
-    request: HttpRequest, number: str, done: str, change: Callable[..., Standardization], *, with_reason: bool = False
+    request: HttpRequest,
+    number: str,
+    done: str,
+    change: Callable[..., Standardization],
+    *,
+    with_reason: bool = False,
 ) -> HttpResponse:
     record = _standardization(number)
     try:

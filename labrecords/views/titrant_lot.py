@@ -56,9 +56,7 @@ def record(request: HttpRequest, code: str) -> HttpResponse:
     def change(**clean: Any) -> TitrantLot:
         return service.record_lot(titrant, **clean)
 
-    form = LotForm(
-        typed(request), initial={"prepared_on": timezone.localdate(), "prepared_by": request.user.pk}
-    )
+    form = LotForm(typed(request), initial={"prepared_on": timezone.localdate(), "prepared_by": request.user.pk})
     form.fields["expires_on"].help_text = f"left empty: {titrant.shelf_life_days} days after it was prepared"
     context = {"title": f"Record a lot of {titrant.name}", "back": "titrant_lot-list"}
     return recorded(
@@ -97,9 +95,7 @@ def withdraw(request: HttpRequest, number: str) -> HttpResponse:
     lot, doubtful = _lot(number), request.POST.get("is_doubtful") == "1"
     try:
         credentials, reason = typed_credentials(request.POST)
-        service.withdraw_lot(
-            lot, by=request.user, credentials=credentials, reason=reason, is_doubtful=doubtful
-        )
+        service.withdraw_lot(lot, by=request.user, credentials=credentials, reason=reason, is_doubtful=doubtful)
     except Refused as refusal:
         return _shown(request, number, refused=refusal.reasons)
     messages.info(request, f"Lot {number} is withdrawn.")

@@ -21,9 +21,7 @@ from labrecords.services import user as service
 from labrecords.views.access import for_roles, signed_in
 from labrecords.views.recording import page_of, recorded, typed
 
-REFUSED = (
-    "The name or the password is not right. After eight wrong tries the account waits a quarter of an hour."
-)
+REFUSED = "The name or the password is not right. After eight wrong tries the account waits a quarter of an hour."
 
 
 @require_http_methods(["GET", "POST"])

@@ -35,9 +35,7 @@ def test_capability_with_one_limit_has_no_cp() -> None:
 
 
 def test_capability_of_a_centred_process_has_equal_indices() -> None:
-    found = capability_from(
-        mean=5, sigma_within=1, sigma_overall=1, n=50, freedom_within=49, lower=2, upper=8
-    )
+    found = capability_from(mean=5, sigma_within=1, sigma_overall=1, n=50, freedom_within=49, lower=2, upper=8)
     assert found.cp is not None
     assert found.cp.value == found.cpk.value == 1
     assert found.expected_outside == pytest.approx(0.0026998, abs=1e-7)
@@ -47,8 +45,6 @@ def test_capability_of_a_centred_process_has_equal_indices() -> None:
     ("limits", "what"),
     [((None, None), "both empty"), ((3.0, 2.0), "the lower must be below")],
 )
-def test_capability_refuses_limits_that_are_none(
-    limits: tuple[float | None, float | None], what: str
-) -> None:
+def test_capability_refuses_limits_that_are_none(limits: tuple[float | None, float | None], what: str) -> None:
     with pytest.raises(ValueError, match=what):
         capability([1.0, 2.0, 3.0], lower=limits[0], upper=limits[1])

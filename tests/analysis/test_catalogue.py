@@ -71,9 +71,7 @@ def test_amount_refuses_a_kind_of_titration_it_does_not_know() -> None:
 
 
 def test_titrant_by_mass_and_by_titrant_give_the_same_for_the_same_solution() -> None:
-    by_mass = calculate(
-        "titrant_by_mass", {"mass": 0.51055, "purity": 1.0, "molar_mass": 204.22, "volume": 25.0}
-    )
+    by_mass = calculate("titrant_by_mass", {"mass": 0.51055, "purity": 1.0, "molar_mass": 204.22, "volume": 25.0})
     by_titrant = calculate("titrant_by_titrant", {"concentration": by_mass, "aliquot": 20.0, "volume": 20.0})
     assert by_mass == pytest.approx(0.1, rel=1e-6)
     assert by_titrant == by_mass
@@ -93,9 +91,7 @@ def test_concordance_names_places_from_one() -> None:
 def test_run_rules_and_cusum_name_places_from_one() -> None:
     values = [0.0, 0.1, 4.0]
     rules = calculate("run_rules", {"values": values, "target": 0.0, "sigma": 1.0})
-    sums = calculate(
-        "cusum", {"values": values, "target": 0.0, "sigma": 1.0, "reference": 0.5, "interval": 3.0}
-    )
+    sums = calculate("cusum", {"values": values, "target": 0.0, "sigma": 1.0, "reference": 0.5, "interval": 3.0})
     assert rules == {"one point beyond three sigma": [3]}
     assert sums["signals"] == [3]
 
@@ -122,8 +118,6 @@ def test_outlier_tests_of_pairs_give_sentences() -> None:
 
 
 def test_process_risks_of_a_perfect_process_are_small() -> None:
-    found = calculate(
-        "process_risks", {"mean": 10, "sd": 0.01, "standard_uncertainty": 0.01, "lower": 9, "upper": 11}
-    )
+    found = calculate("process_risks", {"mean": 10, "sd": 0.01, "standard_uncertainty": 0.01, "lower": 9, "upper": 11})
     assert found["consumer"] < 1e-12
     assert found["accepted"] == pytest.approx(1)

@@ -63,9 +63,7 @@ def test_verdict_keeps_value_rounded_value_limits_and_guard_band() -> None:
     found = judged(6.1134)
     assert (found.value, str(found.rounded), found.guard) == (6.1134, "6.11", 0.1)
     assert (found.lower_acceptance, found.upper_acceptance) == (Decimal("6.10"), Decimal("6.30"))
-    assert (
-        found.sentence == "6.11 after rounding is within the limits 6.00 to 6.40 and outside the guard band."
-    )
+    assert found.sentence == "6.11 after rounding is within the limits 6.00 to 6.40 and outside the guard band."
 
 
 def test_verdict_says_when_no_result_can_conform() -> None:

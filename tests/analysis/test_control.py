@@ -51,9 +51,7 @@ def test_individuals_limits_leave_an_excluded_point_and_its_two_ranges_out() -> 
 
 
 @given(SERIES, st.floats(-100, 100), st.floats(0.01, 100))
-def test_individuals_limits_move_and_stretch_with_the_values(
-    values: list[float], shift: float, by: float
-) -> None:
+def test_individuals_limits_move_and_stretch_with_the_values(values: list[float], shift: float, by: float) -> None:
     if max(values) - min(values) < 1e-3:
         return
     one, other = individuals_limits(values), individuals_limits([by * v + shift for v in values])
@@ -104,9 +102,7 @@ def test_subgroup_limits_estimate_the_spread_within_without_bias(spread: str) ->
 
 
 def test_subgroup_limits_keep_an_excluded_subgroup_on_the_chart() -> None:
-    found = subgroup_limits(
-        [[1.0, 1.2], [9.0, 9.3], [1.1, 1.2]], spread="sd", excluded={1: "other titrant lot"}
-    )
+    found = subgroup_limits([[1.0, 1.2], [9.0, 9.3], [1.1, 1.2]], spread="sd", excluded={1: "other titrant lot"})
     assert len(found.means) == 3
     assert found.centre == pytest.approx(1.125)
 

@@ -103,9 +103,7 @@ def test_outlier_tests_never_take_a_titre_away(titres: list[int]) -> None:
 def test_the_shares_of_the_budget_add_up_to_one(titres: list[int]) -> None:
     found = run(titres)
     assert sum(line["share"] for line in found["budget"]) == pytest.approx(1, abs=1e-12)
-    assert sum(line["contribution"] ** 2 for line in found["budget"]) == pytest.approx(
-        found["u"] ** 2, rel=1e-12
-    )
+    assert sum(line["contribution"] ** 2 for line in found["budget"]) == pytest.approx(found["u"] ** 2, rel=1e-12)
 
 
 def test_the_same_inputs_give_the_same_bits() -> None:

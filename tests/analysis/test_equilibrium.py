@@ -153,6 +153,4 @@ def test_fit_equilibrium_does_not_depend_on_the_guess(guess: float) -> None:
     system = acid_base("base", ACETIC)
     curve = recorded(system, 1.0)
     expected: Fit = fit_equilibrium(curve, system=system)
-    assert fit_equilibrium(curve, system=system, guess=guess).endpoints == pytest.approx(
-        expected.endpoints, abs=1e-5
-    )
+    assert fit_equilibrium(curve, system=system, guess=guess).endpoints == pytest.approx(expected.endpoints, abs=1e-5)

@@ -62,13 +62,9 @@ def test_fit_equilibrium_finds_every_jump_in_mV(
 def test_balance_changes_as_its_derivatives_say(system: System) -> None:
     model = {"precipitation": Precipitation, "redox": Redox, "complex": Complex}[system.kind]
     chemistry = model(system, prior=prior_of(NUISANCE, {}))
-    low, high = (
-        (2.0, 7.0) if system.kind == "precipitation" else (chemistry.limits[0] + 3, chemistry.limits[1] - 3)
-    )
+    low, high = (2.0, 7.0) if system.kind == "precipitation" else (chemistry.limits[0] + 3, chemistry.limits[1] - 3)
     x, volume = np.linspace(low, high, 12)[None, :], np.linspace(1.0, 14.0, 12)[None, :]
-    theta = np.concatenate(
-        [np.full((1, chemistry.count), 5.0), np.zeros((1, len(shiftable(system))))], axis=1
-    )
+    theta = np.concatenate([np.full((1, chemistry.count), 5.0), np.zeros((1, len(shiftable(system))))], axis=1)
     found, step = chemistry.balance(x, volume, theta, None), 1e-6
     for name, up, down in (
         ("by_x", (x + step, volume), (x - step, volume)),

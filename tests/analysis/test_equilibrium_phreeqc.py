@@ -21,13 +21,9 @@ def engine() -> PhreeqPython:
 
 
 @pytest.mark.parametrize("solution", SOLUTIONS, ids=lambda solution: solution.name)
-def test_fit_equilibrium_finds_the_endpoint_of_a_phreeqc_curve(
-    engine: PhreeqPython, solution: Solution
-) -> None:
+def test_fit_equilibrium_finds_the_endpoint_of_a_phreeqc_curve(engine: PhreeqPython, solution: Solution) -> None:
     reading = phreeqc_curve(engine, solution, volumes=VOLUMES, endpoint=9.93)
-    fit = fit_equilibrium(
-        Curve(VOLUMES, reading, "pH", ()), system=solution.system, settings=SEALED, noise=0.004
-    )
+    fit = fit_equilibrium(Curve(VOLUMES, reading, "pH", ()), system=solution.system, settings=SEALED, noise=0.004)
     assert fit.equivalences[solution.step].volume == pytest.approx(9.93, rel=2e-4)
 
 

@@ -33,9 +33,7 @@ def flags(system: System, curve: Curve) -> str:
 def test_fit_equilibrium_names_the_parameter_that_cannot_be_known() -> None:
     twice = System("acid_base", "base", 0.1, 50.0, (Analyte("one"), Analyte("other")))
     with pytest.raises(ValueError, match=r"does not tell V\((one|other)\)"):
-        fit_equilibrium(
-            recorded(System("acid_base", "base", 0.1, 50.0, (Analyte("one"),)), 1.0), system=twice
-        )
+        fit_equilibrium(recorded(System("acid_base", "base", 0.1, 50.0, (Analyte("one"),)), 1.0), system=twice)
 
 
 @pytest.mark.parametrize(
@@ -50,9 +48,7 @@ def test_fit_equilibrium_names_the_parameter_that_cannot_be_known() -> None:
         ),
     ],
 )
-def test_fit_equilibrium_refuses_curves_of_something_else(
-    reading: np.ndarray, quantity: str, sentence: str
-) -> None:
+def test_fit_equilibrium_refuses_curves_of_something_else(reading: np.ndarray, quantity: str, sentence: str) -> None:
     with pytest.raises(ValueError, match=sentence):
         fit_equilibrium(Curve(VOLUMES, reading, quantity, ()), system=ACETIC)
 
@@ -135,9 +131,7 @@ def number_or_sentence(curve: Curve, system: System) -> bool:
     st.lists(st.floats(-2.0, 16.0), min_size=8, max_size=40),
     st.sampled_from([ACETIC, CARBONATE]),
 )
-def test_fit_equilibrium_of_any_readings_gives_a_number_or_a_sentence(
-    readings: list[float], system: System
-) -> None:
+def test_fit_equilibrium_of_any_readings_gives_a_number_or_a_sentence(readings: list[float], system: System) -> None:
     curve = Curve(np.arange(len(readings)) * 0.5, np.array(readings), "pH", ())
     assert number_or_sentence(curve, system)
 

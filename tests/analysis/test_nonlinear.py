@@ -16,9 +16,7 @@ Y = [2.1, 3.9, 6.2, 7.8, 10.1, 12.0]
 def test_fit_formula_of_a_line_is_the_least_squares_line() -> None:
     found = fit_formula(parse_model("a + b*x"), x=X, y=Y, start={"a": 0.0, "b": 1.0})
     line = straight_line(X, Y)
-    assert (found.parameters["a"], found.parameters["b"]) == pytest.approx(
-        (line.intercept, line.slope), rel=1e-9
-    )
+    assert (found.parameters["a"], found.parameters["b"]) == pytest.approx((line.intercept, line.slope), rel=1e-9)
     assert (found.u["a"], found.u["b"]) == pytest.approx((line.u_intercept, line.u_slope), rel=1e-9)
     assert found.residual_sd == pytest.approx(line.residual_sd, rel=1e-9)
 
@@ -27,9 +25,7 @@ def test_fit_formula_states_uncertainties_that_cover() -> None:
     rng, x, inside = np.random.default_rng(43), np.linspace(0, 5, 40), 0
     for _ in range(300):
         y = 3 * np.exp(-0.7 * x) + rng.normal(0, 0.05, x.size)
-        found = fit_formula(
-            parse_model("a*exp(-k*x)"), x=x.tolist(), y=y.tolist(), start={"a": 2.0, "k": 1.0}
-        )
+        found = fit_formula(parse_model("a*exp(-k*x)"), x=x.tolist(), y=y.tolist(), start={"a": 2.0, "k": 1.0})
         inside += abs(found.parameters["k"] - 0.7) < 2 * found.u["k"]
     assert 0.91 < inside / 300 < 0.99
 

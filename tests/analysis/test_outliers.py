@@ -59,9 +59,7 @@ def test_grubbs_critical_of_three_values_nears_the_largest_possible_statistic() 
     assert grubbs_critical(3, 1e-6, 1) == pytest.approx(2 / np.sqrt(3), abs=1e-9)
 
 
-@pytest.mark.parametrize(
-    ("n", "ratio"), [(3, "r10"), (7, "r10"), (8, "r11"), (11, "r21"), (13, "r21"), (14, "r22")]
-)
+@pytest.mark.parametrize(("n", "ratio"), [(3, "r10"), (7, "r10"), (8, "r11"), (11, "r21"), (13, "r21"), (14, "r22")])
 def test_dixon_ratio_follows_the_number_of_values(n: int, ratio: str) -> None:
     assert dixon_ratio(n) == ratio
 

@@ -68,9 +68,7 @@ def test_ewma_run_length_nears_single_points_as_the_weight_nears_one() -> None:
 
 @pytest.mark.parametrize("weight", [0.05, 0.2, 0.6])
 def test_ewma_width_for_gives_the_run_length_that_was_wanted(weight: float) -> None:
-    assert ewma_run_length(weight=weight, width=ewma_width_for(370, weight=weight)) == pytest.approx(
-        370, rel=1e-6
-    )
+    assert ewma_run_length(weight=weight, width=ewma_width_for(370, weight=weight)) == pytest.approx(370, rel=1e-6)
 
 
 @pytest.mark.parametrize("reference", [0.25, 0.5, 1.25])

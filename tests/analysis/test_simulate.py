@@ -58,9 +58,7 @@ def test_simulate_curve_of_silver_chloride_is_half_the_constant_at_equivalence()
 
 
 def test_simulate_curve_of_iron_with_cerium_is_the_mean_potential_at_equivalence() -> None:
-    iron = System(
-        "redox", "oxidant", 0.1, 50.0, (Analyte("iron(II)", potential=680.0),), titrant_potential=1440.0
-    )
+    iron = System("redox", "oxidant", 0.1, 50.0, (Analyte("iron(II)", potential=680.0),), titrant_potential=1440.0)
     reading = simulate_curve(iron, amounts=np.array([1.0]), volumes=np.array([5.0, 10.0, 20.0]))
     # half of the iron, equivalence, twice the cerium: E of one couple, their mean, E of the other
     assert reading == pytest.approx([680.0, 1060.0, 1440.0], abs=1e-6)

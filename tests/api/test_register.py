@@ -38,9 +38,7 @@ def test_list_is_closed_to_strangers(client, name: str) -> None:
 
 
 @pytest.mark.parametrize("name", LISTS)
-def test_list_is_open_to_an_auditor_and_recording_is_not(
-    client, bench: Bench, auditor: User, name: str
-) -> None:
+def test_list_is_open_to_an_auditor_and_recording_is_not(client, bench: Bench, auditor: User, name: str) -> None:
     before = all_records()
     assert get(client, auditor, name).json()["count"] >= 1
     answer = send(client, auditor, name, {})
@@ -113,9 +111,7 @@ def test_instrument_calibrations_record(client, analyst: User, supervisor: User)
     assert get(client, analyst, "instrument-detail", "B-07").json()["due_on"] == str(days_ago(-99))
 
 
-def test_instrument_calibrations_refuse_a_table_that_goes_down(
-    client, analyst: User, supervisor: User
-) -> None:
+def test_instrument_calibrations_refuse_a_table_that_goes_down(client, analyst: User, supervisor: User) -> None:
     some_instrument(supervisor)
     data = {"calibrated_on": str(days_ago(1)), "due_on": str(days_ago(-99)), "performed_by": "the bench",
             "corrections": [["10", "0"], ["5", "0"]]}  # fmt: skip
@@ -144,12 +140,8 @@ def test_standard_list_records_with_its_certificate(client, analyst: User, super
     assert answer.json()["certificate_sha256"] == stored.sha256
 
 
-@pytest.mark.parametrize(
-    ("content", "status"), [("no base64", 400), (base64.b64encode(b"MZ a program").decode(), 409)]
-)
-def test_standard_list_takes_no_other_file(
-    client, analyst: User, supervisor: User, content: str, status: int
-) -> None:
+@pytest.mark.parametrize(("content", "status"), [("no base64", 400), (base64.b64encode(b"MZ a program").decode(), 409)])
+def test_standard_list_takes_no_other_file(client, analyst: User, supervisor: User, content: str, status: int) -> None:
     file = {"name": "c.pdf", "content": content}
     answer = send(client, analyst, "standard-list", standard_data(phthalate(supervisor), certificate=file))
     assert answer.status_code == status

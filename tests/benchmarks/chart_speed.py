@@ -31,9 +31,7 @@ def by_loop(z: list[float]) -> list[list[int]]:
 
 def _broken(z: list[float], end: int) -> tuple[bool, ...]:
     last = z[end - 1]
-    three, five, six, eight, nine, fourteen, fifteen = (
-        z[max(0, end - n) : end] for n in (3, 5, 6, 8, 9, 14, 15)
-    )
+    three, five, six, eight, nine, fourteen, fifteen = (z[max(0, end - n) : end] for n in (3, 5, 6, 8, 9, 14, 15))
     steps = [b - a for a, b in pairwise(fourteen)]
     turns = all(a * b < 0 for a, b in pairwise(steps))
     rises = [b - a for a, b in pairwise(six)]
@@ -68,9 +66,7 @@ def main() -> int:
     loop = best_of(lambda: by_loop(part.tolist()), times=2) * POINTS / LOOPED
     rules = best_of(lambda: flags_of(z, 0.0, 1.0, RULES))
     print(f"{POINTS:,} points, seed {SEED}; the loop was timed on {LOOPED:,} of them")
-    print(
-        f"eight run rules      {1000 * rules:8.1f} ms   loop {loop:6.1f} s   {loop / rules:6.0f} times faster"
-    )
+    print(f"eight run rules      {1000 * rules:8.1f} ms   loop {loop:6.1f} s   {loop / rules:6.0f} times faster")
     print(f"EWMA with limits     {1000 * best_of(lambda: ewma(z, target=0, sigma=1)):8.1f} ms")
     print(f"CUSUM, both sides    {1000 * best_of(lambda: cusum(z, target=0, sigma=1)):8.1f} ms")
     print(f"same points as the loop: {'yes' if is_same else 'NO'}; at least {WANTED:g} times faster wanted")

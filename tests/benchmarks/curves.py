@@ -95,9 +95,7 @@ def ideal(
     return readings, truth, cramer_rao(case, volumes, amounts=amounts, shifts=shifts)
 
 
-def cramer_rao(
-    case: Case, volumes: FloatArray, *, amounts: FloatArray, shifts: dict[str, FloatArray]
-) -> FloatArray:
+def cramer_rao(case: Case, volumes: FloatArray, *, amounts: FloatArray, shifts: dict[str, FloatArray]) -> FloatArray:
     """The least standard deviation of each endpoint [mL] of any unbiased estimate, priors counted as data.
 
     By differences of the simulated curves alone; nothing of the fit is used.
@@ -124,6 +122,4 @@ def table(header: Sequence[str], rows: Sequence[Sequence[str]]) -> str:
     """A table in fixed columns."""
     widths = [max(len(row[k]) for row in [header, *rows]) for k in range(len(header))]
     lines = [header, ["-" * width for width in widths], *rows]
-    return "\n".join(
-        "  ".join(text.ljust(width) for text, width in zip(line, widths, strict=True)) for line in lines
-    )
+    return "\n".join("  ".join(text.ljust(width) for text, width in zip(line, widths, strict=True)) for line in lines)

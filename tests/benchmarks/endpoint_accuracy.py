@@ -19,9 +19,7 @@ SEED = 20261201
 MOST_RATIO, LEAST_COVERAGE, MOST_COVERAGE = 1.10, 92.0, 98.0
 
 
-def cell(
-    case: Case, volumes: np.ndarray, *, count: int, generator: np.random.Generator
-) -> tuple[list[str], bool]:
+def cell(case: Case, volumes: np.ndarray, *, count: int, generator: np.random.Generator) -> tuple[list[str], bool]:
     """One system on one grid, and whether it reaches what it must."""
     readings, truth, bound = ideal(case, volumes, count=count, generator=generator)
     settings = FitSettings(nuisance=("offset", "pKa"))
@@ -47,10 +45,7 @@ def main(count: int = 1000) -> int:
             rows.append([case.name, name, *texts])
             all_good = all_good and good
     print(f"{count} curves a cell, seed {SEED}; {machine()}")
-    print(
-        "noise 0.5 mV and 0.003 mL, both unknown to the fit; offset and pKa drawn from their "
-        "priors; % of the titre"
-    )
+    print("noise 0.5 mV and 0.003 mL, both unknown to the fit; offset and pKa drawn from their priors; % of the titre")
     print(table(["system", "grid", "RMS %", "bound %", "ratio", "bias %", "coverage %", "reached"], rows))
     return 0 if all_good else 1
 

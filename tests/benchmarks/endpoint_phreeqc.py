@@ -33,9 +33,7 @@ from tests.benchmarks.curves import (
 SEED = 20261203
 MOST_BIAS, LEAST_COVERAGE, MOST_COVERAGE = 0.01, 92.0, 98.0  # %
 KILOGRAM_OF_WATER = 55.50837  # mol
-SEALED = FitSettings(
-    nuisance=("offset", "slope", "pKa", "drift")
-)  # no carbon dioxide, and readings that have settled
+SEALED = FitSettings(nuisance=("offset", "slope", "pKa", "drift"))  # no carbon dioxide, and readings that have settled
 INPUT = """SOLUTION 1
     units mol/kgw
     water 0.05
@@ -86,9 +84,7 @@ SOLUTIONS = (
 )  # fmt: skip
 
 
-def phreeqc_curve(
-    engine: PhreeqPython, solution: Solution, *, volumes: FloatArray, endpoint: float
-) -> FloatArray:
+def phreeqc_curve(engine: PhreeqPython, solution: Solution, *, volumes: FloatArray, endpoint: float) -> FloatArray:
     """pH at each volume [mL per kilogram of water as a litre] for an endpoint [mL]."""
     c, vessel = solution.system.titrant_concentration, solution.system.sample_volume
     molality = endpoint * c / vessel / solution.protons
@@ -146,9 +142,7 @@ def main(count: int = 1000) -> int:
             all_good = all_good and good
     print(f"{count} curves a cell, seed {SEED}; {machine()}")
     print("PHREEQC with phreeqc.dat; noise 0.5 mV and 0.003 mL, offset of the electrode 0.06 pH")
-    print(
-        table(["solution", "grid", "RMS %", "bias %", "u(bias) %", "coverage %", "chi2/nu", "reached"], rows)
-    )
+    print(table(["solution", "grid", "RMS %", "bias %", "u(bias) %", "coverage %", "chi2/nu", "reached"], rows))
     return 0 if all_good else 1
 
 

@@ -35,11 +35,7 @@ def scenario(
     """Readings and true endpoints [mL]."""
     wide = 2.0 if name == "priors wrong" else 1.0
     truth = NEAR + generator.uniform(-0.3, 0.3, count)
-    shifts = {
-        key: generator.normal(0.0, 0.03 * wide, count)
-        for key in shiftable(case.system)
-        if key.startswith("pKa")
-    }
+    shifts = {key: generator.normal(0.0, 0.03 * wide, count) for key in shiftable(case.system) if key.startswith("pKa")}
     for key in ("sample carbonate", "titrant carbonate"):
         if key in shiftable(case.system):
             shifts[key] = np.abs(generator.normal(0.0, 0.0015 * wide, count))
@@ -64,9 +60,7 @@ def _autocorrelated(shape: tuple[int, ...], generator: np.random.Generator) -> F
     return found
 
 
-def cell(
-    case: Case, grid: str, *, name: str, count: int, generator: np.random.Generator
-) -> tuple[list[str], bool]:
+def cell(case: Case, grid: str, *, name: str, count: int, generator: np.random.Generator) -> tuple[list[str], bool]:
     """One system on one grid, and whether it reaches what it must."""
     volumes = GRIDS[grid]
     readings, truth = scenario(case, volumes, name=name, count=count, generator=generator)
@@ -74,9 +68,7 @@ def cell(
     failed = sum(map(bool, found.problems))
     error = 100 * (found.volumes[:, case.step] - truth) / truth
     coverage = 100 * float(covered(found, truth, step=case.step).mean())
-    good = name != "realistic" or (
-        abs(np.nanmean(error)) <= MOST_BIAS and coverage >= LEAST_COVERAGE and not failed
-    )
+    good = name != "realistic" or (abs(np.nanmean(error)) <= MOST_BIAS and coverage >= LEAST_COVERAGE and not failed)
     return [
         f"{np.sqrt(np.nanmean(error**2)):.4f}", f"{np.nanmean(error):+.4f}", f"{coverage:.1f}", str(failed),
         "yes" if good else "NO",

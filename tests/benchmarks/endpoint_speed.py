@@ -110,6 +110,14 @@ def alone(curve: Curve) -> float:
     return float(1000 * np.median([after - before for before, after in pairwise(marks)]))
 
 
+CASES = {
+    "batch, 3 parameters, scatter known": (FitSettings(("offset", "pKa"), noise=NOISE, robust=False), LEAST_3),
+    "batch, 3 parameters, robust": (FitSettings(("offset", "pKa"), noise=NOISE), LEAST_3),
+    "batch, 8 parameters, scatter known": (FitSettings(EIGHT, noise=NOISE, robust=False), LEAST_8),
+    "batch, 8 parameters, robust, scatter found": (FitSettings(EIGHT), LEAST_8),
+}
+
+
 def main(count: int = 10_000, looped: int = 150) -> int:
     """Print the table; 1 when something misses."""
     generator = np.random.default_rng(SEED)
@@ -127,19 +135,8 @@ def main(count: int = 10_000, looped: int = 150) -> int:
     lean = rate(lambda: [by_scipy(row, function=lean_model) for row in few], count=looped, repeats=2)
     best, missed = max(loops.values()), []
     rows = [[name, f"{value:,.0f}", ""] for name, value in loops.items()]
-    rows.append(
-        ["curve_fit, 3 parameters, model by hand for one acid", f"{lean:,.0f}", f"{lean / best:.1f} times"]
-    )
-    cases = {
-        "batch, 3 parameters, scatter known": (
-            FitSettings(("offset", "pKa"), noise=NOISE, robust=False),
-            LEAST_3,
-        ),
-        "batch, 3 parameters, robust": (FitSettings(("offset", "pKa"), noise=NOISE), LEAST_3),
-        "batch, 8 parameters, scatter known": (FitSettings(EIGHT, noise=NOISE, robust=False), LEAST_8),
-        "batch, 8 parameters, robust, scatter found": (FitSettings(EIGHT), LEAST_8),
-    }
-    for name, (settings, least) in cases.items():
+    rows.append(["curve_fit, 3 parameters, model by hand for one acid", f"{lean:,.0f}", f"{lean / best:.1f} times"])
+    for name, (settings, least) in CASES.items():
         found = rate(
             lambda s=settings: fit_equilibrium_batch(curves, system=SYSTEM, settings=s),
             count=count,

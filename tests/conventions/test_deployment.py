@@ -126,8 +126,6 @@ def test_bad_setting_stops_the_start_with_a_sentence(name: str, value: str | Non
         "DATABASE_URL": "postgres://lab_app@database/lab", name: value,
     }  # fmt: skip
     given = {key: text for key, text in env.items() if text is not None}
-    done = subprocess.run(
-        [sys.executable, "manage.py", "check"], cwd=ROOT, env=given, capture_output=True, text=True
-    )
+    done = subprocess.run([sys.executable, "manage.py", "check"], cwd=ROOT, env=given, capture_output=True, text=True)
     assert done.returncode != 0
     assert sentence in done.stderr

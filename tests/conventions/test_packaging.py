@@ -36,9 +36,7 @@ def test_lock_has_a_hash_for_every_pin(name: str) -> None:
 @pytest.mark.parametrize("line", WANTED)
 def test_lock_holds_a_version_the_project_wants(line: str) -> None:
     wanted = Requirement(line)
-    found = [
-        version for name, version, _ in PINS if canonicalize_name(name) == canonicalize_name(wanted.name)
-    ]
+    found = [version for name, version, _ in PINS if canonicalize_name(name) == canonicalize_name(wanted.name)]
     assert found, f"{wanted.name} is not locked: make lock"
     assert all(version in wanted.specifier for version in found)
 

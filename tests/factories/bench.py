@@ -80,9 +80,7 @@ def compute(record: Run | Standardization) -> None:
     assert record_calculation(request.pk) is not None
 
 
-def fill(
-    record: Run | Standardization, rows: list[tuple[str, str]], *, by: User, blank: str = "0.05"
-) -> None:
+def fill(record: Run | Standardization, rows: list[tuple[str, str]], *, by: User, blank: str = "0.05") -> None:
     """Type the readings of a sheet: amount and end of every titration from zero, then the blanks."""
     zero: dict[str, Any] = {"start": D("0.00")}
     for replicate, (amount, end) in zip(record.replicates.filter(kind="sample"), rows, strict=True):

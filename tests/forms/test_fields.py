@@ -40,9 +40,7 @@ def test_number_field_refuses_with_field_value_and_expectation() -> None:
     assert NumberField(label="Volume", required=False).clean("") is None
 
 
-@pytest.mark.parametrize(
-    "typed", ["2026-11-24", "24 Nov 2026", "24 November 2026", "24.11.2026", "24/11/2026"]
-)
+@pytest.mark.parametrize("typed", ["2026-11-24", "24 Nov 2026", "24 November 2026", "24.11.2026", "24/11/2026"])
 def test_day_field_reads_a_day(typed: str) -> None:
     assert DayField(label="Expires on").clean(typed) == date(2026, 11, 24)
 

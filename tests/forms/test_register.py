@@ -65,9 +65,7 @@ def test_superseding_form_starts_with_the_values_of_the_record(bench: Bench) -> 
 def test_forms_offer_no_superseded_substance_and_no_auditor(bench: Bench, auditor: User) -> None:
     assert set(LotForm().fields["prepared_by"].queryset) == {bench.analyst, bench.supervisor}
     form = LotForm({"prepared_by": auditor.pk})
-    assert form.errors["prepared_by"] == [
-        "Prepared by: what was chosen is not in the list any more. Choose again."
-    ]
+    assert form.errors["prepared_by"] == ["Prepared by: what was chosen is not in the list any more. Choose again."]
 
 
 def test_superseding_form_asks_for_a_reason_last() -> None:

@@ -69,9 +69,7 @@ def test_extract_curve_names_row_column_value_and_expectation(cell: str, part: s
 
 
 def test_extract_curve_names_a_negative_or_absurd_volume() -> None:
-    assert "Row 2, column 1, “V”: volume is “-1”; 0 to 1000 mL is expected." in refusal(
-        "V;pH\n-1;3\n1;3\n2;4\n"
-    )
+    assert "Row 2, column 1, “V”: volume is “-1”; 0 to 1000 mL is expected." in refusal("V;pH\n-1;3\n1;3\n2;4\n")
     assert "volume is “2000”; 0 to 1000 mL" in refusal("V;pH\n0;3\n1;3\n2000;4\n")
 
 
@@ -124,21 +122,15 @@ def test_extract_curve_takes_every_sample_file(path: Path) -> None:
     curve = curve_of(path.read_bytes(), name=path.name)
     assert curve.quantity.lower() in path.name.lower()
     assert float(curve.volume[0]) == 0
-    assert all(
-        float(later) > float(earlier) for earlier, later in zip(curve.volume, curve.volume[1:], strict=False)
-    )
+    assert all(float(later) > float(earlier) for earlier, later in zip(curve.volume, curve.volume[1:], strict=False))
 
 
 CELLS = st.one_of(
     st.decimals(-20, 20, places=3).map(str),
-    st.sampled_from(
-        ["", "NaN", "0,5", "1.234,5", "=1", '"', "#", "sep=;", "V/mL", "pH", "[mL]", "()", "/", "mL"]
-    ),
+    st.sampled_from(["", "NaN", "0,5", "1.234,5", "=1", '"', "#", "sep=;", "V/mL", "pH", "[mL]", "()", "/", "mL"]),
     st.text(max_size=6),
 )
-TEXTS = st.lists(st.lists(CELLS, max_size=5).map(";".join) | st.lists(CELLS, max_size=5).map(",".join)).map(
-    "\n".join
-)
+TEXTS = st.lists(st.lists(CELLS, max_size=5).map(";".join) | st.lists(CELLS, max_size=5).map(",".join)).map("\n".join)
 
 
 def outcome(content: bytes, *, columns: tuple[int, int, str] | None = None) -> RecordedCurve | Refused:

@@ -102,9 +102,7 @@ def test_validate_analysis_shows_a_case_that_can_be_run_as_it_is(tmp_path: Path)
         ("if __name__ == '__main__': raise SystemExit(1)", False),
     ],
 )
-def test_validate_analysis_runs_benchmarks_when_asked(
-    tmp_path: Path, monkeypatch, script: str, passes: bool
-) -> None:
+def test_validate_analysis_runs_benchmarks_when_asked(tmp_path: Path, monkeypatch, script: str, passes: bool) -> None:
     (tmp_path / "speed.py").write_text(script, encoding="utf-8")
     monkeypatch.setattr(validate_analysis, "BENCHMARKS", tmp_path)
     if passes:

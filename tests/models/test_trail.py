@@ -61,7 +61,9 @@ def test_trail_is_only_ever_added_to(table: str, verb: str) -> None:
 def test_changes_are_written_by_triggers_only(analyst: User) -> None:
     event = AuditEvent.objects.first()
     assert event is not None
-    statement = "INSERT INTO labrecords_auditchange (event_id, table_name, record_key, operation) VALUES (%s, 'x', '1', 'x')"
+    statement = (
+        "INSERT INTO labrecords_auditchange (event_id, table_name, record_key, operation) VALUES (%s, 'x', '1', 'x')"
+    )
     assert "permission denied" in refused(statement, event.pk)
 
 
@@ -77,7 +79,11 @@ def test_triggers_cannot_be_switched_off() -> None:
 def test_simulated_clock_is_the_owners_alone(analyst: User) -> None:
     with connection.cursor() as cursor:
         cursor.execute("SELECT set_config('labrecords.simulated_clock', '2020-01-01T00:00:00Z', true)")
-    with pytest.raises(DatabaseError, match="simulated clock"), transaction.atomic(), audit.event("x.y", by=analyst):
+    with (
+        pytest.raises(DatabaseError, match="simulated clock"),
+        transaction.atomic(),
+        audit.event("x.y", by=analyst),
+    ):
         pass
 
 

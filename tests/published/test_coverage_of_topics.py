@@ -13,11 +13,7 @@ PROVENANCES = {"found", "memory", "mixed", "common practice", "computed another 
 
 
 def every_case() -> list[Case]:
-    return [
-        case
-        for file in sorted(FOLDER.glob("*.json"))
-        for case in cases_from(json.loads(file.read_text("utf-8")))
-    ]
+    return [case for file in sorted(FOLDER.glob("*.json")) for case in cases_from(json.loads(file.read_text("utf-8")))]
 
 
 def test_at_least_250_cases_are_published() -> None:

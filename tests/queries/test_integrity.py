@@ -166,9 +166,7 @@ def test_calculation_with_other_inputs_is_named(run: Run, as_enemy) -> None:
 
 
 def test_result_out_of_specification_without_an_investigation_is_named(run: Run, as_enemy) -> None:
-    as_enemy(
-        "UPDATE labrecords_calculation SET outcome = 'does_not_conform' WHERE id = %s", run.calculation_id
-    )
+    as_enemy("UPDATE labrecords_calculation SET outcome = 'does_not_conform' WHERE id = %s", run.calculation_id)
     assert f"{run.number} is out of specification and was never investigated." in findings()
 
 

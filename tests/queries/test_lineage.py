@@ -81,9 +81,7 @@ def walked_up(record: Standardization | None) -> list[str]:
     return [] if record is None else [record.number, *walked_up(record.against)]
 
 
-def test_chain_up_says_what_a_walk_says(
-    bench: Bench, first: Standardization, second: Standardization
-) -> None:
+def test_chain_up_says_what_a_walk_says(bench: Bench, first: Standardization, second: Standardization) -> None:
     run = run_with(bench, second.lot)
     assert [link.number for link in chain_up(run_id=run.pk)] == walked_up(run.standardization)
     assert walked_up(run.standardization) == [second.number, first.number]
@@ -98,9 +96,7 @@ def test_chain_up_ends_at_the_certificate(bench: Bench, second: Standardization)
     assert (last.certificate_id, last.certificate_sha256) == (certificate.pk, certificate.sha256)
 
 
-def test_chain_up_of_a_standardization_begins_with_itself(
-    first: Standardization, second: Standardization
-) -> None:
+def test_chain_up_of_a_standardization_begins_with_itself(first: Standardization, second: Standardization) -> None:
     assert [(link.depth, link.number) for link in chain_up(standardization_id=second.pk)] == [
         (0, second.number),
         (1, first.number),
@@ -120,9 +116,7 @@ def test_chain_up_ends_even_when_somebody_made_a_circle(
     assert standardizations_resting_on([first.pk]) == sorted([first.pk, second.pk])
 
 
-def test_fan_down_reaches_runs_at_any_remove(
-    bench: Bench, first: Standardization, second: Standardization
-) -> None:
+def test_fan_down_reaches_runs_at_any_remove(bench: Bench, first: Standardization, second: Standardization) -> None:
     run = run_with(bench, second.lot)
     assert standardizations_resting_on([first.pk]) == [first.pk, second.pk]
     assert runs_resting_on([first.pk]) == runs_resting_on([second.pk]) == [run.pk]
@@ -165,9 +159,7 @@ def test_certified_by_finds_what_a_certificate_is_of(bench: Bench) -> None:
     assert certified_by("another.pdf") is None
 
 
-def test_signatures_and_instruments_are_those_of_the_whole_chain(
-    bench: Bench, first: Standardization
-) -> None:
+def test_signatures_and_instruments_are_those_of_the_whole_chain(bench: Bench, first: Standardization) -> None:
     run = approved_run(bench)
     links = chain_up(run_id=run.pk)
     signed = [(item.record_number, item.meaning) for item in signatures_on_chain(run, links)]

@@ -41,9 +41,7 @@ def test_instruments_carry_the_last_day_of_their_calibration(bench: Bench) -> No
 
 def test_instruments_do_not_count_a_withdrawn_calibration(bench: Bench) -> None:
     by = bench.supervisor
-    withdraw_calibration(
-        bench.burette.calibrations.get(), by=by, credentials=signed_by(by), reason="wrong weights"
-    )
+    withdraw_calibration(bench.burette.calibrations.get(), by=by, credentials=signed_by(by), reason="wrong weights")
     assert instruments(day=days_ago(0)).get(identifier="B-07").due_on is None
 
 

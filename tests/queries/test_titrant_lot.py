@@ -46,9 +46,7 @@ def test_volume_balance_counts_a_titration_that_is_excluded(bench: Bench) -> Non
     record = started_standardization(bench)
     row = record.replicates.filter(kind="sample").first()
     record_readings(row, by=bench.analyst, values={"start": D("1.00"), "end": D("31.00")})
-    exclude_replicate(
-        row, by=bench.analyst, cause=ExclusionCause.SPILL, sentence="knocked over while swirling"
-    )
+    exclude_replicate(row, by=bench.analyst, cause=ExclusionCause.SPILL, sentence="knocked over while swirling")
     assert Replicate.objects.get(pk=row.pk).is_excluded
     assert volume_balance(bench.lot).delivered == D("30.00")
 

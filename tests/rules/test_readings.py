@@ -63,9 +63,7 @@ def test_objections_to_burette_reading_names_more_places_than_can_be_read() -> N
 
 
 def test_objections_to_burette_reading_names_what_is_no_number() -> None:
-    assert burette("NaN", None) == [
-        "Start is NaN, which is no number; a burette reading such as 12.30 mL is expected."
-    ]
+    assert burette("NaN", None) == ["Start is NaN, which is no number; a burette reading such as 12.30 mL is expected."]
 
 
 def test_remarks_on_burette_reading_sees_a_reading_cut_short() -> None:
@@ -98,9 +96,7 @@ def test_objections_to_sample_amount_refuses_what_cannot_be(amount: str) -> None
 
 
 def test_objections_to_sample_amount_minds_what_the_instrument_takes() -> None:
-    (sentence,) = objections_to_sample_amount(
-        Decimal(230), unit="g", expected=Decimal(150), capacity=Decimal("220.00")
-    )
+    (sentence,) = objections_to_sample_amount(Decimal(230), unit="g", expected=Decimal(150), capacity=Decimal("220.00"))
     assert "takes up to 220 g" in sentence
 
 
@@ -110,9 +106,7 @@ def test_remarks_on_sample_amount_start_beyond_half_the_usual() -> None:
     assert len(remarks_on_sample_amount(Decimal("15.01"), unit="mL", expected=usual)) == 1
 
 
-@pytest.mark.parametrize(
-    ("typed", "scale"), [("294.7", "kelvin would be 21.6 °C"), ("70.9", "°F would be 21.6 °C")]
-)
+@pytest.mark.parametrize(("typed", "scale"), [("294.7", "kelvin would be 21.6 °C"), ("70.9", "°F would be 21.6 °C")])
 def test_objections_to_temperature_recognizes_other_scales(typed: str, scale: str) -> None:
     (sentence,) = objections_to_temperature(Decimal(typed))
     assert sentence.endswith(f"{typed} {scale}.")
@@ -163,10 +157,7 @@ def test_objections_of_meters_and_concentrations_name_the_expected_range() -> No
     assert objections_to_slope(Decimal("98.2")) == []
     assert objections_to_slope(Decimal("5.9")) == ["Electrode slope is 5.9 %; 50 to 120 % is expected."]
     assert objections_to_millivolts(Decimal(2500)) == ["Potential is 2500 mV; -2000 to 2000 mV is expected."]
-    assert (
-        "100 mmol/L would be 0.1 mol/L"
-        in objections_to_concentration(Decimal(100), nominal=Decimal("0.1"))[0]
-    )
+    assert "100 mmol/L would be 0.1 mol/L" in objections_to_concentration(Decimal(100), nominal=Decimal("0.1"))[0]
 
 
 def test_day_is_written_without_a_leading_zero() -> None:

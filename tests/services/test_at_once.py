@@ -87,8 +87,6 @@ def test_issue_standard_at_once_is_one_event(analyst: User, supervisor: User) ->
 
 def test_withdraw_standard_at_once_is_signed_once(bench: Bench) -> None:
     by = bench.supervisor
-    outcomes = at_once(
-        lambda: withdraw_standard(bench.standard, by=by, credentials=signed_by(by), reason="recalled")
-    )
+    outcomes = at_once(lambda: withdraw_standard(bench.standard, by=by, credentials=signed_by(by), reason="recalled"))
     assert outcomes.count("done") == 1
     assert outcomes.count("KHP-26-01 is withdrawn already.") == TIMES - 1

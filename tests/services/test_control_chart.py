@@ -77,9 +77,7 @@ def test_set_limits_leaves_an_excluded_point_and_its_ranges_out(bench: Bench) ->
     assert limits.excluded == [{"calculation": odd, "why": "the pipette dripped after delivery"}]
     assert limits.centre + 3 * limits.sigma < 0.76
     signals = signals_on(points_of(chart), versions_of(chart))
-    assert [(item.point.number, item.rule) for item in signals] == [
-        ("R-26-00005", "one point beyond three sigma")
-    ]
+    assert [(item.point.number, item.rule) for item in signals] == [("R-26-00005", "one point beyond three sigma")]
 
 
 def test_set_limits_signs_exactly_what_is_stored(bench: Bench) -> None:
@@ -125,9 +123,7 @@ def test_set_limits_refuses_values_that_never_vary(bench: Bench) -> None:
 def test_set_limits_refuses_an_exclusion_without_a_sentence(bench: Bench) -> None:
     chart = some_chart(bench, ["12.30"])
     key = points_of(chart)[0].calculation_id
-    assert "R-26-00001 is left out without a sentence" in refusal_of(
-        limits_of, chart, bench, excluded={key: "odd"}
-    )
+    assert "R-26-00001 is left out without a sentence" in refusal_of(limits_of, chart, bench, excluded={key: "odd"})
 
 
 def test_set_limits_refuses_analysts_and_wrong_passwords(bench: Bench) -> None:

@@ -34,9 +34,7 @@ WHY = "the weights were the wrong ones"
 
 def supersede(old: Instrument, by: User, **given: object) -> Instrument:
     new = {"identifier": "B-17", "kind": "burette", "unit": "mL"} | INSTRUMENTS["burette"]
-    return supersede_instrument(
-        old, by=by, **{"reason": "a new stopcock"} | new | {"identifier": "B-17"} | given
-    )
+    return supersede_instrument(old, by=by, **{"reason": "a new stopcock"} | new | {"identifier": "B-17"} | given)
 
 
 def withdraw(calibration: InstrumentCalibration, by: User, **given: object) -> InstrumentCalibration:
@@ -91,9 +89,7 @@ def test_supersede_instrument_keeps_the_old_one(supervisor: User) -> None:
         new = supersede(old, supervisor)
     old.refresh_from_db()
     assert (old.identifier, old.superseded_by) == ("B-07", new)
-    assert "B-07 is superseded already. Open B-17" in refusal_of(
-        supersede, old, supervisor, identifier="B-18"
-    )
+    assert "B-07 is superseded already. Open B-17" in refusal_of(supersede, old, supervisor, identifier="B-18")
 
 
 def test_withdraw_instrument_takes_it_out_of_use(supervisor: User) -> None:
@@ -102,9 +98,7 @@ def test_withdraw_instrument_takes_it_out_of_use(supervisor: User) -> None:
         withdraw_instrument(burette, by=supervisor, reason="the tip is broken")
     burette.refresh_from_db()
     assert burette.withdrawn_reason == "the tip is broken"
-    assert "withdrawn already" in refusal_of(
-        withdraw_instrument, burette, by=supervisor, reason="again and again"
-    )
+    assert "withdrawn already" in refusal_of(withdraw_instrument, burette, by=supervisor, reason="again and again")
     assert "is not calibrated again" in refusal_of(some_calibration, burette, by=supervisor)
 
 
@@ -204,9 +198,7 @@ def test_withdraw_calibration_refuses(analyst: User, supervisor: User, bench: Be
     assert "withdrawn already" in refusal_of(withdraw, calibration, supervisor)
 
 
-def test_withdraw_calibration_without_a_trail_changes_nothing(
-    supervisor: User, bench: Bench, break_trail
-) -> None:
+def test_withdraw_calibration_without_a_trail_changes_nothing(supervisor: User, bench: Bench, break_trail) -> None:
     before = all_records()
     break_trail()
     with pytest.raises(DatabaseError, match="no room for the trail"):

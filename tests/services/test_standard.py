@@ -96,9 +96,7 @@ def test_record_standard_is_no_work_of_an_administrator(administrator: User, sup
     assert "neither analyst nor supervisor" in refusal_of(some_standard, administrator, khp)
 
 
-def test_record_standard_without_a_trail_changes_nothing(
-    analyst: User, supervisor: User, break_trail
-) -> None:
+def test_record_standard_without_a_trail_changes_nothing(analyst: User, supervisor: User, break_trail) -> None:
     khp = phthalate(supervisor)
     before = all_records()
     break_trail()
@@ -150,9 +148,7 @@ def test_correct_standard_takes_another_certificate(standard: ReferenceStandard,
     assert standard.certificate.name == "better.png"
 
 
-def test_correct_standard_refuses(
-    standard: ReferenceStandard, analyst: User, auditor: User, supervisor: User
-) -> None:
+def test_correct_standard_refuses(standard: ReferenceStandard, analyst: User, auditor: User, supervisor: User) -> None:
     assert "neither analyst nor supervisor" in refusal_of(correct, standard, auditor)
     assert "Reason is ''" in refusal_of(correct, standard, analyst, reason="")
     assert "99.95 % is written 0.9995" in refusal_of(correct, standard, analyst, purity=D("99.95"))
@@ -160,9 +156,7 @@ def test_correct_standard_refuses(
     assert "only a lot in quarantine is corrected" in refusal_of(correct, standard, analyst)
 
 
-def test_database_freezes_the_purity_of_an_issued_standard(
-    standard: ReferenceStandard, supervisor: User
-) -> None:
+def test_database_freezes_the_purity_of_an_issued_standard(standard: ReferenceStandard, supervisor: User) -> None:
     issue_standard(standard, by=supervisor)
     with pytest.raises(DatabaseError, match="its purity is frozen"), audit.event("x.y", by=supervisor):
         ReferenceStandard.objects.filter(pk=standard.pk).update(purity=D("0.5"))
@@ -181,9 +175,7 @@ def test_supersede_standard_refuses(standard: ReferenceStandard, analyst: User, 
     assert "KHP-26-01 is recorded already" in refusal_of(supersede, standard, supervisor, number="KHP-26-01")
     assert "Reason is ''" in refusal_of(supersede, standard, supervisor, reason="")
     supersede(standard, supervisor)
-    assert "superseded already. Open KHP-26-02" in refusal_of(
-        supersede, standard, supervisor, number="KHP-26-03"
-    )
+    assert "superseded already. Open KHP-26-02" in refusal_of(supersede, standard, supervisor, number="KHP-26-03")
     assert "Issue that one" in refusal_of(issue_standard, standard, by=supervisor)
 
 
@@ -207,9 +199,7 @@ def test_withdraw_standard_refuses(bench: Bench) -> None:
     assert "is not a supervisor" in refusal_of(withdraw, bench.standard, bench.analyst)
     assert "Reason is 'no'" in refusal_of(withdraw, bench.standard, bench.supervisor, reason="no")
     other = signed_by(bench.analyst)
-    assert "Sign with your own name" in refusal_of(
-        withdraw, bench.standard, bench.supervisor, credentials=other
-    )
+    assert "Sign with your own name" in refusal_of(withdraw, bench.standard, bench.supervisor, credentials=other)
     withdraw(bench.standard, bench.supervisor)
     assert "is withdrawn already" in refusal_of(withdraw, bench.standard, bench.supervisor)
 

@@ -26,17 +26,13 @@ def supersede(titrant: Titrant, by: User, **given: Any) -> Titrant:
 
 
 def withdraw(lot: TitrantLot, by: User, **given: Any) -> TitrantLot:
-    return withdraw_lot(
-        lot, by=by, **{"credentials": signed_by(by), "reason": WHY, "is_doubtful": True} | given
-    )
+    return withdraw_lot(lot, by=by, **{"credentials": signed_by(by), "reason": WHY, "is_doubtful": True} | given)
 
 
 def lot_that_lapsed(bench: Bench, as_owner) -> TitrantLot:
     """Recorded under a simulated clock, a year ago, like the demo's history."""
     with as_owner(), connection.cursor() as cursor:
-        cursor.execute(
-            "SELECT set_config('labrecords.simulated_clock', (now() - interval '1 year')::text, false)"
-        )
+        cursor.execute("SELECT set_config('labrecords.simulated_clock', (now() - interval '1 year')::text, false)")
         return some_lot(bench.titrant, by=bench.analyst, number="N25-001", prepared_on=days_ago(370))
 
 
@@ -88,17 +84,13 @@ def test_supersede_titrant_keeps_the_rule_of_its_lots(bench: Bench) -> None:
         new = supersede(bench.titrant, bench.supervisor)
     bench.lot.refresh_from_db()
     assert bench.lot.titrant == bench.titrant
-    assert "is superseded. Choose NaOH-0.1b" in refusal_of(
-        some_lot, bench.lot.titrant, by=bench.analyst, number="N2"
-    )
+    assert "is superseded. Choose NaOH-0.1b" in refusal_of(some_lot, bench.lot.titrant, by=bench.analyst, number="N2")
     assert some_lot(new, by=bench.analyst, number="N26-118").titrant == new
 
 
 def test_supersede_titrant_refuses_twice(bench: Bench) -> None:
     supersede(bench.titrant, bench.supervisor)
-    assert "superseded already. Open NaOH-0.1b" in refusal_of(
-        supersede, bench.titrant, bench.supervisor, code="N3"
-    )
+    assert "superseded already. Open NaOH-0.1b" in refusal_of(supersede, bench.titrant, bench.supervisor, code="N3")
 
 
 def test_record_lot_starts_in_quarantine_and_lasts_its_shelf_life(bench: Bench) -> None:
@@ -130,9 +122,7 @@ def test_record_lot_refuses(bench: Bench, given: dict, sentence: str) -> None:
 def test_record_lot_names_somebody_who_prepares_solutions(bench: Bench, auditor: User) -> None:
     said = {"number": "N26-118", "prepared_by": auditor}
     assert "Prepared by is Rhea Lindqvist" in refusal_of(some_lot, bench.titrant, by=bench.analyst, **said)
-    assert "One of them looks after titrant lots" in refusal_of(
-        some_lot, bench.titrant, by=auditor, number="N9"
-    )
+    assert "One of them looks after titrant lots" in refusal_of(some_lot, bench.titrant, by=auditor, number="N9")
 
 
 def test_record_lot_without_a_trail_changes_nothing(bench: Bench, break_trail) -> None:

@@ -98,9 +98,7 @@ def test_correct_user_changes_roles_with_a_reason(administrator: User, analyst: 
 
 def test_correct_user_lets_nobody_change_their_own_roles(administrator: User, supervisor: User) -> None:
     roles = ["administrator", "supervisor"]
-    assert "another administrator changes your roles" in refusal_of(
-        correct, administrator, administrator, roles=roles
-    )
+    assert "another administrator changes your roles" in refusal_of(correct, administrator, administrator, roles=roles)
     assert "is not an administrator" in refusal_of(correct, supervisor, supervisor)
 
 
@@ -120,9 +118,7 @@ def test_close_user_ends_the_account(administrator: User, analyst: User) -> None
 
 
 def test_close_user_refuses(administrator: User, analyst: User) -> None:
-    assert "another administrator closes" in refusal_of(
-        close_user, administrator, by=administrator, reason="bored"
-    )
+    assert "another administrator closes" in refusal_of(close_user, administrator, by=administrator, reason="bored")
     assert "is not an administrator" in refusal_of(close_user, administrator, by=analyst, reason="revenge")
     assert "Reason is ''" in refusal_of(close_user, analyst, by=administrator, reason="")
 

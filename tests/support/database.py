@@ -27,9 +27,7 @@ def django_db_setup(django_db_blocker: Any) -> Iterator[None]:
 
     with django_db_blocker.unblock():
         worker = os.environ.get("PYTEST_XDIST_WORKER", "")
-        connection.settings_dict.setdefault("TEST", {})["NAME"] = (
-            f"test_lab_{worker}" if worker else "test_lab"
-        )
+        connection.settings_dict.setdefault("TEST", {})["NAME"] = f"test_lab_{worker}" if worker else "test_lab"
         with _migrated_by_owner():
             made = setup_databases(verbosity=0, interactive=False)
         _become(APP)

@@ -102,9 +102,7 @@ class Worker:
         end = time.monotonic() + seconds
         while not condition():
             if time.monotonic() > end:
-                raise AssertionError(
-                    f"Not within {seconds:.0f} s. The worker said:\n{self.log.read_text()[-3000:]}"
-                )
+                raise AssertionError(f"Not within {seconds:.0f} s. The worker said:\n{self.log.read_text()[-3000:]}")
             time.sleep(0.05)
 
 

@@ -10,9 +10,7 @@ from django.template import Context, Template
 def page(label="Titration curve", name="measured"):
     figure = go.Figure(data=[go.Scatter(x=[1.0, 2.0], y=[3.0, 4.0], name=name)])
     figure.layout.meta = {"columns": ["Volume, mL", "pH"], "rows": [["1.00", "3.00"], ["2.00", "4.00"]]}
-    return Template("{% load plot %}{% plot figure label %}").render(
-        Context({"figure": figure, "label": label})
-    )
+    return Template("{% load plot %}{% plot figure label %}").render(Context({"figure": figure, "label": label}))
 
 
 def test_plot_carries_the_figure_as_data():

@@ -39,12 +39,8 @@ def test_every_route_sends_strangers_to_sign_in(client, route: URLPattern, metho
     assert answer["Location"] == f"{reverse('user-sign_in')}?next={address(route)}"
 
 
-@pytest.mark.parametrize(
-    "route", [item for item in GUARDED if item.callback.roles], ids=lambda item: item.name
-)
-def test_every_route_is_closed_to_the_other_roles(
-    client, route: URLPattern, one_of_each: dict[str, User]
-) -> None:
+@pytest.mark.parametrize("route", [item for item in GUARDED if item.callback.roles], ids=lambda item: item.name)
+def test_every_route_is_closed_to_the_other_roles(client, route: URLPattern, one_of_each: dict[str, User]) -> None:
     before = all_records()
     for role in set(one_of_each) - set(route.callback.roles):
         client.force_login(one_of_each[role])

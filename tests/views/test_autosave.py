@@ -25,9 +25,7 @@ ROW = (
     '<td>{% include "components/_cell.html" with id="end" name="end" value="10.00" url="/end" %}</td></tr>'
 )
 SHEET = (
-    '<!doctype html><html><body data-person="4" data-token="t"><table class="readings" data-cells>'
-    + ROW
-    + "</table>"
+    '<!doctype html><html><body data-person="4" data-token="t"><table class="readings" data-cells>' + ROW + "</table>"
     '<p data-unsent hidden></p><script type="module" src="/static/js/keys.js"></script>'
     '<script type="module" src="/static/js/autosave.js"></script>'
     '<script type="module" src="/static/js/leave.js"></script></body></html>'

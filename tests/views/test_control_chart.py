@@ -51,9 +51,7 @@ def test_list_names_the_newest_signal_of_each_chart(desk: Client, chart: Control
     assert run.number in told
 
 
-def test_detail_names_each_signal_with_a_link_to_its_run(
-    desk: Client, chart: ControlChart, bench: Bench
-) -> None:
+def test_detail_names_each_signal_with_a_link_to_its_run(desk: Client, chart: ControlChart, bench: Bench) -> None:
     limits_of(chart, bench)
     run = add_point(chart, bench, "12.90")
     told = shown(desk, "control_chart-detail", "CS-A")
@@ -85,9 +83,7 @@ def test_set_limits_signs_what_was_ticked(desk: Client, chart: ControlChart, ben
     assert limits.excluded == [{"calculation": out, "why": "the pipette dripped after delivery"}]
 
 
-def test_set_limits_keeps_the_ticks_and_sentences_when_refused(
-    desk: Client, chart: ControlChart, bench: Bench
-) -> None:
+def test_set_limits_keeps_the_ticks_and_sentences_when_refused(desk: Client, chart: ControlChart, bench: Bench) -> None:
     first, second = (point.calculation_id for point in points_of(chart)[:2])
     given = {"baseline": [first], f"why-{first}": "the wrong <b>flask</b>", "limits_reason": ""}
     answer = desk.post(reverse("control_chart-set_limits", args=["CS-A"]), choice(chart, bench, **given))
@@ -101,9 +97,7 @@ def test_set_limits_keeps_the_ticks_and_sentences_when_refused(
 
 
 @pytest.mark.parametrize("sent", [{"baseline": "x"}, {"baseline": "9" * 40}, {"why-x": "because of it"}])
-def test_set_limits_refuses_what_no_page_sends(
-    desk: Client, chart: ControlChart, bench: Bench, sent: dict
-) -> None:
+def test_set_limits_refuses_what_no_page_sends(desk: Client, chart: ControlChart, bench: Bench, sent: dict) -> None:
     answer = desk.post(reverse("control_chart-set_limits", args=["CS-A"]), choice(chart, bench, **sent))
     assert answer.status_code == 409
     assert not ControlLimits.objects.exists()
@@ -126,9 +120,7 @@ def test_capability_says_what_will_appear(desk: Client) -> None:
     assert "No product has limits yet" in shown(desk, "control_chart-capability")
 
 
-def test_list_asks_as_much_for_many_points_as_for_one(
-    desk: Client, bench: Bench, django_assert_num_queries
-) -> None:
+def test_list_asks_as_much_for_many_points_as_for_one(desk: Client, bench: Bench, django_assert_num_queries) -> None:
     chart = some_chart(bench, ["12.30"])
     with CaptureQueriesContext(connection) as few:
         shown(desk, "control_chart-list")

@@ -63,9 +63,7 @@ def test_calibrate_refuses_a_table_that_goes_down(client, analyst: User, supervi
     assert not InstrumentCalibration.objects.exists()
 
 
-def test_certificate_of_a_calibration_is_saved_and_not_opened(
-    client, auditor: User, supervisor: User
-) -> None:
+def test_certificate_of_a_calibration_is_saved_and_not_opened(client, auditor: User, supervisor: User) -> None:
     held = some_calibration(some_instrument(supervisor), by=supervisor, certificate=CERTIFICATE)
     client.force_login(auditor)
     answer = client.get(reverse("standard-certificate", args=[held.certificate.pk]))

@@ -58,9 +58,7 @@ def test_record_of_a_number_twice_is_refused(client, analyst: User, supervisor: 
     client.force_login(analyst)
     data = new(supervisor)
     client.post("/standards/record/", data)
-    answer = client.post(
-        "/standards/record/", data | {"certificate": SimpleUploadedFile("c.pdf", CERTIFICATE[2])}
-    )
+    answer = client.post("/standards/record/", data | {"certificate": SimpleUploadedFile("c.pdf", CERTIFICATE[2])})
     assert answer.status_code == 409
     assert ReferenceStandard.objects.count() == 1
 
@@ -89,9 +87,7 @@ def test_correct_adds_a_certificate(client, analyst: User, supervisor: User) -> 
     client.force_login(analyst)
     file = SimpleUploadedFile("late.pdf", CERTIFICATE[2])
     with one_event("standard.correct"):
-        answer = client.post(
-            "/standards/KHP-26-01/correct/", typed(certificate=file, reason="it came by post")
-        )
+        answer = client.post("/standards/KHP-26-01/correct/", typed(certificate=file, reason="it came by post"))
     assert answer["Location"] == "/standards/KHP-26-01/"
     page = client.get("/standards/KHP-26-01/").content.decode()
     assert "late.pdf" in page
@@ -111,9 +107,7 @@ def test_supersede_asks_for_a_new_number_and_file(client, bench: Bench) -> None:
     client.force_login(bench.supervisor)
     assert 'value="99.98"' in client.get("/standards/KHP-26-01/supersede/").content.decode()
     file = SimpleUploadedFile("c.pdf", CERTIFICATE[2])
-    data = typed(
-        number="KHP-26-02", substance=bench.standard.substance_id, certificate=file, reason="reissued"
-    )
+    data = typed(number="KHP-26-02", substance=bench.standard.substance_id, certificate=file, reason="reissued")
     with one_event("standard.supersede"):
         assert client.post("/standards/KHP-26-01/supersede/", data)["Location"] == "/standards/KHP-26-02/"
     assert "superseded by KHP-26-02" in client.get("/standards/").content.decode()
@@ -152,13 +146,8 @@ def test_withdraw_refuses(client, bench: Bench, data: dict[str, str], sentence: 
 
 def test_certificate_serves_no_other_file(client, bench: Bench, auditor: User) -> None:
     client.force_login(auditor)
-    assert (
-        client.get(reverse("standard-certificate", args=[bench.standard.certificate_id])).status_code == 200
-    )
-    assert (
-        client.get(reverse("standard-certificate", args=[bench.standard.certificate_id + 1])).status_code
-        == 404
-    )
+    assert client.get(reverse("standard-certificate", args=[bench.standard.certificate_id])).status_code == 200
+    assert client.get(reverse("standard-certificate", args=[bench.standard.certificate_id + 1])).status_code == 404
 
 
 def test_list_filters_and_pins_its_queries(client, bench: Bench, django_assert_num_queries) -> None:

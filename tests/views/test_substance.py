@@ -89,9 +89,7 @@ def test_list_pages_and_asks_the_same_queries_for_one_and_for_many(
 ) -> None:
     some_substance(supervisor)
     client.force_login(supervisor)
-    with django_assert_num_queries(
-        6
-    ):  # session, person, count, rows, and two counts of what waits for review
+    with django_assert_num_queries(6):  # session, person, count, rows, and two counts of what waits for review
         client.get("/substances/")
     for number in range(60):
         some_substance(supervisor, name=f"salt {number:02d}", formula="NaCl")

@@ -55,9 +55,7 @@ def test_record_refuses_a_window_that_misses_the_nominal(client, supervisor: Use
 def test_supersede_starts_with_the_rule(client, bench: Bench) -> None:
     client.force_login(bench.supervisor)
     assert 'value="0.095"' in client.get("/titrants/NaOH-0.1/supersede/").content.decode()
-    data = rule(
-        bench.titrant.substance, bench.standard.substance, code="NaOH-0.1b", reason="it drifts in a week"
-    )
+    data = rule(bench.titrant.substance, bench.standard.substance, code="NaOH-0.1b", reason="it drifts in a week")
     with one_event("titrant.supersede"):
         assert client.post("/titrants/NaOH-0.1/supersede/", data)["Location"] == "/titrants/NaOH-0.1b/"
     page = client.get("/titrants/NaOH-0.1/").content.decode()
@@ -84,9 +82,7 @@ def test_lot_record_keeps_a_bottle_in_quarantine(client, bench: Bench) -> None:
 
 def test_lot_record_refuses_a_shelf_life_of_its_own(client, bench: Bench) -> None:
     client.force_login(bench.analyst)
-    answer = client.post(
-        "/titrants/NaOH-0.1/lots/record/", bottle(bench.analyst, expires_on=str(days_ago(-46)))
-    )
+    answer = client.post("/titrants/NaOH-0.1/lots/record/", bottle(bench.analyst, expires_on=str(days_ago(-46))))
     assert answer.status_code == 409
     assert "after the shelf life of 45 days" in answer.content.decode()
 
@@ -163,9 +159,7 @@ def test_lot_list_filters_and_pins_its_queries(client, bench: Bench, django_asse
     assert "No lots here" in client.get("/lots/", {"state": "in use"}).content.decode()
 
 
-def test_titrant_list_and_detail_pin_their_queries(
-    client, bench: Bench, django_assert_max_num_queries
-) -> None:
+def test_titrant_list_and_detail_pin_their_queries(client, bench: Bench, django_assert_max_num_queries) -> None:
     client.force_login(bench.analyst)
     with django_assert_max_num_queries(4):
         assert "NaOH-0.1" in client.get("/titrants/", {"q": "naoh"}).content.decode()

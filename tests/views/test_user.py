@@ -26,9 +26,7 @@ def test_sign_in_goes_to_the_page_that_was_asked_for(client, analyst: User) -> N
     assert client.get("/register/").status_code == 200
 
 
-@pytest.mark.parametrize(
-    "elsewhere", ["https://example.org/", "//example.org/", "javascript:alert(1)", "\\\\x"]
-)
+@pytest.mark.parametrize("elsewhere", ["https://example.org/", "//example.org/", "javascript:alert(1)", "\\\\x"])
 def test_sign_in_goes_nowhere_else(client, analyst: User, elsewhere: str) -> None:
     assert sign_in(client, "icastell", next=elsewhere)["Location"] == "/"
 
@@ -85,9 +83,7 @@ def test_list_finds_people(client, analyst: User, auditor: User) -> None:
     assert 'href="/people/rlindqvist/"' not in page.split("<main")[1]
 
 
-def test_list_asks_the_same_queries_for_one_and_for_many(
-    client, administrator: User, django_assert_max_num_queries
-):
+def test_list_asks_the_same_queries_for_one_and_for_many(client, administrator: User, django_assert_max_num_queries):
     client.force_login(administrator)
     with django_assert_max_num_queries(5):
         client.get("/people/")

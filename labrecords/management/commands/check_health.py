@@ -33,9 +33,7 @@ class Command(BaseCommand):
     def web(self, options: dict[str, Any]) -> None:
         """The site answers under one of its own names, with its database and every migration."""
         name = settings.ALLOWED_HOSTS[0].lstrip(".").replace("*", "localhost")
-        request = urllib.request.Request(
-            f"http://127.0.0.1:{options['port']}/healthz", headers={"Host": name}
-        )
+        request = urllib.request.Request(f"http://127.0.0.1:{options['port']}/healthz", headers={"Host": name})
         try:
             with urllib.request.urlopen(request, timeout=5):
                 return

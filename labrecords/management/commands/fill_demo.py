@@ -64,7 +64,9 @@ class Command(BaseCommand):
         record_methods(lab)
         record_products(lab, start)
         history = History(Bench(lab, clock, np.random.default_rng(seed)), start, today, self._say)
-        second = SecondBench(self._second(History(Bench(lab, Clock(), np.random.default_rng(seed + 1)), start, today, self._say)))
+        second = SecondBench(
+            self._second(History(Bench(lab, Clock(), np.random.default_rng(seed + 1)), start, today, self._say))
+        )
         quickly()
         history.live(second)
         second.close()

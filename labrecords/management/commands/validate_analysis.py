@@ -33,16 +33,10 @@ class Command(BaseCommand):
 
     def add_arguments(self, parser: Any) -> None:
         """What to run, and where the report goes."""
-        parser.add_argument(
-            "--cases", type=Path, metavar="FILE", help="a file of your own cases, see --schema"
-        )
+        parser.add_argument("--cases", type=Path, metavar="FILE", help="a file of your own cases, see --schema")
         parser.add_argument("--report", type=Path, metavar="FILE", help="where to write the report")
-        parser.add_argument(
-            "--benchmarks", action="store_true", help="run the benchmarks too; takes many minutes"
-        )
-        parser.add_argument(
-            "--catalogue", action="store_true", help="list every calculation that can be named"
-        )
+        parser.add_argument("--benchmarks", action="store_true", help="run the benchmarks too; takes many minutes")
+        parser.add_argument("--catalogue", action="store_true", help="list every calculation that can be named")
         parser.add_argument("--schema", action="store_true", help="say what a file of cases looks like")
 
     def handle(self, *args: Any, **options: Any) -> None:
@@ -55,9 +49,7 @@ class Command(BaseCommand):
         benchmarks = list(self._benchmarks()) if options["benchmarks"] else []
         at = timezone.now()
         report = options["report"] or Path(settings.DATA_DIR) / f"validation-{at:%Y-%m-%d-%H%M%S}.html"
-        page = validation_report(
-            topics, at=at, lab=settings.LAB_NAME, misprints=misprints, benchmarks=benchmarks
-        )
+        page = validation_report(topics, at=at, lab=settings.LAB_NAME, misprints=misprints, benchmarks=benchmarks)
         report.parent.mkdir(parents=True, exist_ok=True)
         report.write_text(page, encoding="utf-8")
         self._say(topics, misprints, benchmarks, report)
@@ -71,9 +63,7 @@ class Command(BaseCommand):
     ) -> None:
         failures = 0
         for topic in topics:
-            self.stdout.write(
-                f"{'FAILED' if topic.missed else 'ok    '}  {topic.title}: {len(topic.checked)} checks"
-            )
+            self.stdout.write(f"{'FAILED' if topic.missed else 'ok    '}  {topic.title}: {len(topic.checked)} checks")
             for checked in topic.checked:
                 for miss in checked.misses:
                     self.stdout.write(f"        {checked.case.id}: {miss}")
@@ -88,16 +78,12 @@ class Command(BaseCommand):
         checks = sum(len(topic.checked) for topic in topics)
         self.stdout.write(f"{checks} checks, {failures} failures. Report: {report}")
         if failures:
-            raise CommandError(
-                f"{failures} failures. Do not use these calculations before each is explained."
-            )
+            raise CommandError(f"{failures} failures. Do not use these calculations before each is explained.")
 
     def _benchmarks(self) -> Iterator[Benchmark]:
         scripts = sorted(file for file in BENCHMARKS.glob("*.py") if "__main__" in file.read_text("utf-8"))
         if not scripts:
-            raise CommandError(
-                f"There are no benchmarks in {BENCHMARKS}; install them or leave out --benchmarks."
-            )
+            raise CommandError(f"There are no benchmarks in {BENCHMARKS}; install them or leave out --benchmarks.")
         for script in scripts:
             self.stdout.write(f"        running benchmark {script.stem}")
             self.stdout.flush()
@@ -107,9 +93,7 @@ class Command(BaseCommand):
 def _published() -> Iterator[Topic]:
     files = sorted((PUBLISHED / "cases").glob("*.json"))
     if not files:
-        raise CommandError(
-            f"There are no published cases in {PUBLISHED / 'cases'}; the installation is not complete."
-        )
+        raise CommandError(f"There are no published cases in {PUBLISHED / 'cases'}; the installation is not complete.")
     for file in files:
         title = file.stem.replace("_", " ").capitalize()
         yield Topic(title, [check_case(case) for case in _read(file)])
@@ -155,9 +139,7 @@ def _field(field: Field) -> str:
 def _schema() -> Iterator[str]:
     yield (sys.modules["analysis.case"].__doc__ or "").strip()
     yield "\nFor example:"
-    yield json.dumps(
-        [vars_of(_read(PUBLISHED / "cases" / "conformity.json")[0])], indent=1, ensure_ascii=False
-    )
+    yield json.dumps([vars_of(_read(PUBLISHED / "cases" / "conformity.json")[0])], indent=1, ensure_ascii=False)
 
 
 def vars_of(case: Case) -> dict[str, Any]:

@@ -42,7 +42,9 @@ class Bench:
         """One normal deviation."""
         return float(self.generator.normal(0.0, sd))
 
-    def titrate(self, replicate: Replicate, titre: float, *, by: User, amount: str | None, burette: tuple[str, float]) -> None:
+    def titrate(
+        self, replicate: Replicate, titre: float, *, by: User, amount: str | None, burette: tuple[str, float]
+    ) -> None:
         """Read the burette before and after, to its resolution, and keep the row."""
         identifier, capacity = burette
         resolution = float(self.lab.instruments[identifier].resolution)
@@ -59,7 +61,16 @@ class Bench:
         self.clock.step(6)
         record_readings(replicate, by=by, values=values)
 
-    def attach(self, replicate: Replicate, volume: np.ndarray, reading: np.ndarray, *, by: User, amount: str, header: tuple[str, str]) -> None:
+    def attach(
+        self,
+        replicate: Replicate,
+        volume: np.ndarray,
+        reading: np.ndarray,
+        *,
+        by: User,
+        amount: str,
+        header: tuple[str, str],
+    ) -> None:
         """Write the instrument's file and keep it with the titration."""
         content = curve_file(volume, reading, header=header, comma=bool(self.generator.random() < 0.4))
         name = f"{replicate.run.number}-{replicate.number}.csv" if replicate.run else "curve.csv"

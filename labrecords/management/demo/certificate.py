@@ -30,5 +30,6 @@ def certificate_pdf(number: str, *, substance: str, purity: str, expanded: str, 
     table = b"".join(b"%010d 00000 n \n" % place for place in places)
     start = len(body)
     return body + (
-        b"xref\n0 6\n0000000000 65535 f \n%strailer\n<< /Size 6 /Root 1 0 R >>\nstartxref\n%d\n%%%%EOF\n" % (table, start)
+        b"xref\n0 6\n0000000000 65535 f \n%strailer\n<< /Size 6 /Root 1 0 R >>\nstartxref\n%d\n%%%%EOF\n"
+        % (table, start)
     )

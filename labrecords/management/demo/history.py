@@ -19,7 +19,14 @@ LOT_EVERY = {"NaOH-0.1": 14, "HCl-0.1": 20, "AgNO3-0.1": 22}
 PREFIX = {"NaOH-0.1": "N", "HCl-0.1": "H", "AgNO3-0.1": "A"}
 SIZES = {"TV": "6 000 L", "PV": "2 500 L", "PB": "4 000 L", "DP": "800 kg", "EF": "1 day", "SL": "1 skip"}
 TESTS = {"TV": "TA-VIN", "PV": "TA-VIN-C", "PB": "CL-BRN", "DP": "CIT-DSC", "EF": "ALK-EFF", "SL": "CAC-SCL"}
-USUAL = {"TV": (6.20, 0.045), "PV": (5.20, 0.04), "PB": (100.2, 1.1), "DP": (96.2, 0.6), "EF": (205.0, 38.0), "SL": (87.5, 2.2)}
+USUAL = {
+    "TV": (6.20, 0.045),
+    "PV": (5.20, 0.04),
+    "PB": (100.2, 1.1),
+    "DP": (96.2, 0.6),
+    "EF": (205.0, 38.0),
+    "SL": (87.5, 2.2),
+}
 SECOND_BENCH = ("EF", "PB", "SL")  # worked on beside the first, so that both cores fill the demo
 DRIFTING_LOT = 9  # the tenth lot of sodium hydroxide takes up carbon dioxide
 
@@ -46,7 +53,12 @@ class History:
             team = self.team(position)
             self.standards(day)
             self.titrants(day, team)
-            beside.begin(self.bench.clock.now, position, lots={code: lot.pk for code, lot in self.lots.items()}, true=self.bench.true)
+            beside.begin(
+                self.bench.clock.now,
+                position,
+                lots={code: lot.pk for code, lot in self.lots.items()},
+                true=self.bench.true,
+            )
             self.samples(day, position, team, second=False)
             if (self.end - self.start).days >= stories.LEAST_DAYS:
                 stories.tell(self, day, team, days_left=len(working) - position)
@@ -62,7 +74,12 @@ class History:
 
     def standards(self, day: date) -> None:
         """New lots of primary standards as they are needed."""
-        plan = [("KHP-1", 0, "0.9998"), ("NACL-1", 0, "0.9995"), ("KHP-2", 118, "0.9997"), ("KHP-3", 146, "0.9998")]
+        plan = [
+            ("KHP-1", 0, "0.9998"),
+            ("NACL-1", 0, "0.9995"),
+            ("KHP-2", 118, "0.9997"),
+            ("KHP-3", 146, "0.9998"),
+        ]
         for label, after, purity in plan:
             number = f"{label.split('-')[0]}-{self.start:%y}-0{label[-1]}"
             if number not in self.bench.lab.standards and day >= self.start + timedelta(days=after):
@@ -122,7 +139,14 @@ class History:
         mean, sd = USUAL[product]
         low, high = mean - 2.2 * sd, mean + 2.2 * sd
         content = min(max(mean + self.bench.noise(sd), low), high)
-        batch, sample = receive(self.bench, product, self.batch_number(product, day), by=team.analyst, made_on=day, size=SIZES[product])
+        batch, sample = receive(
+            self.bench,
+            product,
+            self.batch_number(product, day),
+            by=team.analyst,
+            made_on=day,
+            size=SIZES[product],
+        )
         do_run(self.bench, sample, TESTS[product], team, content=content, lots=self.lots)
         self.runs += 1
         return release(self.bench, batch, team)
@@ -130,9 +154,12 @@ class History:
     def control(self, code: str, method: str, value: float, day: date, team: Team) -> None:
         """A control sample, run like any other."""
         sample = record_sample(
-            by=team.analyst, number=f"{code}-{day:%y%m%d}", drawn_at=self.bench.clock.now, drawn_by=team.analyst.full_name,
+            by=team.analyst,
+            number=f"{code}-{day:%y%m%d}",
+            drawn_at=self.bench.clock.now,
+            drawn_by=team.analyst.full_name,
             control_sample=self.bench.lab.controls[code],
-        )  # fmt: skip
+        )
         do_run(self.bench, sample, method, team, content=value * (1 + self.bench.noise(0.0012)), lots=self.lots)
         self.runs += 1
 

@@ -8,7 +8,17 @@ from decimal import Decimal as D
 from typing import Any
 
 from labrecords.management.demo.certificate import certificate_pdf
-from labrecords.models import ControlSample, Instrument, Method, MethodVersion, Product, ReferenceStandard, Substance, Titrant, User
+from labrecords.models import (
+    ControlSample,
+    Instrument,
+    Method,
+    MethodVersion,
+    Product,
+    ReferenceStandard,
+    Substance,
+    Titrant,
+    User,
+)
 from labrecords.services.control_sample import record_control_sample
 from labrecords.services.instrument import record_calibration, record_instrument
 from labrecords.services.method import make_version_effective, record_method, record_version
@@ -97,7 +107,11 @@ def _registers(lab: Laboratory, start: date) -> None:
     administrator = lab.people[ADMINISTRATOR[0]]
     for name, formula, hazards, density in SUBSTANCES:
         lab.substances[name] = record_substance(
-            by=administrator, name=name, formula=formula, hazards=hazards, density=D(density) if density else None
+            by=administrator,
+            name=name,
+            formula=formula,
+            hazards=hazards,
+            density=D(density) if density else None,
         )
     for identifier, kind, description, capacity, unit, resolution, tolerance in INSTRUMENTS:
         instrument = record_instrument(
@@ -174,7 +188,9 @@ def record_product_effective(lab: Laboratory, code: str, name: str, *limits: dic
     lab.products[code] = product
 
 
-def record_control(lab: Laboratory, code: str, name: str, method: str, *, value: str, expanded: str, expires: date) -> None:
+def record_control(
+    lab: Laboratory, code: str, name: str, method: str, *, value: str, expanded: str, expires: date
+) -> None:
     """Record a control sample."""
     lab.controls[code] = record_control_sample(
         by=lab.people["mokafor"], code=code, name=name, method=lab.methods[method], assigned_value=D(value),

@@ -7,7 +7,10 @@ from decimal import Decimal as D
 from typing import Any
 
 from labrecords.management.demo.laboratory import (
-    Laboratory, record_control, record_method_effective, record_product_effective,
+    Laboratory,
+    record_control,
+    record_method_effective,
+    record_product_effective,
 )  # fmt: skip
 
 ACETIC = {"kind": "acid_base", "titrant": "base", "carbonate": 0.0, "activity": True,
@@ -18,68 +21,210 @@ PHENOLPHTHALEIN = {"endpoint": "indicator", "indicator": "phenolphthalein, first
                    "indicator_bias": D("0.02"), "indicator_u": D("0.01")}  # fmt: skip
 
 
+CONCORDANT: dict[str, Any] = {
+    "replicates_needed": 3,
+    "policy": "concordance",
+    "limit": D("0.10"),
+    "limit_kind": "range_mL",
+}
+PAIR: dict[str, Any] = {"replicates_needed": 2, "policy": "all", "limit_kind": "rsd_percent"}
+DIRECT: dict[str, Any] = {"titration": "direct", "coverage": "k2"}
+BY_VOLUME: dict[str, Any] = {"sample_by": "volume", "sample_unit": "mL"}
+BY_MASS: dict[str, Any] = {
+    "sample_by": "mass",
+    "sample_unit": "g",
+    "quantity": "mass_fraction",
+    "unit": "%",
+    "places": 2,
+}
+
+
 def record_methods(lab: Laboratory) -> None:
     """Each method as a recipe a bench could follow."""
-    naoh, hcl, silver = lab.titrants["NaOH-0.1"], lab.titrants["HCl-0.1"], lab.titrants["AgNO3-0.1"]
-    concordant: dict[str, Any] = {"replicates_needed": 3, "policy": "concordance", "limit": D("0.10"), "limit_kind": "range_mL"}
-    pair: dict[str, Any] = {"replicates_needed": 2, "policy": "all", "limit_kind": "rsd_percent"}
-    direct: dict[str, Any] = {"titration": "direct", "coverage": "k2"}
-    by_volume: dict[str, Any] = {"sample_by": "volume", "sample_unit": "mL"}
-    by_mass: dict[str, Any] = {"sample_by": "mass", "sample_unit": "g", "quantity": "mass_fraction", "unit": "%", "places": 2}
+    for record in (_vinegar, _vinegar_curve, _effluent, _brine, _descaler, _scale):
+        record(lab)
+
+
+def _vinegar(lab: Laboratory) -> None:
     record_method_effective(
-        lab, "TA-VIN", "Titratable acidity", titrant=naoh, expressed_as=lab.substances["acetic acid"], ratio="1",
-        sample_amount=D("10"), dilutions=[{"flask": "100", "aliquot": "20"}], blanks_needed=1,
-        quantity="mass_concentration", unit="g/100 mL", places=3, **direct, **by_volume, **concordant, **PHENOLPHTHALEIN,
-        instructions="Pipette 10 mL of vinegar into a 100 mL flask, fill to the mark, mix.\nTitrate 20 mL with sodium hydroxide 0.1 mol/L to the first pale pink that lasts 30 s.",
-    )  # fmt: skip
+        lab,
+        "TA-VIN",
+        "Titratable acidity",
+        titrant=lab.titrants["NaOH-0.1"],
+        expressed_as=lab.substances["acetic acid"],
+        ratio="1",
+        sample_amount=D("10"),
+        dilutions=[{"flask": "100", "aliquot": "20"}],
+        blanks_needed=1,
+        quantity="mass_concentration",
+        unit="g/100 mL",
+        places=3,
+        **DIRECT,
+        **BY_VOLUME,
+        **CONCORDANT,
+        **PHENOLPHTHALEIN,
+        instructions=(
+            "Pipette 10 mL of vinegar into a 100 mL flask, fill to the mark, mix.\nTitrate "
+            "20 mL with sodium hydroxide 0.1 mol/L to the first pale pink that lasts 30 s."
+        ),
+    )
+
+
+def _vinegar_curve(lab: Laboratory) -> None:
     record_method_effective(
-        lab, "TA-VIN-C", "Titratable acidity by curve", titrant=naoh, expressed_as=lab.substances["acetic acid"],
-        ratio="1", sample_amount=D("2"), quantity="mass_concentration", unit="g/100 mL", places=3, endpoint="curve",
-        curve_quantity="pH", deciding_family="model", checking_family="gran", system=ACETIC, initial_volume=D("60"),
-        limit=D("0.5"), **direct, **by_volume, **pair,
-        instructions="Pipette 2 mL of vinegar into 58 mL of water.\nRecord the pH against the volume of sodium hydroxide 0.1 mol/L to 1.5 times the endpoint.",
-    )  # fmt: skip
+        lab,
+        "TA-VIN-C",
+        "Titratable acidity by curve",
+        titrant=lab.titrants["NaOH-0.1"],
+        expressed_as=lab.substances["acetic acid"],
+        ratio="1",
+        sample_amount=D("2"),
+        quantity="mass_concentration",
+        unit="g/100 mL",
+        places=3,
+        endpoint="curve",
+        curve_quantity="pH",
+        deciding_family="model",
+        checking_family="gran",
+        system=ACETIC,
+        initial_volume=D("60"),
+        limit=D("0.5"),
+        **DIRECT,
+        **BY_VOLUME,
+        **PAIR,
+        instructions=(
+            "Pipette 2 mL of vinegar into 58 mL of water.\nRecord the pH against "
+            "the volume of sodium hydroxide 0.1 mol/L to 1.5 times the endpoint."
+        ),
+    )
+
+
+def _effluent(lab: Laboratory) -> None:
     record_method_effective(
-        lab, "ALK-EFF", "Alkalinity to pH 4.5", titrant=hcl, expressed_as=lab.substances["calcium carbonate"],
-        ratio="1/2", sample_amount=D("100"), quantity="mass_concentration", unit="mg/L", places=1, endpoint="curve",
-        curve_quantity="pH", deciding_family="fixed", checking_family="derivative", fixed_reading=D("4.5"),
-        initial_volume=D("100"), limit=D("3"), agreement_limit=D("6"), **direct, **by_volume, **pair,
-        instructions="Pipette 100 mL of effluent, do not filter.\nRecord the pH while hydrochloric acid 0.1 mol/L is added, to below pH 3.5.",
-    )  # fmt: skip
+        lab,
+        "ALK-EFF",
+        "Alkalinity to pH 4.5",
+        titrant=lab.titrants["HCl-0.1"],
+        expressed_as=lab.substances["calcium carbonate"],
+        ratio="1/2",
+        sample_amount=D("100"),
+        quantity="mass_concentration",
+        unit="mg/L",
+        places=1,
+        endpoint="curve",
+        curve_quantity="pH",
+        deciding_family="fixed",
+        checking_family="derivative",
+        fixed_reading=D("4.5"),
+        initial_volume=D("100"),
+        limit=D("3"),
+        agreement_limit=D("6"),
+        **DIRECT,
+        **BY_VOLUME,
+        **PAIR,
+        instructions=(
+            "Pipette 100 mL of effluent, do not filter.\nRecord the pH "
+            "while hydrochloric acid 0.1 mol/L is added, to below pH 3.5."
+        ),
+    )
+
+
+def _brine(lab: Laboratory) -> None:
     record_method_effective(
-        lab, "CL-BRN", "Chloride as sodium chloride", titrant=silver, expressed_as=lab.substances["sodium chloride"],
-        ratio="1", sample_amount=D("5"), dilutions=[{"flask": "100", "aliquot": "10"}], quantity="mass_concentration",
-        unit="g/L", places=2, endpoint="curve", curve_quantity="mV", deciding_family="model",
-        checking_family="derivative", system=CHLORIDE, initial_volume=D("60"), limit=D("1"), **direct, **by_volume, **pair,
-        instructions="Pipette 5 mL of brine into a 100 mL flask, fill to the mark.\nTitrate 10 mL in 50 mL of water and 1 mL of dilute nitric acid with silver nitrate 0.1 mol/L; record the potential.",
-    )  # fmt: skip
+        lab,
+        "CL-BRN",
+        "Chloride as sodium chloride",
+        titrant=lab.titrants["AgNO3-0.1"],
+        expressed_as=lab.substances["sodium chloride"],
+        ratio="1",
+        sample_amount=D("5"),
+        dilutions=[{"flask": "100", "aliquot": "10"}],
+        quantity="mass_concentration",
+        unit="g/L",
+        places=2,
+        endpoint="curve",
+        curve_quantity="mV",
+        deciding_family="model",
+        checking_family="derivative",
+        system=CHLORIDE,
+        initial_volume=D("60"),
+        limit=D("1"),
+        **DIRECT,
+        **BY_VOLUME,
+        **PAIR,
+        instructions=(
+            "Pipette 5 mL of brine into a 100 mL flask, fill to the mark.\nTitrate 10 mL in 50 mL of "
+            "water and 1 mL of dilute nitric acid with silver nitrate 0.1 mol/L; record the potential."
+        ),
+    )
+
+
+def _descaler(lab: Laboratory) -> None:
     record_method_effective(
-        lab, "CIT-DSC", "Citric acid in descaler powder", titrant=naoh, expressed_as=lab.substances["citric acid"],
-        ratio="1/3", sample_amount=D("0.13"), limit=D("0.60"), replicates_needed=3, policy="all", limit_kind="rsd_percent",
-        **direct, **by_mass, **PHENOLPHTHALEIN,
-        instructions="Weigh 0.13 g of powder, dissolve in 50 mL of water free of carbon dioxide.\nTitrate with sodium hydroxide 0.1 mol/L.",
-    )  # fmt: skip
+        lab,
+        "CIT-DSC",
+        "Citric acid in descaler powder",
+        titrant=lab.titrants["NaOH-0.1"],
+        expressed_as=lab.substances["citric acid"],
+        ratio="1/3",
+        sample_amount=D("0.13"),
+        limit=D("0.60"),
+        replicates_needed=3,
+        policy="all",
+        limit_kind="rsd_percent",
+        **DIRECT,
+        **BY_MASS,
+        **PHENOLPHTHALEIN,
+        instructions=(
+            "Weigh 0.13 g of powder, dissolve in 50 mL of water free of "
+            "carbon dioxide.\nTitrate with sodium hydroxide 0.1 mol/L."
+        ),
+    )
+
+
+def _scale(lab: Laboratory) -> None:
     record_method_effective(
-        lab, "CAC-SCL", "Calcium carbonate in scale", titrant=naoh, excess_titrant=hcl, excess_volume=D("50"),
-        expressed_as=lab.substances["calcium carbonate"], titration="back", ratio="1/2", sample_amount=D("0.15"),
-        limit=D("1.0"), coverage="k2", **by_mass, **pair, **PHENOLPHTHALEIN,
-        instructions="Weigh 0.15 g of dried scale. Add 50 mL of hydrochloric acid 0.1 mol/L slowly: carbon dioxide escapes. Boil gently, cool.\nTitrate what is left with sodium hydroxide 0.1 mol/L.",
-    )  # fmt: skip
+        lab,
+        "CAC-SCL",
+        "Calcium carbonate in scale",
+        titrant=lab.titrants["NaOH-0.1"],
+        excess_titrant=lab.titrants["HCl-0.1"],
+        excess_volume=D("50"),
+        expressed_as=lab.substances["calcium carbonate"],
+        titration="back",
+        ratio="1/2",
+        sample_amount=D("0.15"),
+        limit=D("1.0"),
+        coverage="k2",
+        **BY_MASS,
+        **PAIR,
+        **PHENOLPHTHALEIN,
+        instructions=(
+            "Weigh 0.15 g of dried scale. Add 50 mL of hydrochloric acid 0.1 mol/L slowly: carbon "
+            "dioxide escapes. Boil gently, cool.\nTitrate what is left with sodium hydroxide 0.1 mol/L."
+        ),
+    )
+
+
+PRODUCTS: list[tuple[str, str, str, dict[str, Any]]] = [
+    ("TV", "Table vinegar 6 %", "TA-VIN", {"lower": D("6.00"), "upper": D("6.40"), "places": 2}),
+    ("PV", "Pickling vinegar 5 %", "TA-VIN-C", {"lower": D("5.00"), "upper": D("5.40"), "places": 2}),
+    ("PB", "Pickling brine", "CL-BRN", {"lower": D("95.0"), "upper": D("105.0"), "places": 1, "rule": "guard"}),
+    ("DP", "Descaler powder", "CIT-DSC", {"lower": D("94.0"), "places": 1}),
+    ("EF", "Treated effluent", "ALK-EFF", {"lower": D(60), "upper": D(350), "places": 0, "rounding": "half_even"}),
+    ("SL", "Recovered scale", "CAC-SCL", {"lower": D("80.0"), "places": 1}),
+]
+CONTROLS = [
+    ("CS-VIN", "Acetic acid control solution", "TA-VIN", "6.203", "0.020"),
+    ("CS-BRN", "Sodium chloride control solution", "CL-BRN", "100.4", "0.5"),
+]
 
 
 def record_products(lab: Laboratory, start: date) -> None:
     """Products with the limits of their tests, and the materials that watch the methods."""
-    def limit(code: str, **more: Any) -> dict[str, Any]:
-        version = lab.versions[code]
-        line = {"method": lab.methods[code], "lower": None, "upper": None, "unit": version.unit, "rounding": "half_up", "rule": "simple"}
-        return line | more
-
-    record_product_effective(lab, "TV", "Table vinegar 6 %", limit("TA-VIN", lower=D("6.00"), upper=D("6.40"), places=2))
-    record_product_effective(lab, "PV", "Pickling vinegar 5 %", limit("TA-VIN-C", lower=D("5.00"), upper=D("5.40"), places=2))
-    record_product_effective(lab, "PB", "Pickling brine", limit("CL-BRN", lower=D("95.0"), upper=D("105.0"), places=1, rule="guard"))
-    record_product_effective(lab, "DP", "Descaler powder", limit("CIT-DSC", lower=D("94.0"), places=1))
-    record_product_effective(lab, "EF", "Treated effluent", limit("ALK-EFF", lower=D("60"), upper=D("350"), places=0, rounding="half_even"))
-    record_product_effective(lab, "SL", "Recovered scale", limit("CAC-SCL", lower=D("80.0"), places=1))
-    expires = start + timedelta(days=400)
-    record_control(lab, "CS-VIN", "Acetic acid control solution", "TA-VIN", value="6.203", expanded="0.020", expires=expires)
-    record_control(lab, "CS-BRN", "Sodium chloride control solution", "CL-BRN", value="100.4", expanded="0.5", expires=expires)
+    for code, name, test, limits in PRODUCTS:
+        usual = {"lower": None, "upper": None, "rounding": "half_up", "rule": "simple", "unit": lab.versions[test].unit}
+        record_product_effective(lab, code, name, {"method": lab.methods[test], **usual, **limits})
+    for code, name, method, value, expanded in CONTROLS:
+        expires = start + timedelta(days=400)
+        record_control(lab, code, name, method, value=value, expanded=expanded, expires=expires)

@@ -7,8 +7,8 @@ from typing import TYPE_CHECKING
 
 from labrecords.management.demo.work import Team, begin_run, do_run, receive, release, titrate_run
 from labrecords.models import Conclusion, Investigation, Question, Run, TitrantLot, User
-from labrecords.rules.investigation import CHECKLIST
 from labrecords.rules.calculation import objections_to_latest_calculation
+from labrecords.rules.investigation import CHECKLIST
 from labrecords.services.batch import reject_batch
 from labrecords.services.investigation import assess_investigation, close_investigation, plan_retests
 from labrecords.services.question import answer_question
@@ -21,7 +21,13 @@ if TYPE_CHECKING:
     from labrecords.management.demo.history import History
 
 LEAST_DAYS = 180  # a shorter history has no room for the stories
-DAYS_BEFORE_END = {100: "overrun", 82: "cause_found", 51: "confirmed", 16: "drift_noticed", 9: "standard_withdrawn"}
+DAYS_BEFORE_END = {
+    100: "overrun",
+    82: "cause_found",
+    51: "confirmed",
+    16: "drift_noticed",
+    9: "standard_withdrawn",
+}
 
 
 def tell(history: History, day: date, team: Team, *, days_left: int) -> None:
@@ -38,13 +44,30 @@ def overrun(history: History, day: date, team: Team) -> None:
     run = begin_run(bench, sample, "TA-VIN", by=team.analyst, lots=history.lots)
     lot = history.lots["NaOH-0.1"].number
     first = bench.rows(run, "sample")[0]
-    bench.titrate(first, 6.21 * 10 / 60.052 * 2 / bench.true[lot] + 0.9, by=team.analyst, amount="10", burette=("B-07", 50.0))
-    exclude_replicate(first, by=team.analyst, cause="overrun", sentence="The tap was closed late, the solution was deep magenta.")
+    bench.titrate(
+        first,
+        6.21 * 10 / 60.052 * 2 / bench.true[lot] + 0.9,
+        by=team.analyst,
+        amount="10",
+        burette=("B-07", 50.0),
+    )
+    exclude_replicate(
+        first,
+        by=team.analyst,
+        cause="overrun",
+        sentence="The tap was closed late, the solution was deep magenta.",
+    )
     bench.another(run, by=team.analyst)
     for blank in bench.rows(run, "blank"):
         bench.titrate(blank, 0.03, by=team.analyst, amount=None, burette=("B-07", 50.0))
     for row in [item for item in bench.rows(run, "sample") if not item.is_excluded]:
-        bench.titrate(row, 6.21 * 10 / 60.052 * 2 / bench.true[lot] + 0.03, by=team.analyst, amount="10", burette=("B-07", 50.0))
+        bench.titrate(
+            row,
+            6.21 * 10 / 60.052 * 2 / bench.true[lot] + 0.03,
+            by=team.analyst,
+            amount="10",
+            burette=("B-07", 50.0),
+        )
     bench.compute(run)
     _finish(history, run, team)
     release(bench, batch, team)
@@ -56,11 +79,17 @@ def cause_found(history: History, day: date, team: Team) -> None:
     batch, sample = receive(bench, "TV", history.batch_number("TV", day), by=team.analyst, made_on=day, size="6 000 L")
     run = do_run(bench, sample, "TA-VIN", team, content=5.55, lots=history.lots)
     investigation = Investigation.objects.get(run=run)
-    _assess(history, investigation, by=supervisor, instruments=("no", "The aliquot was taken with a 25 mL pipette that had been filled to an old mark."))
+    _assess(
+        history,
+        investigation,
+        by=supervisor,
+        instruments=("no", "The aliquot was taken with a 25 mL pipette that had been filled to an old mark."),
+    )
     close_investigation(
         investigation, by=supervisor, credentials=bench.lab.credentials(supervisor.username),
         conclusion=Conclusion.ASSIGNABLE_CAUSE, cause="The aliquot pipette was filled to a wrong mark.",
-        text="The pipette and the bench note agree: the aliquot was about ten per cent short. The run is void and repeated.",
+        text=("The pipette and the bench note agree: the aliquot was "
+"about ten per cent short. The run is void and repeated."),
     )  # fmt: skip
     bench.clock.step(30)
     again = do_run(bench, sample, "TA-VIN", team, content=6.19, lots=history.lots)
@@ -79,12 +108,21 @@ def confirmed(history: History, day: date, team: Team) -> None:
     _assess(history, investigation, by=supervisor)
     plan_retests(
         investigation, by=supervisor, credentials=credentials, retests=2,
-        plan="Two retests from the same container by the other analyst; the result is confirmed when either is below the limit.",
+        plan=("Two retests from the same container by the other analyst; "
+"the result is confirmed when either is below the limit."),
     )  # fmt: skip
     other = history.bench.lab.people["tbrandvold" if team.analyst.username == "icastell" else "icastell"]
     for content in (92.2, 92.4):
         investigation.refresh_from_db()
-        retest = do_run(bench, sample, "CIT-DSC", Team(other, supervisor), content=content, lots=history.lots, retest_for=investigation)
+        retest = do_run(
+            bench,
+            sample,
+            "CIT-DSC",
+            Team(other, supervisor),
+            content=content,
+            lots=history.lots,
+            retest_for=investigation,
+        )
         approve_run(retest, by=supervisor, credentials=credentials)
         history.runs += 1
     close_investigation(
@@ -92,21 +130,31 @@ def confirmed(history: History, day: date, team: Team) -> None:
         text="No laboratory error was found and both planned retests are below the limit. The result stands.",
     )  # fmt: skip
     approve_run(Run.objects.get(pk=run.pk), by=supervisor, credentials=credentials)
-    reject_batch(batch, by=supervisor, credentials=credentials, reason="Citric acid is below 94.0 %, confirmed by two retests.")
+    reject_batch(
+        batch,
+        by=supervisor,
+        credentials=credentials,
+        reason="Citric acid is below 94.0 %, confirmed by two retests.",
+    )
     history.runs += 1
 
 
 def drift_noticed(history: History, day: date, team: Team) -> None:
-    """The drifting lot of sodium hydroxide is taken out of use; what rests on it is not doubtful, it was restandardized."""
+    """The drifting lot is taken out of use; what rests on it is not doubtful, for it was restandardized."""
     supervisor = history.bench.lab.people["mokafor"]
     drifting = sorted(lot for lot in history.bench.true if lot.startswith("N"))[9]
     lot = TitrantLot.objects.get(number=drifting)
     if history.lots["NaOH-0.1"].pk == lot.pk or lot.state != "in use":
         return
     withdraw_lot(
-        lot, by=supervisor, credentials=history.bench.lab.credentials("mokafor"), is_doubtful=False,
-        reason="Its concentration fell week by week: the soda-lime tube was spent. Each week had its own standardization.",
-    )  # fmt: skip
+        lot,
+        by=supervisor,
+        credentials=history.bench.lab.credentials("mokafor"),
+        is_doubtful=False,
+        reason=(
+            "Its concentration fell week by week: the soda-lime tube was spent. Each week had its own standardization."
+        ),
+    )
 
 
 def standard_withdrawn(history: History, day: date, team: Team) -> None:
@@ -114,12 +162,18 @@ def standard_withdrawn(history: History, day: date, team: Team) -> None:
     bench, supervisor = history.bench, history.bench.lab.people["mokafor"]
     credentials = bench.lab.credentials("mokafor")
     standard = bench.lab.standards[f"KHP-{history.start:%y}-02"]
-    withdraw_standard(standard, by=supervisor, credentials=credentials, reason="The producer reports moisture in part of this lot.")
+    withdraw_standard(
+        standard,
+        by=supervisor,
+        credentials=credentials,
+        reason="The producer reports moisture in part of this lot.",
+    )
     for question in Question.objects.filter(answered_at__isnull=True).order_by("id")[:12]:
         bench.clock.step(4)
         answer_question(
             question, by=supervisor, credentials=credentials,
-            answer="The bottle was dried at 120 °C before use, and control results of these days lie within their limits.",
+            answer=("The bottle was dried at 120 °C before use, and "
+"control results of these days lie within their limits."),
         )  # fmt: skip
 
 
@@ -128,7 +182,13 @@ def _finish(history: History, run: Run, team: Team) -> None:
     while objections_to_latest_calculation(run):
         row = bench.another(run, by=team.analyst)
         lot = history.lots["NaOH-0.1"].number
-        bench.titrate(row, 6.21 * 10 / 60.052 * 2 / bench.true[lot] + 0.03, by=team.analyst, amount="10", burette=("B-07", 50.0))
+        bench.titrate(
+            row,
+            6.21 * 10 / 60.052 * 2 / bench.true[lot] + 0.03,
+            by=team.analyst,
+            amount="10",
+            burette=("B-07", 50.0),
+        )
         bench.compute(run)
     submit_run(run, by=team.analyst, credentials=bench.lab.credentials(team.analyst.username))
     bench.clock.step(20)
@@ -136,7 +196,9 @@ def _finish(history: History, run: Run, team: Team) -> None:
     history.runs += 1
 
 
-def _assess(history: History, investigation: Investigation, *, by: User, instruments: tuple[str, str] = ("yes", "")) -> None:
+def _assess(
+    history: History, investigation: Investigation, *, by: User, instruments: tuple[str, str] = ("yes", "")
+) -> None:
     history.bench.clock.step(45)
     checklist = {key: {"answer": "yes", "note": ""} for key in CHECKLIST}
     checklist["instruments"] = {"answer": instruments[0], "note": instruments[1]}
@@ -158,7 +220,15 @@ def today(history: History, day: date) -> None:
     history.titrants(day, team)
     for product, urgent in (("TV", True), ("EF", False), ("PB", False)):
         bench.clock.step(7)
-        receive(bench, product, history.batch_number(product, day), by=team.analyst, made_on=day, size="", urgent=urgent)
+        receive(
+            bench,
+            product,
+            history.batch_number(product, day),
+            by=team.analyst,
+            made_on=day,
+            size="",
+            urgent=urgent,
+        )
     _, sample = receive(bench, "DP", history.batch_number("DP", day), by=team.analyst, made_on=day, size="800 kg")
     do_run(bench, sample, "CIT-DSC", team, content=96.0, lots=history.lots, approve=False)
     _, sample = receive(bench, "TV", history.batch_number("TV", day), by=team.analyst, made_on=day, size="6 000 L")

@@ -6,13 +6,17 @@ from dataclasses import dataclass
 from datetime import date, timedelta
 from decimal import Decimal as D
 
-from labrecords.management.demo.bench import CACO3, CITRIC, KHP, NACL, ACETIC_ACID, Bench
+from labrecords.management.demo.bench import ACETIC_ACID, CACO3, CITRIC, KHP, NACL, Bench
 from labrecords.models import Batch, Investigation, Run, Sample, Standardization, TitrantLot, User
 from labrecords.queries.calculation import latest_calculation
 from labrecords.rules.calculation import objections_to_latest_calculation
 from labrecords.services.batch import record_batch, record_sample, release_batch
 from labrecords.services.run import approve_run, start_run, submit_run
-from labrecords.services.standardization import approve_standardization, start_standardization, submit_standardization
+from labrecords.services.standardization import (
+    approve_standardization,
+    start_standardization,
+    submit_standardization,
+)
 from labrecords.services.titrant import record_lot
 
 BURETTE = ("B-07", 50.0)
@@ -20,7 +24,13 @@ PARTS = {
     "TA-VIN": {"burette": "B-07", "pipette": "P-10", "flask 1": "F-03", "aliquot 1": "P-20"},
     "TA-VIN-C": {"burette": "M-02", "pipette": "P-02", "electrode": "E-04"},
     "ALK-EFF": {"burette": "M-02", "pipette": "P-100", "electrode": "E-04"},
-    "CL-BRN": {"burette": "M-02", "pipette": "P-05", "flask 1": "F-03", "aliquot 1": "P-10", "electrode": "E-06"},
+    "CL-BRN": {
+        "burette": "M-02",
+        "pipette": "P-05",
+        "flask 1": "F-03",
+        "aliquot 1": "P-10",
+        "electrode": "E-06",
+    },
     "CIT-DSC": {"burette": "B-07", "balance": "W-01"},
     "CAC-SCL": {"burette": "B-07", "balance": "W-01", "excess pipette": "P-50"},
 }
@@ -45,7 +55,14 @@ def prepare_lot(bench: Bench, titrant: str, number: str, *, by: User, true: floa
     )  # fmt: skip
 
 
-def standardize(bench: Bench, lot: TitrantLot, team: Team, *, standard: str | None = None, against: TitrantLot | None = None) -> Standardization:
+def standardize(
+    bench: Bench,
+    lot: TitrantLot,
+    team: Team,
+    *,
+    standard: str | None = None,
+    against: TitrantLot | None = None,
+) -> Standardization:
     """Standardize a lot, have it reviewed, and leave it in force."""
     lab, by = bench.lab, team.analyst
     parts = {"burette": "B-07", "balance": "W-01"} if standard else {"burette": "B-07", "pipette": "P-20"}
@@ -68,7 +85,9 @@ def standardize(bench: Bench, lot: TitrantLot, team: Team, *, standard: str | No
     return approve_standardization(record, by=team.supervisor, credentials=lab.credentials(team.supervisor.username))
 
 
-def _standard_titration(bench: Bench, row, lot: TitrantLot, *, by: User, standard: str | None, against: TitrantLot | None) -> None:  # type: ignore[no-untyped-def]
+def _standard_titration(
+    bench: Bench, row, lot: TitrantLot, *, by: User, standard: str | None, against: TitrantLot | None
+) -> None:  # type: ignore[no-untyped-def]
     true = bench.true[lot.number]
     if against is not None:
         titre = bench.true[against.number] * 20.0 / true + 0.03
@@ -113,7 +132,15 @@ def _one_titration(bench: Bench, run: Run, row, *, by: User, content: float, lot
         bench.titrate(row, left / c + 0.02, by=by, amount=f"{mass:.4f}", burette=BURETTE)
 
 
-def begin_run(bench: Bench, sample: Sample, code: str, *, by: User, lots: dict[str, TitrantLot], retest_for: Investigation | None = None) -> Run:
+def begin_run(
+    bench: Bench,
+    sample: Sample,
+    code: str,
+    *,
+    by: User,
+    lots: dict[str, TitrantLot],
+    retest_for: Investigation | None = None,
+) -> Run:
     """Start a run with the lots and instruments of the day."""
     version = bench.lab.versions[code]
     return start_run(
@@ -141,7 +168,9 @@ def do_run(
     return run
 
 
-def receive(bench: Bench, product: str, number: str, *, by: User, made_on: date, size: str, urgent: bool = False) -> tuple[Batch, Sample]:
+def receive(
+    bench: Bench, product: str, number: str, *, by: User, made_on: date, size: str, urgent: bool = False
+) -> tuple[Batch, Sample]:
     """Record a batch and the sample drawn from it."""
     batch = record_batch(by=by, number=number, product=bench.lab.products[product], made_on=made_on, size=size)
     sample = record_sample(
