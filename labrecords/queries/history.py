@@ -90,6 +90,12 @@ def sentence_of(event: AuditEvent) -> str:
     return f"{spoken} {noun.replace('_', ' ')}{subject}"
 
 
+def action_in_words(action: str) -> str:
+    """ "run.approve" is read "run: approved"."""
+    noun, _, verb = action.partition(".")
+    return f"{noun.replace('_', ' ')}: {VERBS.get(verb, verb.replace('_', ' '))}"
+
+
 def _details(change: AuditChange) -> list[str]:
     if change.operation == "INSERT" or not change.after:
         return []

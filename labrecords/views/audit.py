@@ -13,7 +13,7 @@ from labrecords.errors import Refused
 from labrecords.forms.audit import TrailForm
 from labrecords.models import AuditChange, AuditCheckpoint, AuditEvent
 from labrecords.queries.find import exact_match
-from labrecords.queries.history import line, sentence_of
+from labrecords.queries.history import action_in_words, line, sentence_of
 from labrecords.queries.integrity import checks, simulated_events
 from labrecords.queries.trail import (
     checkpoint_to_review,
@@ -144,7 +144,10 @@ def _to_review() -> dict[str, Any]:
         "last_review": last_review(),
         "start": start,
         "count": checkpoint.tree_size - start,
-        "counts": counts_of(events),
+        "counts": [
+            {"kind": action.partition(".")[0], "words": action_in_words(action), "count": count}
+            for action, count in counts_of(events).items()
+        ],
         "telling": [line(event) for event in telling_among(events)[:MOST_TELLING]],
         "telling_count": telling_among(events).count(),
     }

@@ -5,7 +5,6 @@ from __future__ import annotations
 import json
 from collections import Counter
 from collections.abc import Sequence
-from datetime import UTC, datetime
 from typing import Any
 
 from django.http import HttpRequest, HttpResponse, JsonResponse
@@ -17,6 +16,7 @@ from django.views.decorators.http import require_GET
 from labrecords import writing
 from labrecords.canonical import sha256_of
 from labrecords.documents.provenance import provenance_of_run
+from labrecords.documents.signed import laid_out
 from labrecords.figures.chain import chain
 from labrecords.models import (
     Batch,
@@ -112,7 +112,7 @@ def signed(request: HttpRequest, pk: int) -> HttpResponse:
     record = _record_signed(signature)
     context = {
         "signature": signature,
-        "content": _rows(json.loads(signature.content)),
+        "parts": laid_out(json.loads(signature.content), zone=timezone.get_current_timezone()),
         "is_whole": sha256_of(signature.content) == signature.content_sha256,
         "record": record,
         "history": sentences_about(record) if record else [],
@@ -257,21 +257,3 @@ def _record_signed(signature: Signature) -> Run | Standardization | None:
     if signature.noun == "standardization":
         return Standardization.objects.filter(pk=signature.record_id).first()
     return None
-
-
-def _rows(content: Any, *, name: str = "") -> list[tuple[str, str]]:
-    """Signed content as lines of a name and a value, in the words of its keys."""
-    if isinstance(content, dict):
-        return [row for key, item in content.items() for row in _rows(item, name=f"{name} {key}".strip())]
-    if isinstance(content, list):
-        return [row for place, item in enumerate(content, 1) for row in _rows(item, name=f"{name} {place}".strip())]
-    return [(name.replace("_", " "), _said(content, name=name))]
-
-
-def _said(value: Any, *, name: str) -> str:
-    """Moments are signed in microseconds since 1970."""
-    if value in (None, ""):
-        return "empty"
-    if name.endswith("_at") and str(value).isdigit():
-        return writing.when(timezone.localtime(datetime.fromtimestamp(int(value) / 1e6, tz=UTC)))
-    return str(value)

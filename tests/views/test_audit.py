@@ -170,7 +170,7 @@ def test_review_is_signed_over_the_root(desk: Client, auditor: User, supervisor:
     signature = Signature.objects.get(noun="trail")
     assert bytes(checkpoint.root_hash).hex() in signature.content
     assert (signature.signer, signature.record_id) == (auditor, checkpoint.tree_size)
-    assert f"Reviewed to place {checkpoint.tree_size - 1} " in shown(desk, "audit-list")
+    assert f"reviewed to place {checkpoint.tree_size - 1} " in shown(desk, "audit-list")
 
 
 def test_review_shows_what_happened_since_the_last_one(desk: Client, auditor: User, supervisor: User) -> None:
@@ -182,6 +182,7 @@ def test_review_shows_what_happened_since_the_last_one(desk: Client, auditor: Us
     seal_trail()
     told = shown(desk, "audit-review")
     assert "Maren Okafor corrected a reading of R-26-00001" in told
+    assert "replicate: corrected" in told
     assert f"2 events <small>from place {first.tree_size} " in told  # its own event is the other one
 
 

@@ -85,7 +85,9 @@ def test_everything_above_shows_the_run_below(reader: Client, run: Run, bench: B
 def test_signed_shows_the_readings_as_they_were_signed(reader: Client, run: Run) -> None:
     signature = Signature.objects.get(noun="run", record_id=run.pk, meaning="reviewed by")
     shown = page(reader, "lineage-signed", signature.pk)
-    assert '<th scope="row">replicates 2 end</th><td>12.30</td>' in shown
+    assert shown.count("<td>10.00</td>") == 3
+    assert shown.count("<td>12.30</td>") == 2
+    assert shown.count("<td>12.35</td>") == 1
     assert "unaltered" in shown
     assert "approved run" in shown
 
