@@ -45,6 +45,7 @@ from labrecords.queries.lineage import (
 from labrecords.queries.run import runs
 from labrecords.queries.standard import standardizations_using
 from labrecords.views.access import signed_in
+from labrecords.views.recording import page_of
 
 PAGES = {
     "run": "lineage-run",
@@ -205,7 +206,8 @@ def _down(
         "title": title,
         "back": back,
         "above": above,
-        "resting": resting,
+        "page_obj": page_of(request, resting),
+        "count": len(resting),
         "states": dict(Counter(row.state for row in resting)),
         "batches": sorted(by_batch.values(), key=lambda row: row.batch or "", reverse=True),
         "batch_states": dict(Counter(row.batch_state for row in by_batch.values())),

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from typing import Any
 
 from django.core.paginator import Page, Paginator
@@ -16,7 +16,7 @@ from labrecords.errors import Refused
 ROWS = 50
 
 
-def page_of(request: HttpRequest, found: QuerySet[Any]) -> Page[Any]:
+def page_of(request: HttpRequest, found: QuerySet[Any] | Sequence[Any]) -> Page[Any]:
     """Fifty rows of a list: the page that the address asks for, or the nearest one that exists."""
     return Paginator(found, ROWS).get_page(request.GET.get("page"))
 
