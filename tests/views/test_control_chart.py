@@ -12,9 +12,10 @@ from django.urls import reverse
 
 from labrecords.models import ControlChart, ControlLimits
 from labrecords.queries.control_chart import points_of
-from tests.factories.bench import Bench
+from tests.factories.bench import Bench, approved_standardization, some_version
 from tests.factories.charts import RULES, TITRES, add_point, limits_of, some_chart
 from tests.factories.people import typed_by
+from tests.factories.products import some_product
 
 pytestmark = pytest.mark.django_db
 
@@ -127,3 +128,11 @@ def test_list_asks_as_much_for_many_points_as_for_one(desk: Client, bench: Bench
     add_point(chart, bench, "12.35")
     with django_assert_num_queries(len(few)):
         shown(desk, "control_chart-list")
+
+
+def test_capability_says_each_limit_in_words(desk: Client, bench: Bench) -> None:
+    approved_standardization(bench)
+    some_product(bench, some_version(bench), upper=None)
+    told = shown(desk, "control_chart-capability")
+    assert "<td>at least 0.70 g/100 mL</td>" in told
+    assert "at least 20 results that vary are needed" in told
