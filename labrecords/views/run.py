@@ -14,10 +14,9 @@ from labrecords.errors import Refused
 from labrecords.forms.reading import clean_cell
 from labrecords.models import Investigation, MethodVersion, RecordState, Run, Sample
 from labrecords.queries.run import runs, runs_found
-from labrecords.queries.sheet import sheet_of
 from labrecords.services import run as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.sheet import preview_outputs, refused_sheet, sheet_context, shown, typed_credentials
+from labrecords.views.sheet import means_context, refused_sheet, sheet_context, typed_credentials
 from labrecords.views.start import run_choices, run_form
 
 
@@ -82,9 +81,7 @@ def result(request: HttpRequest, number: str) -> HttpResponse:
 @require_POST
 def preview(request: HttpRequest, number: str) -> HttpResponse:
     """What the cells as typed would mean; nothing is stored."""
-    run = _run(number)
-    sheet = sheet_of(run, outputs=preview_outputs(run, request.POST))
-    context = shown(sheet) | {"run": run, "noun": "run", "is_preview": True}
+    context = means_context(_run(number), request.POST, by=request.user)
     return render(request, "sheet/_means.html", context)
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Mapping
 from typing import Any
 
 from django.http import HttpRequest, HttpResponse, QueryDict
@@ -20,7 +21,7 @@ from labrecords.forms.signing import typed_components
 from labrecords.models import ExclusionCause, Run, Standardization, User
 from labrecords.queries.history import sentences_about
 from labrecords.queries.preview import preview
-from labrecords.queries.replicate import instruments_of
+from labrecords.queries.replicate import instruments_of, replicates_of
 from labrecords.queries.sheet import Sheet, sheet_of
 from labrecords.queries.signature import signatures_of
 from labrecords.queries.standardization import attempts_on_lot
@@ -136,14 +137,22 @@ def hazards_of(record: Record) -> list[str]:
     return sorted({hazard for lot in lots for hazard in lot.titrant.substance.hazards})
 
 
-def preview_outputs(record: Record, data: QueryDict) -> dict[str, Any]:
-    """Outputs for the cells as they are typed, named like "end-417"."""
-    typed = {}
-    for name, text in data.items():
-        cell = CELL.fullmatch(name)
-        if cell:
-            typed[(int(cell[2]), cell[1])] = clean_preview_cell(str(text))
-    return preview(record, typed=typed)
+def means_context(record: Record, data: QueryDict, *, by: User) -> dict[str, Any]:
+    """What the cells as typed mean, named like "end-417"; once all are kept and computed, the official result."""
+    cells = {name: CELL.fullmatch(name) for name in data}
+    typed = {(int(cell[2]), cell[1]): clean_preview_cell(str(data[name])) for name, cell in cells.items() if cell}
+    if is_kept(record, typed) and not sheet_of(record).is_waiting:
+        return sheet_context(record, by=by) | {"is_fragment": True}
+    noun = "run" if isinstance(record, Run) else "standardization"
+    context = shown(sheet_of(record, outputs=preview(record, typed=typed)))
+    return context | {noun: record, "noun": noun, "is_preview": True}
+
+
+def is_kept(record: Record, typed: Mapping[tuple[int, str], str | None]) -> bool:
+    """Whether every typed cell is what the record has."""
+    rows = {item.pk: item for item in replicates_of(record)}
+    kept = ((getattr(rows[pk], field), text) for (pk, field), text in typed.items() if pk in rows)
+    return all(text == (None if value is None else str(value)) for value, text in kept)
 
 
 def typed_credentials(data: QueryDict) -> tuple[Credentials, str]:

@@ -12,12 +12,11 @@ from django.views.decorators.http import require_GET, require_http_methods, requ
 
 from labrecords.errors import Refused
 from labrecords.models import RecordState, Standardization, TitrantLot
-from labrecords.queries.sheet import sheet_of
 from labrecords.queries.standardization import attempts_on_lot, standardizations, standardizations_found
 from labrecords.rules.cautions import cautions_for
 from labrecords.services import standardization as service
 from labrecords.views.access import for_roles, signed_in
-from labrecords.views.sheet import preview_outputs, refused_sheet, sheet_context, shown, typed_credentials
+from labrecords.views.sheet import means_context, refused_sheet, sheet_context, typed_credentials
 from labrecords.views.start import standardization_form
 
 
@@ -78,9 +77,7 @@ def result(request: HttpRequest, number: str) -> HttpResponse:
 @require_POST
 def preview(request: HttpRequest, number: str) -> HttpResponse:
     """What the cells as typed would mean; nothing is stored."""
-    record = _standardization(number)
-    sheet = sheet_of(record, outputs=preview_outputs(record, request.POST))
-    context = shown(sheet) | {"standardization": record, "noun": "standardization", "is_preview": True}
+    context = means_context(_standardization(number), request.POST, by=request.user)
     return render(request, "sheet/_means.html", context)
 
 

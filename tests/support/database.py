@@ -34,6 +34,7 @@ def django_db_setup(django_db_blocker: Any) -> Iterator[None]:
     yield
     with django_db_blocker.unblock():
         _become(None)
+        _end_other_sessions()
         teardown_databases(made, verbosity=0)
 
 
@@ -55,6 +56,17 @@ def _migrated_by_owner() -> Iterator[None]:
     finally:
         connection_created.disconnect(enter)
         connection.close()
+
+
+def _end_other_sessions() -> None:
+    """A site or a worker of a journey may still hold a connection."""
+    from django.db import connection
+
+    with connection.cursor() as cursor:
+        cursor.execute(
+            "SELECT pg_terminate_backend(pid) FROM pg_stat_activity"
+            " WHERE datname = current_database() AND pid <> pg_backend_pid()"
+        )
 
 
 def _become(role: str | None) -> None:
