@@ -195,6 +195,7 @@ lineage_urls = [
     path("find/", find.number, name="find-number"),
     path("lineage/", lineage.find, name="lineage-find"),
     path("lineage/runs/<str:number>/", lineage.run, name="lineage-run"),
+    path("lineage/runs/<str:number>/dossier/", lineage.dossier, name="lineage-dossier"),
     path("lineage/runs/<str:number>/provenance/", lineage.provenance, name="lineage-provenance"),
     path("lineage/standardizations/<str:number>/", lineage.standardization, name="lineage-standardization"),
     path("lineage/lots/<str:number>/", lineage.lot, name="lineage-lot"),

@@ -13,17 +13,16 @@ from django.urls import reverse
 from django.utils import timezone
 from django.views.decorators.http import require_GET
 
-from labrecords import writing
 from labrecords.canonical import sha256_of
+from labrecords.documents.dossier import dossier_of_run
 from labrecords.documents.provenance import provenance_of_run
 from labrecords.documents.signed import laid_out
-from labrecords.figures.chain import chain
+from labrecords.figures.chain_of_run import chains_of_run
 from labrecords.models import (
     Batch,
     Instrument,
     Investigation,
     ReferenceStandard,
-    Run,
     Sample,
     Signature,
     Standardization,
@@ -43,6 +42,7 @@ from labrecords.queries.lineage import (
     signatures_on_chain,
 )
 from labrecords.queries.run import runs
+from labrecords.queries.signature import record_signed
 from labrecords.queries.standard import standardizations_using
 from labrecords.views.access import signed_in
 from labrecords.views.recording import page_of
@@ -56,7 +56,6 @@ PAGES = {
     "batch": "lineage-batch",
     "sample": "lineage-sample",
 }
-VIA = ("titrant", "excess solution")
 
 
 @signed_in
@@ -80,7 +79,7 @@ def run(request: HttpRequest, number: str) -> HttpResponse:
     context = {
         "run": record,
         "links": links,
-        "chains": _drawings(record, links),
+        "chains": chains_of_run(record, links),
         "instruments": instruments_on_chain(record, links),
         "signatures": signatures_on_chain(record, links),
         "calculation": record.calculation,
@@ -107,10 +106,20 @@ def provenance(request: HttpRequest, number: str) -> HttpResponse:
 
 @signed_in
 @require_GET
+def dossier(request: HttpRequest, number: str) -> HttpResponse:
+    """Everything a result rests on in one file that can be checked without the site."""
+    record = get_object_or_404(runs(), number=number)
+    answer = HttpResponse(dossier_of_run(record), content_type="application/zip")
+    answer["Content-Disposition"] = f'attachment; filename="{record.number}-dossier.zip"'
+    return answer
+
+
+@signed_in
+@require_GET
 def signed(request: HttpRequest, pk: int) -> HttpResponse:
     """A record as it stood when it was signed, and what became of it since."""
     signature = get_object_or_404(Signature.objects.select_related("signer"), pk=pk)
-    record = _record_signed(signature)
+    record = record_signed(signature)
     context = {
         "signature": signature,
         "parts": laid_out(json.loads(signature.content), zone=timezone.get_current_timezone()),
@@ -214,48 +223,3 @@ def _down(
         "in_question": sum(row.in_question for row in resting),
     }
     return render(request, "lineage/down.html", context)
-
-
-def _drawings(record: Run, links: Sequence[ChainLink]) -> list[str]:
-    by_via = [[link for link in links if link.via == via] for via in VIA]
-    return [chain(_marks(record, found)[::-1]) for found in by_via if found]
-
-
-def _marks(record: Run, links: Sequence[ChainLink]) -> list[dict[str, Any]]:
-    """The chain as it is drawn: the result first, then the standardizations, then the certificate."""
-    marks = [
-        _mark(
-            record.number, record.method_version.method.title, page="run-sheet", state=record.state,
-            who=record.started_by.full_name, when=writing.day(record.started_at),
-        )
-    ]  # fmt: skip
-    for link in links:
-        marks.append(
-            _mark(
-                link.number, f"lot {link.lot}", page="standardization-sheet", state=link.state,
-                who=link.started_by, when=writing.day(link.started_at),
-            )
-        )  # fmt: skip
-        if link.standard:
-            marks.append(
-                _mark(
-                    link.standard, link.substance, page="standard-detail", state=link.standard_state,
-                    who=link.certificate, when="",
-                )
-            )  # fmt: skip
-    return marks
-
-
-def _mark(
-    number: str, title: str | None, *, page: str, state: str | None, who: str | None, when: str
-) -> dict[str, Any]:
-    told = {"title": title or "", "state": state or "", "who": who or "", "when": when}
-    return {"number": number, "url": reverse(page, args=[number]), **told}
-
-
-def _record_signed(signature: Signature) -> Run | Standardization | None:
-    if signature.noun == "run":
-        return Run.objects.filter(pk=signature.record_id).first()
-    if signature.noun == "standardization":
-        return Standardization.objects.filter(pk=signature.record_id).first()
-    return None

@@ -119,3 +119,10 @@ def test_batch_and_investigation_lead_to_their_runs(reader: Client, bench: Bench
     assert "does not conform" in shown
     assert "1 <small>1 testing</small>" in shown
     assert reverse("lineage-batch", args=[batch.number]) in page(reader, "lineage-run", run.number)
+
+
+def test_dossier_is_saved_as_a_file(reader: Client, run: Run) -> None:
+    answer = reader.get(reverse("lineage-dossier", args=[run.number]))
+    assert answer["Content-Disposition"] == f'attachment; filename="{run.number}-dossier.zip"'
+    assert answer.content.startswith(b"PK")
+    assert reverse("lineage-dossier", args=[run.number]) in page(reader, "lineage-run", run.number)
