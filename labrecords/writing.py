@@ -36,6 +36,16 @@ def reading(value: Number) -> str:
     return _signed(f"{abs(number):f}", negative=number < 0)
 
 
+def short(value: Number) -> str:
+    """A stored number without the zeros that only its column adds: 0.2500 is written 0.25, 50.0000 is 50."""
+    return reading(as_decimal(value).normalize())
+
+
+def limit(value: Number, *, digits: int) -> str:
+    """A limit with the decimals it is compared at, or with more where it has more."""
+    return max(short(value), places(value, digits=digits), key=len)
+
+
 def pointed(value: Number, *, digits: int) -> str:
     """A number padded with spaces as wide as figures, so that a right-aligned column meets at the point."""
     text = reading(value)

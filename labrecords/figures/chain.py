@@ -10,7 +10,7 @@ from django.utils.safestring import SafeString
 
 from labrecords.figures import svg
 
-STEP, BOX, HIGH = 196, 164, 48
+STEP, BOX, HIGH = 204, 172, 48
 LONGEST = 25
 MARKS = {
     "teal": "M-4 0L-1 3.5L5 -4",

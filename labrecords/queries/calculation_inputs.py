@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from decimal import Decimal
 from typing import Any
 
 import analysis
+from labrecords import writing
 from labrecords.models import (
     Basis,
     Calculation,
@@ -225,13 +227,18 @@ def _specification(run: Run) -> dict[str, Any] | None:
     if limit is None:
         return None
     return {
-        "lower": as_text(limit.lower),
-        "upper": as_text(limit.upper),
+        "lower": _as_compared(limit.lower, places=limit.places),
+        "upper": _as_compared(limit.upper, places=limit.places),
         "places": limit.places,
         "rounding": limit.rounding,
         "rule": limit.rule,
         "guard_factor": str(limit.guard_factor),
     }
+
+
+def _as_compared(bound: Decimal | None, *, places: int) -> str | None:
+    """A limit with the decimals it is compared at: 6.400000 of its column is 6.40."""
+    return None if bound is None else writing.limit(bound, digits=places).replace(writing.MINUS, "-")
 
 
 def _key(used: UsedInstrument) -> str:

@@ -79,6 +79,18 @@ def reading(value: Any) -> str:
 
 
 @register.filter
+def short(value: Any) -> str:
+    """``{{ limit|short }}``: without the zeros that only the column adds."""
+    return DASH if _missing(value) else writing.short(value)
+
+
+@register.filter
+def limit(value: Any, digits: int) -> str:
+    """``{{ limit.lower|limit:limit.places }}``: with the decimals it is compared at."""
+    return "" if _missing(value) else writing.limit(value, digits=int(digits))
+
+
+@register.filter
 def pointed(value: Any, digits: int) -> str:
     """``{{ reading|pointed:4 }}``: a column of different places meets at the point."""
     return "" if _missing(value) else writing.pointed(value, digits=int(digits))

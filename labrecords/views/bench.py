@@ -19,17 +19,16 @@ def list(request: HttpRequest) -> HttpResponse:
     """Samples waiting, my open sheets, lots in use, what is due."""
     now = timezone.now()
     runs, standardizations = open_sheets_of(request.user)
-    return render(
-        request,
-        "bench/list.html",
-        {
-            "samples": samples_waiting()[:40],
-            "runs": runs,
-            "standardizations": standardizations,
-            "lots": [{"item": item, "fitness": _fitness(item)} for item in lots_in_use(at=now)],
-            "calibrations": calibrations_due(at=now),
-        },
-    )
+    lots = lots_in_use(at=now)
+    context = {
+        "samples": samples_waiting()[:40],
+        "runs": runs,
+        "standardizations": standardizations,
+        "lots": [{"item": item, "fitness": _fitness(item)} for item in lots if item.standardization],
+        "waiting_lots": [item for item in lots if not item.standardization],
+        "calibrations": calibrations_due(at=now),
+    }
+    return render(request, "bench/list.html", context)
 
 
 def _fitness(item: LotInUse) -> str:

@@ -10,6 +10,7 @@ from django.http import HttpRequest, HttpResponse, QueryDict
 from django.shortcuts import render
 from django.urls import reverse
 
+from labrecords import writing
 from labrecords.errors import Refused
 from labrecords.figures.budget import share_bar
 from labrecords.figures.curve import curve_figure
@@ -90,7 +91,9 @@ def words_of(record: Record) -> dict[str, Any]:
     is_run = isinstance(record, Run)
     method = record.method_version if is_run else record.lot.titrant
     takes_curve = is_run and method.endpoint == "curve"
-    limit = f"range up to {method.limit:g} mL" if method.limit_kind == "range_mL" else f"RSD up to {method.limit:g} %"
+    limit = f"range up to {writing.short(method.limit)} mL"
+    if method.limit_kind != "range_mL":
+        limit = f"RSD up to {writing.short(method.limit)} %"
     return {
         "amount_label": "Sample" if is_run else "Standard",
         "amount_unit": expected_amount(record)[0],

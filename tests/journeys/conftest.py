@@ -50,8 +50,9 @@ class Person:
 
     def type_cells(self, field: str, values: list[str], *, skip: int = 0) -> None:
         """Type a column of the sheet, leaving each cell with Enter, and wait until each is kept."""
-        self.page.wait_for_load_state()
         cells = self.page.locator(f"input[name^='{field}-']")
+        cells.first.wait_for()
+        self.page.wait_for_load_state()  # the scripts of the sheet are there
         for place, value in enumerate(values, start=skip):
             cell = cells.nth(place)
             cell.fill(value)
