@@ -5,7 +5,7 @@ from __future__ import annotations
 from django.urls import path
 from drf_spectacular.views import SpectacularAPIView
 
-from labrecords.api import instrument, standard, substance, titrant, titrant_lot
+from labrecords.api import batch, instrument, run, standard, substance, titrant, titrant_lot
 
 app_name = "api"
 
@@ -32,10 +32,22 @@ titrant_urls = [
     path("lots/<str:number>/", titrant_lot.detail, name="titrant_lot-detail"),
 ]
 
+run_urls = [
+    path("runs/", run.list, name="run-list"),
+    path("runs/<str:number>/", run.detail, name="run-detail"),
+]
+
+batch_urls = [
+    path("batches/", batch.list, name="batch-list"),
+    path("batches/<str:number>/", batch.detail, name="batch-detail"),
+]
+
 urlpatterns = [
     path("schema/", SpectacularAPIView.as_view(), name="schema"),
     *substance_urls,
     *instrument_urls,
     *standard_urls,
     *titrant_urls,
+    *run_urls,
+    *batch_urls,
 ]
