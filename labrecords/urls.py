@@ -176,6 +176,7 @@ product_urls = [
     path("products/record/", product.record, name="product-record"),
     path("products/specifications/<int:pk>/effective/", product.make_effective, name="product-make_effective"),
     path("products/<str:code>/", product.detail, name="product-detail"),
+    path("products/<str:code>/supersede/", product.supersede, name="product-supersede"),
     path("products/<str:code>/specify/", product.specify, name="product-specify"),
 ]
 

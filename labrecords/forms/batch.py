@@ -165,6 +165,12 @@ class ProductForm(forms.Form):
     name = forms.CharField(max_length=120, label="Name")
 
 
+class SupersedingProductForm(ProductForm):
+    """A product that takes the place of another."""
+
+    reason = forms.CharField(max_length=500, label="Reason")
+
+
 class SpecificationForm(forms.Form):
     """Why a version is made; its limits are in rows of ``LimitForm``."""
 

@@ -5,11 +5,15 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from labrecords.models import RecordState, Run, Standardization
+from django.utils import timezone
+
+from labrecords.models import ControlChart, RecordState, Run, Standardization
+from labrecords.queries.control_chart import effective_limits
 from labrecords.queries.run import runs
 from labrecords.queries.standardization import standardizations
 
 LATE_HOURS = 24
+NEAR_END_DAYS = 1
 
 
 @dataclass(frozen=True, slots=True)
@@ -53,7 +57,27 @@ def reasons_of(record: Run | Standardization) -> list[str]:
         found.append(f"{corrected} readings corrected")
     if record.questions.filter(answered_at__isnull=True).exists():
         found.append("in question")
-    return found + _reasons_of_time(record)
+    return found + _reasons_of_what_it_rests_on(record) + _reasons_of_time(record)
+
+
+def _reasons_of_what_it_rests_on(record: Run | Standardization) -> list[str]:
+    """A titrant near the end of its time, a control sample whose chart signals."""
+    if not isinstance(record, Run):
+        return []
+    found, until = [], record.standardization.in_force_until
+    if until is not None and (until - timezone.localtime(record.started_at).date()).days <= NEAR_END_DAYS:
+        found.append("titrant near the end of its time")
+    if record.sample.control_sample is not None and _signals(record):
+        found.append("its control chart signals")
+    return found
+
+
+def _signals(run: Run) -> bool:
+    """Whether the result would break a rule of a chart of its control sample."""
+    charts = ControlChart.objects.filter(control_sample=run.sample.control_sample)
+    limits = [found for chart in charts if (found := effective_limits(chart)) is not None]
+    value = run.calculation.value if run.calculation else None
+    return value is not None and any(abs(value - each.centre) > 3 * each.sigma for each in limits)
 
 
 def _reasons_of_time(record: Run | Standardization) -> list[str]:

@@ -9,7 +9,7 @@ from django.shortcuts import get_object_or_404, redirect, render
 from django.views.decorators.http import require_GET, require_http_methods, require_POST
 
 from labrecords.errors import Refused
-from labrecords.forms.batch import LimitRows, ProductForm, SpecificationForm
+from labrecords.forms.batch import LimitRows, ProductForm, SpecificationForm, SupersedingProductForm
 from labrecords.models import Product, Specification
 from labrecords.queries.history import sentences_about
 from labrecords.queries.product import products
@@ -45,6 +45,21 @@ def record(request: HttpRequest) -> HttpResponse:
         to=lambda product: ("product-specify", product.code),
         context={"title": "Record a product", "back": "product-list"},
     )
+
+
+@for_roles("supervisor")
+@require_http_methods(["GET", "POST"])
+def supersede(request: HttpRequest, code: str) -> HttpResponse:
+    """Record the product that takes another's place; the old one stays with its batches."""
+    product = get_object_or_404(Product, code=code)
+
+    def change(**clean: Any) -> Product:
+        return service.supersede_product(product, **clean)
+
+    form = SupersedingProductForm(request.POST or None, initial={"name": product.name})
+    context = {"title": f"Supersede {product.name}", "back": "product-list"}
+    to = lambda new: ("product-specify", new.code)  # noqa: E731
+    return recorded(request, form, template="register/record.html", change=change, to=to, context=context)
 
 
 @for_roles("supervisor")
