@@ -17,7 +17,7 @@ from analysis.determination_budget import all_inputs, propagated
 from analysis.outliers import dixon, grubbs
 from analysis.replicate_choice import titrations_that_count
 from analysis.replicates import spread
-from analysis.titration_inputs import Titration, choice, positive
+from analysis.titration_inputs import Titration, choice, optional, positive
 from analysis.titration_reading import blank_of, read_titrations
 from analysis.uncertainty import (
     BudgetLine,
@@ -56,17 +56,14 @@ def compute(inputs: Inputs) -> dict[str, Any]:
     blank = blank_of(titrations)
     counted = [item for item in titrations if not item.is_blank and not item.is_excluded and _complete(item)]
     outputs = _frame(inputs, titrations, blank)
-    if _blanks_missing(inputs, blank):
-        return outputs | {"reasons": ["The blank is not complete. Titrate the blank, then the result follows."]}
-    values = {
-        item.number: _value_of(inputs, item, blank, kind=kind)
-        for item in titrations
-        if not item.is_blank and _complete(item)
-    }
+    if missing := _missing_beside(inputs, blank):
+        return outputs | {"reasons": missing}
+    values = _values(inputs, titrations, blank, kind=kind)
     _fill_titrations(outputs, values, blank)
     if not counted:
         return outputs | {"reasons": [_missing(inputs, counted)]}
-    inside, reasons, tie = titrations_that_count(inputs, counted, values)
+    inside, reasons, tie = titrations_that_count(inputs, counted, values, blank=blank)
+    reasons += _too_few_blanks(titrations)
     _mark_set(outputs, inside)
     whole = propagated(inputs, inside, titrations, blank, kind=kind)
     return outputs | _result(
@@ -120,6 +117,22 @@ def _mark_set(outputs: dict[str, Any], inside: Sequence[Titration]) -> None:
     numbers = {item.number for item in inside}
     for line in outputs["titrations"]:
         line["in_set"] = not line["blank"] and line["number"] in numbers
+
+
+def _values(
+    inputs: Inputs, titrations: Sequence[Titration], blank: float | None, *, kind: str
+) -> dict[int, float]:  # fmt: skip
+    """Value of every complete titration; an excluded one may give none, that can be why it is excluded."""
+    found = {}
+    for item in titrations:
+        if item.is_blank or not _complete(item):
+            continue
+        try:
+            found[item.number] = _value_of(inputs, item, blank, kind=kind)
+        except ValueError:
+            if not item.is_excluded:
+                raise
+    return found
 
 
 def _value_of(inputs: Inputs, item: Titration, blank: float | None, *, kind: str) -> float:
@@ -241,8 +254,23 @@ def _complete(item: Titration) -> bool:
     return item.titre is not None and (item.is_blank or item.amount is not None)
 
 
-def _blanks_missing(inputs: Inputs, blank: float | None) -> bool:
-    return inputs["method"].get("titration") == "blank_difference" and blank is None
+def _missing_beside(inputs: Inputs, blank: float | None) -> list[str]:
+    """What no result can do without, beside the titrations: the blank, and the loss of a result on the dry basis."""
+    method, found = inputs["method"], []
+    if blank is None and (method.get("titration") == "blank_difference" or inputs.get("blanks")):
+        found.append("The blank is not complete. Titrate the blank, then the result follows.")
+    is_dry = method.get("basis", "as_is") != "as_is"
+    if is_dry and optional(method.get("loss_percent"), name="Loss on drying") is None:
+        found.append("The loss on drying is not entered. Enter it, then the result follows.")
+    return found
+
+
+def _too_few_blanks(titrations: Sequence[Titration]) -> list[str]:
+    blanks = [item for item in titrations if item.is_blank and not item.is_excluded]
+    complete = sum(item.titre is not None for item in blanks)
+    if complete == len(blanks):
+        return []
+    return [f"{complete} of {len(blanks)} blanks are complete. Titrate the others."]
 
 
 def _missing(inputs: Inputs, counted: Sequence[Titration]) -> str:

@@ -116,12 +116,19 @@ def run_inputs(inputs: Mapping[str, Any]) -> list[Input]:
             "loss",
             "loss",
             "loss on drying",
-            number(method.get("loss_percent") or 0, name="Loss on drying"),
+            _loss(method.get("loss_percent")),
             number(method.get("loss_u") or 0, name="u of the loss"),
             "%",
         ),
     ]
     return [*found, *_excess_inputs(inputs.get("excess")), *_dilution_inputs(inputs.get("dilutions") or [])]
+
+
+def _loss(value: Any) -> float:
+    loss = number(value or 0, name="Loss on drying")
+    if not 0 <= loss < 100:
+        raise ValueError(f"Loss on drying is {value} %; 0 to less than 100 is expected.")
+    return loss
 
 
 def _excess_inputs(excess: Mapping[str, Any] | None) -> list[Input]:

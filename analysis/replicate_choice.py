@@ -12,14 +12,14 @@ Inputs = Mapping[str, Any]
 
 
 def titrations_that_count(
-    inputs: Inputs, counted: Sequence[Titration], values: Mapping[int, float]
+    inputs: Inputs, counted: Sequence[Titration], values: Mapping[int, float], *, blank: float | None
 ) -> tuple[list[Titration], list[str], str]:
     """The titrations that count by the method's policy, what is not acceptable about them, and how a tie went."""
     method = inputs["method"]
     policy = choice(method["policy"], ("concordance", "all"), name="Policy")
     limit_kind = choice(method["limit_kind"], ("range_mL", "rsd_percent"), name="Kind of limit")
     limit, needed = positive(method["limit"], name="Limit"), int(method["replicates_needed"])
-    scaled = _titres_for_equal_amounts(counted)
+    scaled = _titres_for_equal_amounts(inputs, counted, blank)
     tie, inside = "", list(counted)
     if policy == "concordance" and limit_kind == "range_mL":
         found = concordant_set(scaled, limit=limit)
@@ -30,10 +30,30 @@ def titrations_that_count(
     return inside, reasons, tie
 
 
-def _titres_for_equal_amounts(counted: Sequence[Titration]) -> list[float]:
-    """Titres as they would be for the first sample amount, so that weighed samples can be compared."""
-    first = counted[0].amount or 1.0
-    return [float(item.titre or 0.0) * first / (item.amount or first) for item in counted]
+def _titres_for_equal_amounts(
+    inputs: Inputs, counted: Sequence[Titration], blank: float | None
+) -> list[float]:  # fmt: skip
+    """Titres, or where the amounts differ what each sample took, as it would be for the first amount [mL]."""
+    titres = [float(item.titre or 0.0) for item in counted]
+    amounts = [item.amount or 1.0 for item in counted]
+    if max(amounts) == min(amounts):
+        return titres
+    taken = [_taken(inputs, titre, blank or 0.0) for titre in titres]
+    return [volume * amounts[0] / amount for volume, amount in zip(taken, amounts, strict=True)]
+
+
+def _taken(inputs: Inputs, titre: float, blank: float) -> float:
+    """Volume of titrant [mL] that answers to the sample itself: only that grows with its amount."""
+    kind = inputs["method"].get("titration", "direct")
+    if kind == "blank_difference":
+        return blank - titre
+    if kind == "direct":
+        return titre - blank
+    excess = inputs["excess"]
+    added = positive(excess["concentration"], name=f"Concentration of lot {excess['lot']}")
+    added *= positive(excess["volume"], name="Excess volume")
+    titrant = inputs["titrant"]
+    return added / positive(titrant["concentration"], name=f"Concentration of lot {titrant['lot']}") - (titre - blank)
 
 
 def _too_few(
