@@ -12,12 +12,13 @@ import math
 import numpy as np
 import numpy.typing as npt
 
+from analysis.activity import nernst
 from analysis.curve import Curve
-from analysis.explicit import NERNST
 from analysis.system import System
 
 FloatArray = npt.NDArray[np.float64]
 LEAST = 4
+MOST_DECADES = 18  # as wide as pH
 
 
 def gran(curve: Curve, *, system: System, near: float) -> tuple[float, float]:
@@ -26,13 +27,17 @@ def gran(curve: Curve, *, system: System, near: float) -> tuple[float, float]:
     Raises
     ------
     ValueError
-        When neither side has four usable points.
+        When neither side has four usable points, or the lines end outside the curve.
     """
     sides = [side for side in (_before(curve, system, near), _after(curve, system, near)) if side is not None]
     if not sides:
         raise ValueError("Gran's lines need four usable points before or after the endpoint.")
     weights = [1 / u**2 for _, u in sides]
     volume = sum(v * w for (v, _), w in zip(sides, weights, strict=True)) / sum(weights)
+    if not curve.volume[0] <= volume <= curve.volume[-1]:
+        raise ValueError(
+            f"Gran's lines end at {volume:g} mL, outside the curve ({curve.volume[0]:g} to {curve.volume[-1]:g} mL)."
+        )
     u = math.sqrt(1 / sum(weights))
     if len(sides) == 2:
         u = max(u, abs(sides[0][0] - sides[1][0]) / 2)
@@ -40,23 +45,39 @@ def gran(curve: Curve, *, system: System, near: float) -> tuple[float, float]:
 
 
 def _before(curve: Curve, system: System, near: float) -> tuple[float, float] | None:
+    """The line of the analyte that is left: as such, or beside its product where the electrode sees their ratio."""
     use = (curve.volume > 0.25 * near) & (curve.volume < 0.93 * near)
-    v, y = curve.volume[use], curve.reading[use]
-    if system.kind == "precipitation":
-        return _line(v, (system.sample_volume + v) * 10 ** (-(y - y.mean()) / NERNST)) if v.size >= LEAST else None
-    weak = bool(system.analytes[-1].pKa)
-    sign = -1.0 if system.titrant == "base" else 1.0
-    grown = 10 ** (sign * (y - y.mean())) if y.size else y
-    return _line(v, v * grown if weak else (system.sample_volume + v) * grown) if v.size >= LEAST else None
+    v = curve.volume[use]
+    is_ratio = system.kind == "redox" or (system.kind == "acid_base" and bool(system.analytes[-1].pKa))
+    electrons = system.analytes[-1].electrons if system.kind == "redox" else 1
+    left = _grown(curve, system, use, sign=_sign_of_analyte(system) * electrons)
+    return None if left is None else _line(v, v * left if is_ratio else (system.sample_volume + v) * left)
 
 
 def _after(curve: Curve, system: System, near: float) -> tuple[float, float] | None:
+    """The line of the titrant in excess: as such, or beside its product (redox, complex)."""
     use = (curve.volume > 1.05 * near) & (curve.volume < 1.6 * near)
-    v, y = curve.volume[use], curve.reading[use]
-    if v.size < LEAST:
+    v = curve.volume[use]
+    is_ratio = system.kind in ("redox", "complex")
+    electrons = system.titrant_electrons if system.kind == "redox" else 1
+    excess = _grown(curve, system, use, sign=-_sign_of_analyte(system) * electrons)
+    return None if excess is None else _line(v, excess if is_ratio else (system.sample_volume + v) * excess)
+
+
+def _sign_of_analyte(system: System) -> int:
+    """1 where the logarithm that the electrode follows grows with the analyte that is left, -1 where it falls."""
+    return -1 if system.titrant in ("acid", "silver", "oxidant") else 1
+
+
+def _grown(curve: Curve, system: System, use: npt.NDArray[np.bool_], *, sign: int) -> FloatArray | None:
+    """Ten to the power of the reading in decades; None for too few points or readings that no solution gives."""
+    if np.count_nonzero(use) < LEAST:
         return None
-    scale = 1 / NERNST if system.kind == "precipitation" else (1.0 if system.titrant == "base" else -1.0)
-    return _line(v, (system.sample_volume + v) * 10 ** (scale * (y - y.mean())))
+    unit = -1.0 if curve.quantity == "pH" else nernst(system.temperature)
+    if system.kind == "complex":
+        unit /= max(abs(system.analytes[0].charge), 1)
+    decades = sign * (curve.reading[use] - curve.reading[use].mean()) / unit
+    return None if np.ptp(decades) > MOST_DECADES else np.asarray(10**decades)
 
 
 def _line(v: FloatArray, g: FloatArray) -> tuple[float, float] | None:
