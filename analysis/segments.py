@@ -22,11 +22,10 @@ def crossing(curve: Curve) -> tuple[float, float]:
     Raises
     ------
     ValueError
-        When the lines do not cross inside the curve.
+        When the lines do not cross inside the curve, or are one line within their scatter.
     """
     v, y = curve.volume, curve.reading
-    splits = range(LEAST, v.size - LEAST + 1)
-    best = min(splits, key=lambda split: _misfit(v[:split], y[:split]) + _misfit(v[split:], y[split:]))
+    best = _best_split(v, y)
     guess = _cross(_fit(v[:best], y[:best]), _fit(v[best:], y[best:]))
     gap = 0.05 * float(v[-1] - v[0])
     left, right = v < guess - gap, v > guess + gap
@@ -34,6 +33,7 @@ def crossing(curve: Curve) -> tuple[float, float]:
         first, second = _fit(v[left], y[left]), _fit(v[right], y[right])
     else:
         first, second = _fit(v[:best], y[:best]), _fit(v[best:], y[best:])
+    _check_bend(first, second)
     volume = _cross(first, second)
     if not v[0] < volume < v[-1]:
         raise ValueError(f"The two segments cross at {volume:g} mL, outside the curve ({v[0]:g} to {v[-1]:g} mL).")
@@ -47,9 +47,31 @@ def _fit(v: FloatArray, y: FloatArray) -> tuple[FloatArray, FloatArray]:
     return np.asarray(line, dtype=np.float64), np.linalg.inv(design.T @ design) * variance
 
 
-def _misfit(v: FloatArray, y: FloatArray) -> float:
-    line = np.polyfit(v, y, 1)
-    return float(((y - np.polyval(line, v)) ** 2).sum())
+def _best_split(v: FloatArray, y: FloatArray) -> int:
+    """Points on the first line; running sums give the sum of squares of every split at once."""
+    size = v.size
+    ahead = _misfits(v, y)[LEAST - 1 : size - LEAST]
+    behind = _misfits(v[::-1], y[::-1])[LEAST - 1 : size - LEAST][::-1]
+    return LEAST + int((ahead + behind).argmin())
+
+
+def _misfits(v: FloatArray, y: FloatArray) -> FloatArray:
+    """Sum of squares about the line through the first 1, 2, 3 ... points."""
+    v, y, n = v - v.mean(), y - y.mean(), np.arange(1.0, v.size + 1)
+    sum_v, sum_y = np.cumsum(v), np.cumsum(y)
+    square_v = np.cumsum(v * v) - sum_v**2 / n
+    product = np.cumsum(v * y) - sum_v * sum_y / n
+    square_y = np.cumsum(y * y) - sum_y**2 / n
+    slope = np.divide(product, square_v, out=np.zeros_like(product), where=square_v > 0)
+    return np.maximum(square_y - slope * product, 0.0)
+
+
+def _check_bend(first: tuple[FloatArray, FloatArray], second: tuple[FloatArray, FloatArray]) -> None:
+    """The best of many splits of one straight line bends by three to four standard deviations, so five are asked."""
+    slopes = float(first[0][1]), float(second[0][1])
+    least = 5 * math.sqrt(float(first[1][1, 1] + second[1][1, 1])) + 1e-9 * max(map(abs, slopes))
+    if abs(slopes[0] - slopes[1]) <= least:
+        raise ValueError("The two segments are one straight line within their scatter; there is no crossing.")
 
 
 def _cross(first: tuple[FloatArray, FloatArray], second: tuple[FloatArray, FloatArray]) -> float:
