@@ -12,6 +12,7 @@ READING_U = {
     "pH": 0.03,
     "mV": 2.0,
 }  # of the calibration of the electrode (common practice), beside the scatter
+CLEAR = 6  # times the scatter of a reading, that a slope is told from two of them
 
 
 def fixed_reading(curve: Curve, *, reading: float, noise: float) -> tuple[float, float]:
@@ -28,10 +29,25 @@ def fixed_reading(curve: Curve, *, reading: float, noise: float) -> tuple[float,
     if crossing.size == 0:
         low, high = curve.reading.min(), curve.reading.max()
         raise ValueError(f"The curve runs from {low:g} to {high:g} {curve.quantity} and does not pass {reading:g}.")
-    at = int(crossing[0])
-    v, y = curve.volume[at : at + 2], curve.reading[at : at + 2]
-    slope = float((y[1] - y[0]) / (v[1] - v[0]))
-    volume = float(v[0] + (reading - y[0]) / slope)
+    volume, slope = _line_about(curve, int(crossing[0]), reading=reading, noise=noise)
+    at = int(np.clip(np.searchsorted(curve.volume, volume), 1, curve.volume.size - 1))
     u_reading = math.hypot(READING_U.get(curve.quantity, 0.0), noise)
-    step = float(v[1] - v[0])
+    step = float(curve.volume[at] - curve.volume[at - 1])
     return volume, math.hypot(u_reading / abs(slope), step / 20)
+
+
+def _line_about(curve: Curve, at: int, *, reading: float, noise: float) -> tuple[float, float]:
+    """Volume and slope at a reading from the two points beside it; where those differ by no more than scatter, from
+    as many as it takes to tell them apart."""
+    low, high = at, at + 1
+    while abs(curve.reading[high] - curve.reading[low]) < CLEAR * noise and (low > 0 or high < curve.reading.size - 1):
+        low, high = max(low - 1, 0), min(high + 1, curve.reading.size - 1)
+    v, y = curve.volume[low : high + 1], curve.reading[low : high + 1]
+    if v.size == 2:
+        slope = float((y[1] - y[0]) / (v[1] - v[0]))
+        return float(v[0] + (reading - y[0]) / slope), slope
+    slope = float(((v - v.mean()) * (y - y.mean())).sum() / ((v - v.mean()) ** 2).sum())
+    if slope == 0:
+        raise ValueError(f"The curve does not rise or fall clearly at {reading:g} {curve.quantity}.")
+    volume = float(v.mean() + (reading - y.mean()) / slope)
+    return min(max(volume, float(v[0])), float(v[-1])), slope
