@@ -11,7 +11,11 @@ import numpy.typing as npt
 FloatArray = npt.NDArray[np.float64]
 QUANTITIES = ("pH", "mV", "conductivity", "temperature", "absorbance")
 LEAST_POINTS = 8
-LARGEST = {"pH": (-2.0, 16.0), "mV": (-2000.0, 2000.0)}
+MOST_VOLUME, SAME_VOLUME = 10_000.0, 6  # mL, and decimals of a millilitre: no burette tells a nanolitre
+LARGEST = {
+    "pH": (-2.0, 16.0), "mV": (-2000.0, 2000.0), "conductivity": (-1e7, 1e7), "temperature": (-273.15, 1000.0),
+    "absorbance": (-1e4, 1e4),
+}  # fmt: skip
 
 
 @dataclass(frozen=True, slots=True)
@@ -76,7 +80,11 @@ def _check_values(v: FloatArray, y: FloatArray, *, quantity: str) -> None:
             raise ValueError(f"{name} {bad[0] + 1} is {values[bad[0]]}; a finite number is expected.")
     if v.size and v.min() < 0:
         raise ValueError(f"Volume {int(v.argmin()) + 1} is {v.min():g} mL; volumes from 0 are expected.")
-    low, high = LARGEST.get(quantity, (-np.inf, np.inf))
+    if v.size and v.max() > MOST_VOLUME:
+        raise ValueError(
+            f"Volume {int(v.argmax()) + 1} is {v.max():g} mL; volumes up to {MOST_VOLUME:g} mL are expected."
+        )
+    low, high = LARGEST[quantity]
     outside = np.flatnonzero((y < low) | (y > high))
     if outside.size and quantity == "pH":
         raise ValueError(
@@ -98,7 +106,7 @@ def _forward(v: FloatArray, notes: list[str]) -> FloatArray:
 
 
 def _averaged(v: FloatArray, y: FloatArray, notes: list[str]) -> tuple[FloatArray, FloatArray]:
-    unique, place = np.unique(v, return_inverse=True)
+    unique, place = np.unique(np.round(v, SAME_VOLUME), return_inverse=True)
     if unique.size == v.size:
         return v, y
     counts = np.bincount(place)

@@ -111,6 +111,9 @@ def _check(settings: CurveSettings) -> None:
             raise ValueError(f"Family is {name!r}; expected one of {', '.join(FAMILIES)}.")
     if "fixed" in (settings.deciding, settings.checking) and settings.fixed_reading is None:
         raise ValueError("The family fixed needs a reading, such as pH 8.2.")
+    for name, value in (("Expected endpoints", settings.expected), ("Chosen endpoint", settings.chosen)):
+        if value < 1:
+            raise ValueError(f"{name} is {value}; 1 or more is expected.")
 
 
 def _near(curve: Curve, settings: CurveSettings, *, noise: float) -> list[float]:
