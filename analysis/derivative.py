@@ -38,6 +38,8 @@ def second_derivative_zero(curve: Curve, *, near: float) -> tuple[float, float]:
     change = np.diff(size) / np.diff(middle)
     between = (middle[1:] + middle[:-1]) / 2
     before, after = change[peak - 1], change[peak]
+    if not before >= 0 >= after:  # no steepest place here, only the edge of what was searched
+        return float(middle[peak]), step / 2
     share = before / (before - after) if before != after else 0.5
     volume = between[peak - 1] + share * (between[peak] - between[peak - 1])
     return float(volume), step / SQRT_12
@@ -50,7 +52,8 @@ def derivative_parabola(curve: Curve, *, near: float) -> tuple[float, float]:
     peak = min(max(_peak(middle, size, near=near), 1), size.size - 2)
     step = float(curve.volume[peak + 1] - curve.volume[peak])
     a, b, _ = np.polyfit(middle[peak - 1 : peak + 2] - middle[peak], size[peak - 1 : peak + 2], 2)
-    return float(middle[peak] - b / (2 * a)) if a < 0 else float(middle[peak]), step / SQRT_12
+    top = middle[peak] - b / (2 * a) if a < 0 else middle[peak]
+    return float(np.clip(top, middle[peak - 1], middle[peak + 1])), step / SQRT_12
 
 
 def inverse_square_parabola(curve: Curve, *, near: float) -> tuple[float, float]:
