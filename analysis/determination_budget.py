@@ -38,18 +38,28 @@ def propagated(
     """Value, uncertainty and budget; a solution's line is opened into the physical inputs it rests on."""
     make = model.run_value if kind == "run" else model.standardization_value
     models = [make(inputs, item) for item in inside]
-    alone = [
-        model(
-            {each.name: complex(each.value) for each in all_inputs(inputs, [item], [], blank, kind=kind)}
-            | {"repeatability": 1}
-        ).real
-        for model, item in zip(models, inside, strict=True)
-    ]
-    named = [*all_inputs(inputs, inside, titrations, blank, kind=kind), _repeatability(spread(alone))]
+    named = named_inputs(inputs, inside, titrations, blank, kind=kind)
     whole = _without_the_smaller(propagate(model.mean_model(models), named))
     opened = [line for each in whole.budget for line in _opened(each, inputs)]
     used = [line for line in merged(opened) if line.u > 0 or line.contribution]
     return from_budget(whole.value, sorted(used, key=lambda line: -abs(line.contribution)))
+
+
+def named_inputs(
+    inputs: Inputs,
+    inside: Sequence[Titration],
+    titrations: Sequence[Titration],
+    blank: float | None,
+    *,
+    kind: str,
+) -> list[Input]:
+    """Every input of the mean of the titrations that count, their own scatter last."""
+    make = model.run_value if kind == "run" else model.standardization_value
+    alone = []
+    for item in inside:
+        estimates = {each.name: complex(each.value) for each in all_inputs(inputs, [item], [], blank, kind=kind)}
+        alone.append(make(inputs, item)(estimates | {"repeatability": 1}).real)
+    return [*all_inputs(inputs, inside, titrations, blank, kind=kind), _repeatability(spread(alone))]
 
 
 def _without_the_smaller(whole: Propagated) -> Propagated:
@@ -77,36 +87,32 @@ def _repeatability(alone: Spread) -> Input:
 
 def _opened(line: BudgetLine, inputs: Inputs) -> list[BudgetLine]:
     """A solution's concentration as the inputs of its standardization, each with its sign; the rest as one line."""
-    solution = next((item for item in _solutions(inputs) if line.key == f"solution:{item['lot']}"), None)
-    parts = (solution or {}).get("components") or []
-    if solution is None or not parts:
+    parts = solution_parts(line.key, inputs)
+    if not parts:
         return [line]
-    lines = [
+    return [
         BudgetLine(
-            part["key"], part["label"], line.value, line.unit, abs(float(part["u"])), "normal", "B", line.sensitivity,
-            line.sensitivity * float(part["u"]), 0.0, float(part.get("degrees_of_freedom") or math.inf),
+            key, label, line.value, line.unit, abs(u), "normal", "B", line.sensitivity, line.sensitivity * u, 0.0, dof
         )
-        for part in parts
-    ]  # fmt: skip
-    known = sum(float(part["u"]) ** 2 for part in parts)
-    rest = math.sqrt(max(line.u**2 - known, 0.0))
-    if rest > 1e-3 * line.u:
-        lines.append(
-            BudgetLine(
-                line.key,
-                line.label,
-                line.value,
-                line.unit,
-                rest,
-                "normal",
-                "B",
-                line.sensitivity,
-                line.sensitivity * rest,
-                0.0,
-                math.inf,
-            )
-        )
-    return lines
+        for key, label, u, dof in parts
+    ]
+
+
+def solution_parts(key: str, inputs: Inputs) -> list[tuple[str, str, float, float]]:
+    """What a concentration rests on: key, label, signed contribution [mol/L], degrees of freedom; the rest as one."""
+    solution = next((item for item in _solutions(inputs) if key == f"solution:{item['lot']}"), None)
+    listed = (solution or {}).get("components") or []
+    if solution is None or not listed:
+        return []
+    parts = [
+        (part["key"], part["label"], float(part["u"]), float(part.get("degrees_of_freedom") or math.inf))
+        for part in listed
+    ]
+    u = float(solution["u"])
+    rest = math.sqrt(max(u**2 - sum(each**2 for _, _, each, _ in parts), 0.0))
+    if rest > 1e-3 * u:
+        parts.append((key, f"rest of lot {solution['lot']}", rest, math.inf))
+    return parts
 
 
 def _solutions(inputs: Inputs) -> list[Inputs]:

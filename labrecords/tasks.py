@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from celery import shared_task
 
-from labrecords.services import calculation, seal
+from labrecords.services import calculation, monte_carlo, seal
 
 
 @shared_task(name="labrecords.tasks.compute_request")
@@ -19,9 +19,17 @@ def sweep_waiting() -> None:
     """Compute what a lost message left waiting."""
     for request_id in calculation.overdue_requests():
         compute_request.delay(request_id=request_id)
+    for check_id in monte_carlo.overdue_checks():
+        check_by_monte_carlo.delay(check_id=check_id)
+
+
+@shared_task(name="labrecords.tasks.check_by_monte_carlo")
+def check_by_monte_carlo(check_id: int) -> None:
+    """Check one result by drawing its inputs."""
+    monte_carlo.do_check(check_id)
 
 
 @shared_task(name="labrecords.tasks.seal_trail")
 def seal_trail() -> None:
-    """Seal the events that are new; again at once while there are more than one round takes."""
+    """Seal the events that are new."""
     seal.seal_trail()

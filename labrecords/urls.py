@@ -8,6 +8,7 @@ from labrecords.views import (
     audit,
     batch,
     bench,
+    calculation,
     control_chart,
     control_sample,
     curve,
@@ -80,6 +81,11 @@ replicate_urls = [
     path("replicates/<int:pk>/<str:field>/", replicate.record, name="replicate-record"),
     path("sheets/<str:noun>/<str:number>/readings/", replicate.record_all, name="replicate-record_all"),
     path("sheets/<str:noun>/<str:number>/add/", replicate.add, name="replicate-add"),
+]
+
+calculation_urls = [
+    path("calculations/<int:pk>/check/", calculation.check, name="calculation-check"),
+    path("calculations/<int:pk>/checked/", calculation.checked, name="calculation-checked"),
 ]
 
 curve_urls = [
@@ -238,4 +244,5 @@ urlpatterns = [
     *standardization_urls,
     *replicate_urls,
     *curve_urls,
+    *calculation_urls,
 ]

@@ -2,7 +2,7 @@
 
 from labrecords.models.audit import AuditChange, AuditCheckpoint, AuditEvent, AuditLeaf
 from labrecords.models.batch import Batch, BatchState, Sample
-from labrecords.models.calculation import Calculation, CalculationRequest
+from labrecords.models.calculation import Calculation, CalculationRequest, MonteCarloCheck
 from labrecords.models.control_chart import ControlChart, ControlLimits
 from labrecords.models.control_sample import ControlSample
 from labrecords.models.instrument import Instrument, InstrumentCalibration, InstrumentKind, UsedInstrument
@@ -21,11 +21,54 @@ from labrecords.models.titrant import Titrant, TitrantLot
 from labrecords.models.user import Role, User
 
 __all__ = [
-    "AuditChange", "AuditCheckpoint", "AuditEvent", "AuditLeaf", "Basis", "Batch", "BatchState", "Calculation",
-    "CalculationRequest", "Conclusion", "ControlChart", "ControlLimits", "ControlSample", "Curve", "CurveQuantity",
-    "ExclusionCause", "Hazard", "Instrument", "InstrumentCalibration", "InstrumentKind", "Investigation",
-    "InvestigationState", "LotState", "Meaning", "Method", "MethodVersion", "NumberSeries", "Product", "Quantity",
-    "Question", "RecordState", "ReferenceStandard", "Replicate", "ReplicateKind", "Role", "Run", "Sample", "Signature",
-    "Specification", "SpecificationLimit", "Standardization", "StoredFile", "Substance", "Titrant", "TitrantLot",
-    "Titration", "UsedInstrument", "User", "VersionState",
-]  # fmt: skip
+    "AuditChange",
+    "AuditCheckpoint",
+    "AuditEvent",
+    "AuditLeaf",
+    "Basis",
+    "Batch",
+    "BatchState",
+    "Calculation",
+    "CalculationRequest",
+    "Conclusion",
+    "ControlChart",
+    "ControlLimits",
+    "ControlSample",
+    "Curve",
+    "CurveQuantity",
+    "ExclusionCause",
+    "Hazard",
+    "Instrument",
+    "InstrumentCalibration",
+    "InstrumentKind",
+    "Investigation",
+    "InvestigationState",
+    "LotState",
+    "Meaning",
+    "Method",
+    "MethodVersion",
+    "MonteCarloCheck",
+    "NumberSeries",
+    "Product",
+    "Quantity",
+    "Question",
+    "RecordState",
+    "ReferenceStandard",
+    "Replicate",
+    "ReplicateKind",
+    "Role",
+    "Run",
+    "Sample",
+    "Signature",
+    "Specification",
+    "SpecificationLimit",
+    "Standardization",
+    "StoredFile",
+    "Substance",
+    "Titrant",
+    "TitrantLot",
+    "Titration",
+    "UsedInstrument",
+    "User",
+    "VersionState",
+]

@@ -80,3 +80,29 @@ class CalculationRequest(models.Model):
 
     def __str__(self) -> str:
         return f"{self.state} request {self.pk}"
+
+
+class MonteCarloCheck(models.Model):
+    """A check of one calculation by drawing its inputs: asked for by a person, done by the worker, with progress.
+
+    It informs and changes no result; like a request it is the worker's list of work.
+    """
+
+    calculation = models.ForeignKey(Calculation, on_delete=models.PROTECT, related_name="monte_carlo_checks")
+    requested_by = models.ForeignKey(settings.AUTH_USER_MODEL, on_delete=models.PROTECT, related_name="+")
+    requested_at = models.DateTimeField()
+    state = models.CharField(max_length=8, choices=[("waiting", "waiting"), ("done", "done"), ("failed", "failed")])
+    draws = models.PositiveIntegerField(default=0, help_text="so far")
+    outputs = models.JSONField(null=True)
+    problem = models.TextField(blank=True)
+
+    class Meta:
+        ordering = ["id"]
+        constraints = [
+            models.UniqueConstraint(
+                fields=["calculation"], condition=Q(state="waiting"), name="monte_carlo_one_waiting_for_calculation"
+            ),
+        ]
+
+    def __str__(self) -> str:
+        return f"{self.state} check of {self.calculation}"

@@ -6,7 +6,7 @@ from datetime import datetime, timedelta
 
 from django.db.models import QuerySet
 
-from labrecords.models import Calculation, CalculationRequest, Run, Standardization
+from labrecords.models import Calculation, CalculationRequest, MonteCarloCheck, Run, Standardization
 
 Record = Run | Standardization
 
@@ -24,3 +24,8 @@ def latest_request(record: Record) -> CalculationRequest | None:
 def waiting_requests(*, older_than: timedelta, now: datetime) -> QuerySet[CalculationRequest]:
     """Requests nobody has done yet though they have waited for some time."""
     return CalculationRequest.objects.filter(state="waiting", requested_at__lte=now - older_than).order_by("id")
+
+
+def latest_check(calculation: Calculation | None) -> MonteCarloCheck | None:
+    """The newest check by drawing of a calculation, or None."""
+    return calculation.monte_carlo_checks.order_by("-id").first() if calculation else None

@@ -17,6 +17,7 @@ from labrecords.models import (
     AuditEvent,
     AuditLeaf,
     CalculationRequest,
+    MonteCarloCheck,
     NumberSeries,
 )
 from labrecords.queries.seal import leaf_hash, leaves, mark, root_hash
@@ -88,6 +89,7 @@ def recorded_tables() -> list[str]:
         AuditLeaf,
         AuditCheckpoint,
         CalculationRequest,
+        MonteCarloCheck,
         NumberSeries,
     }
     models = apps.get_app_config("labrecords").get_models()

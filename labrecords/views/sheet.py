@@ -20,6 +20,7 @@ from labrecords.figures.titre_strip import titre_strip
 from labrecords.forms.reading import clean_preview_cell
 from labrecords.forms.signing import typed_components
 from labrecords.models import ExclusionCause, Run, Standardization, User
+from labrecords.queries.calculation import latest_check
 from labrecords.queries.history import sentences_about
 from labrecords.queries.preview import preview
 from labrecords.queries.replicate import instruments_of, replicates_of
@@ -82,6 +83,8 @@ def shown(sheet: Sheet) -> dict[str, Any]:
         "limit_bar": bar,
         "budget": budget,
         "curves": curves_of(sheet),
+        "calculation": sheet.calculation,
+        "check": latest_check(sheet.calculation),
         **words_of(record),
     }
 

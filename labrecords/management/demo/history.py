@@ -96,8 +96,12 @@ class History:
             count = self.counts.get(titrant, 0)
             if day >= self.start + timedelta(days=every * count):
                 self.new_lot(titrant, count, day, team)
-            elif titrant == "NaOH-0.1" and (day - self.standardized[titrant]).days >= 7:
+            elif titrant == "NaOH-0.1" and (day - self.standardized[titrant]).days >= self.interval():
                 self.restandardize(titrant, day, team)
+
+    def interval(self) -> int:
+        """Days until sodium hydroxide is standardized again; a lot that drifts is watched more closely."""
+        return 3 if self.counts["NaOH-0.1"] == DRIFTING_LOT + 1 else 7
 
     def new_lot(self, titrant: str, count: int, day: date, team: Team) -> None:
         """A fresh bottle with its first standardization."""
