@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 
 from django.db import transaction
 from django.utils import timezone
@@ -31,22 +31,41 @@ def raise_questions_on_runs(run_ids: Iterable[int], *, because: str, by: User) -
 
 
 @transaction.atomic(durable=True)
+def answer_questions(
+    questions: Sequence[Question], *, by: User, credentials: Credentials, answer: str
+) -> list[Question]:
+    """A supervisor re-evaluates records and signs why they stand: one event and one signature for each record.
+
+    Nothing is answered when one of them is refused.
+    """
+    ids = [question.pk for question in questions]
+    locked = Question.objects.select_for_update(of=("self",)).select_related("run", "standardization").order_by("pk")
+    found = list(locked.filter(pk__in=ids))
+    refuse_if([sentence for each in found for sentence in objections_to_answering(each, by=by, answer=answer)])
+    for question in found:
+        _answered(question, by=by, credentials=credentials, answer=answer)
+    return found
+
+
 def answer_question(question: Question, *, by: User, credentials: Credentials, answer: str) -> Question:
-    """A supervisor re-evaluates the record and signs why it stands; or voids it instead."""
-    question = (
-        Question.objects.select_for_update(of=("self",)).select_related("run", "standardization").get(pk=question.pk)
-    )
-    refuse_if(objections_to_answering(question, by=by, answer=answer))
-    record = question.run or question.standardization
-    number, noun = str(record), "run" if question.run_id else "standardization"
+    """The same for one record."""
+    return answer_questions([question], by=by, credentials=credentials, answer=answer)[0]
+
+
+def _answered(question: Question, *, by: User, credentials: Credentials, answer: str) -> None:
+    number, noun = str(question.run or question.standardization), "run" if question.run_id else "standardization"
     question.answer, question.answered_by = answer, by
     with audit.event("question.answer", by=by, subject=number, reason=answer) as event:
         question.answered_at = event.at
         question.save(update_fields=["answer", "answered_by", "answered_at"])
         sign(
-            Meaning.REEVALUATED, by=by, credentials=credentials, noun=noun,
-            record_id=question.run_id or question.standardization_id or 0, number=number,
+            Meaning.REEVALUATED,
+            by=by,
+            credentials=credentials,
+            noun=noun,
+            record_id=question.run_id or question.standardization_id or 0,
+            number=number,
             content={"noun": "question", "about": number, "because": question.because, "answer": answer},
-            reason=answer, zone=timezone.get_current_timezone_name(),
-        )  # fmt: skip
-    return question
+            reason=answer,
+            zone=timezone.get_current_timezone_name(),
+        )

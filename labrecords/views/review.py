@@ -6,8 +6,8 @@ from django.http import HttpRequest, HttpResponse
 from django.shortcuts import render
 from django.views.decorators.http import require_GET
 
-from labrecords.models import Question
 from labrecords.queries.investigation import investigations
+from labrecords.queries.question import open_questions
 from labrecords.queries.review import waiting_for_review
 from labrecords.views.access import for_roles
 
@@ -16,11 +16,11 @@ from labrecords.views.access import for_roles
 @require_GET
 def list(request: HttpRequest) -> HttpResponse:
     """Submitted records, open investigations, open questions."""
-    questions = Question.objects.filter(answered_at__isnull=True).select_related("run", "standardization", "raised_by")
+    questions = open_questions()
     context = {
         "waiting": waiting_for_review(),
         "investigations": investigations().exclude(state="closed"),
-        "questions": questions[:60],
+        "questions": questions[:300],
         "question_count": questions.count(),
     }
     return render(request, "review/list.html", context)
