@@ -55,7 +55,7 @@ def record_readings(
     """
     record = lock_record_of(replicate)
     replicate = Replicate.objects.select_for_update(of=("self",)).get(pk=replicate.pk)
-    changed = {field: value for field, value in values.items() if str(getattr(replicate, field)) != str(value)}
+    changed = {field: value for field, value in values.items() if str(getattr(replicate, field, None)) != str(value)}
     if not changed:
         return replicate
     refuse_if(objections_to_readings(replicate, record=record, by=by, values=changed, reason=reason))
