@@ -1,3 +1,3 @@
 """The arithmetic of titrations: pure functions of numbers, without a database, a site or a worker."""
 
-VERSION = "1.0.0"
+VERSION = "1.1.0"

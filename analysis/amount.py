@@ -57,6 +57,11 @@ def amount_by_back_titration(
     return (excess * excess_volume - concentration * net) * ratio / 1000
 
 
+def buoyancy(*, air: Number, density: float, weights: float = 8000.0) -> Number:
+    """True mass over apparent mass: (1 - air/weights) / (1 - air/density), densities in kg/m3."""
+    return (1 - air / weights) / (1 - air / density)
+
+
 def dilution(steps: Sequence[tuple[Number, Number]]) -> Number:
     """The factor of a chain of dilutions, each (flask, aliquot) [mL]: the product of flask over aliquot."""
     whole: Number = 1

@@ -31,13 +31,18 @@ def _verdict(inputs: Inputs) -> dict[str, Any]:
     found = verdict(
         float(inputs["value"]), standard_uncertainty=float(inputs.get("standard_uncertainty", 0.0)),
         expanded=float(inputs.get("expanded", 0.0)), lower=inputs.get("lower"), upper=inputs.get("upper"),
-        places=int(inputs["places"]), rounding=inputs["rounding"], rule=inputs["rule"],
+        places=_count(inputs.get("places")), figures=_count(inputs.get("figures")),
+        rounding=inputs["rounding"], rule=inputs["rule"],
         guard_factor=str(inputs.get("guard_factor", "1")),
     )  # fmt: skip
     return {
         "outcome": found.outcome, "rounded": str(found.rounded), "guard": found.guard,
         "probability": found.probability, "sentence": found.sentence,
     }  # fmt: skip
+
+
+def _count(value: Any) -> int | None:
+    return None if value is None else int(value)
 
 
 def _probability(inputs: Inputs) -> dict[str, float]:
@@ -77,7 +82,8 @@ CONFORMITY = (
     Calculation(
         "conformity", "Compare a result with limits by simple acceptance or with a guard band",
         (
-            Field("value", "any", "the result, not rounded"), Field("places", "", "decimals of the limits"),
+            Field("value", "any", "the result, not rounded"),
+            optional("places", "", "decimals of the limits"), optional("figures", "", "or significant figures"),
             ROUNDING, Field("rule", "", "simple or guard"),
             optional("lower", "unit of the value", "lower limit, as text"),
             optional("upper", "unit of the value", "upper limit, as text"),

@@ -111,9 +111,10 @@ def verdict(
     expanded: float,
     lower: str | None,
     upper: str | None,
-    places: int,
     rounding: str,
     rule: str,
+    places: int | None = None,
+    figures: int | None = None,
     guard_factor: str = "1",
 ) -> Verdict:
     """Compare a result with limits by simple acceptance or with a guard band.
@@ -128,8 +129,8 @@ def verdict(
         The result, unrounded, with u and U [unit of the result].
     lower, upper : str or None
         Limits as they were typed [unit of the result].
-    places : int
-        Decimals to which the result is rounded for the comparison.
+    places, figures : int
+        Decimals, or else significant figures, to which the result is rounded for the comparison.
     rounding, rule : str
         half_up or half_even; simple or guard.
     guard_factor : str
@@ -147,7 +148,7 @@ def verdict(
     low, high = _limits(lower, upper)
     if rule not in ("simple", "guard"):
         raise ValueError(f"Rule is {rule!r}; expected simple or guard.")
-    rounded = round_places(value, places=places, rounding=rounding)
+    rounded = _rounded(value, places=places, figures=figures, rounding=rounding)
     guard = _guard(expanded, guard_factor) if rule == "guard" else Decimal(0)
     accept = (None if low is None else low + guard, None if high is None else high - guard)
     outcome = _outcome(Decimal(repr(float(value))), rounded, (low, high), accept, guard=guard)
@@ -156,6 +157,14 @@ def verdict(
     )
     sentence = _sentence(outcome, rounded, (low, high), accept, guard=guard)
     return Verdict(outcome, value, rounded, low, high, *accept, float(guard), probability, sentence)
+
+
+def _rounded(value: float, *, places: int | None, figures: int | None, rounding: str) -> Decimal:
+    if places is not None and figures is None:
+        return round_places(value, places=places, rounding=rounding)
+    if figures is not None and places is None:
+        return round_significant(value, figures=figures, rounding=rounding)
+    raise ValueError(f"Rounding is to {places} decimals and {figures} significant figures; one of the two is expected.")
 
 
 Pair = tuple[Decimal | None, Decimal | None]

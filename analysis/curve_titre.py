@@ -24,10 +24,11 @@ def curve_titre(curve: Mapping[str, Any], *, settings: Mapping[str, Any], where:
 
 
 def _settings(settings: Mapping[str, Any]) -> CurveSettings:
-    system, fixed = settings.get("system"), settings.get("fixed_reading")
+    system, fixed, first = settings.get("system"), settings.get("fixed_reading"), settings.get("first_fixed_reading")
     return CurveSettings(
         deciding=str(settings["deciding"]), checking=settings.get("checking"),
-        fixed_reading=None if fixed is None else float(fixed), expected=int(settings.get("expected", 1)),
+        fixed_reading=None if fixed is None else float(fixed),
+        first_fixed_reading=None if first is None else float(first), expected=int(settings.get("expected", 1)),
         chosen=int(settings.get("chosen", 1)), system=System.from_json(system) if system else None,
         agreement_limit=float(settings.get("agreement_limit", 3)),
     )  # fmt: skip

@@ -12,18 +12,26 @@ from typing import Any
 
 import analysis
 from analysis import model
-from analysis.conformity import verdict
 from analysis.determination_budget import all_inputs, propagated
-from analysis.outliers import dixon, grubbs
+from analysis.determination_outputs import (
+    advice,
+    below_zero,
+    factor_of,
+    finite,
+    line_output,
+    outlier_tests,
+    part_output,
+    titration_output,
+    unit_of,
+    value_with_all,
+    verdict_output,
+)
+from analysis.determination_parts import Part, parts_of
 from analysis.replicate_choice import titrations_that_count
 from analysis.replicates import spread
 from analysis.titration_inputs import Titration, choice, optional, positive
 from analysis.titration_reading import blank_of, read_titrations
-from analysis.uncertainty import (
-    BudgetLine,
-    Propagated,
-    coverage_factor,
-)
+from analysis.uncertainty import Propagated
 
 Inputs = Mapping[str, Any]
 
@@ -54,21 +62,25 @@ def compute(inputs: Inputs) -> dict[str, Any]:
     kind = choice(inputs.get("kind"), ("run", "standardization"), name="Kind")
     titrations = read_titrations(inputs)
     blank = blank_of(titrations)
-    counted = [item for item in titrations if not item.is_blank and not item.is_excluded and _complete(item)]
+    counted = [item for item in titrations if not item.is_blank and not item.is_excluded and item.is_complete]
     outputs = _frame(inputs, titrations, blank)
     if missing := _missing_beside(inputs, blank):
         return outputs | {"reasons": missing}
     values = _values(inputs, titrations, blank, kind=kind)
     _fill_titrations(outputs, values, blank)
     if not counted:
-        return outputs | {"reasons": [_missing(inputs, counted)]}
+        return outputs | {"reasons": [*_cold(titrations), _missing(inputs, counted)]}
     inside, reasons, tie = titrations_that_count(inputs, counted, values, blank=blank)
-    reasons += _too_few_blanks(titrations)
+    reasons += _cold(titrations) + _too_few_blanks(titrations)
     _mark_set(outputs, inside)
+    parts, unsplit = _parts(inputs, inside, titrations, blank)
+    reasons += unsplit
     whole = propagated(inputs, inside, titrations, blank, kind=kind)
-    return outputs | _result(
+    result = _result(
         inputs, whole, inside, counted, values, reasons=reasons, tie=tie, titrations=titrations, blank=blank
     )
+    result["flags"] += [flag for part in parts if (flag := below_zero(part))]
+    return outputs | result | {"parts": [part_output(part, inputs) for part in parts]}
 
 
 def _frame(inputs: Inputs, titrations: Sequence[Titration], blank: float | None) -> dict[str, Any]:
@@ -76,7 +88,7 @@ def _frame(inputs: Inputs, titrations: Sequence[Titration], blank: float | None)
     return {
         "kind": inputs["kind"],
         "engine": analysis.VERSION,
-        "titrations": [_titration_output(item) for item in titrations],
+        "titrations": [titration_output(item) for item in titrations],
         "blank": blank,
         "statistics": None,
         "outlier_tests": [],
@@ -89,20 +101,24 @@ def _frame(inputs: Inputs, titrations: Sequence[Titration], blank: float | None)
         "degrees_of_freedom": None,
         "k": None,
         "U": None,
-        "unit": _unit(inputs),
+        "unit": unit_of(inputs),
         "value_with_all": None,
         "budget": [],
         "advice": "",
         "factor": None,
         "verdict": None,
+        "parts": [],
     }
 
 
-def _titration_output(item: Titration) -> dict[str, Any]:
-    return {
-        "number": item.number, "blank": item.is_blank, "excluded": item.is_excluded, "titre": item.titre, "net": None,
-        "value": None, "in_set": False, "endpoint": item.endpoint,
-    }  # fmt: skip
+def _parts(
+    inputs: Inputs, inside: Sequence[Titration], titrations: Sequence[Titration], blank: float | None
+) -> tuple[list[Part], list[str]]:
+    """The further results, or why there are none yet."""
+    try:
+        return parts_of(inputs, inside, titrations, blank), []
+    except ValueError as problem:
+        return [], [str(problem)]
 
 
 def _fill_titrations(outputs: dict[str, Any], values: Mapping[int, float], blank: float | None) -> None:
@@ -125,7 +141,7 @@ def _values(
     """Value of every complete titration; an excluded one may give none, that can be why it is excluded."""
     found = {}
     for item in titrations:
-        if item.is_blank or not _complete(item):
+        if item.is_blank or not item.is_complete:
             continue
         try:
             found[item.number] = _value_of(inputs, item, blank, kind=kind)
@@ -153,24 +169,22 @@ def _result(
     inputs: Inputs, whole: Propagated, inside: Sequence[Titration], counted: Sequence[Titration],
     values: Mapping[int, float], *, reasons: list[str], tie: str, titrations: Sequence[Titration], blank: float | None,
 ) -> dict[str, Any]:  # fmt: skip
-    coverage = inputs["method"].get("coverage", "k2")
-    dof = whole.degrees_of_freedom
-    k = coverage_factor(max(dof, 1.0), rule=coverage)
+    k = factor_of(whole, inputs)
     counts = spread([values[item.number] for item in inside])
     titres = spread([float(item.titre or 0.0) for item in inside])
     flags = [flag for item in titrations if item.endpoint for flag in item.endpoint["flags"]] + ([tie] if tie else [])
     result: dict[str, Any] = {
         "value": whole.value,
         "u": whole.u,
-        "degrees_of_freedom": None if math.isinf(dof) else dof,
+        "degrees_of_freedom": finite(whole.degrees_of_freedom),
         "k": k,
         "U": k * whole.u,
-        "budget": [_line_output(line) for line in whole.budget],
-        "advice": _advice(whole),
+        "budget": [line_output(line) for line in whole.budget],
+        "advice": advice(whole),
         "acceptable": not reasons,
         "reasons": reasons,
         "flags": flags,
-        "outlier_tests": _outlier_tests([values[item.number] for item in counted]),
+        "outlier_tests": outlier_tests([values[item.number] for item in counted]),
         "statistics": {
             "n": counts.n,
             "mean_titre": titres.mean,
@@ -179,12 +193,12 @@ def _result(
             "rsd_percent": counts.rsd_percent,
             "range": titres.range,
         },
-        "value_with_all": _with_all(titrations, values),
+        "value_with_all": value_with_all(titrations, values),
     }
     if inputs["kind"] == "standardization":
         return result | _against_window(inputs, whole.value, flags)
     if inputs.get("specification"):
-        result["verdict"] = _verdict(inputs["specification"], whole, k * whole.u)
+        result["verdict"] = verdict_output(inputs["specification"], whole, k * whole.u)
     return result
 
 
@@ -204,56 +218,6 @@ def _against_window(inputs: Inputs, value: float, flags: list[str]) -> dict[str,
     return {"factor": value / nominal, "flags": flags + outside}
 
 
-def _verdict(limits: Inputs, whole: Propagated, expanded: float) -> dict[str, Any]:
-    found = verdict(
-        whole.value, standard_uncertainty=whole.u, expanded=expanded, lower=limits["lower"], upper=limits["upper"],
-        places=int(limits["places"]), rounding=limits["rounding"], rule=limits["rule"],
-        guard_factor=limits["guard_factor"],
-    )  # fmt: skip
-    return {
-        "outcome": found.outcome, "rounded": str(found.rounded), "lower": limits["lower"], "upper": limits["upper"],
-        "guard": found.guard, "probability": found.probability, "sentence": found.sentence,
-    }  # fmt: skip
-
-
-def _with_all(titrations: Sequence[Titration], values: Mapping[int, float]) -> float | None:
-    if not any(item.is_excluded for item in titrations if not item.is_blank):
-        return None
-    return sum(values.values()) / len(values)
-
-
-def _outlier_tests(values: Sequence[float]) -> list[dict[str, Any]]:
-    if len(values) < 3 or max(values) == min(values):
-        return []
-    kept = ("test", "suspect", "statistic", "critical", "alpha", "sides")
-    said = [(test, {key: getattr(test, key) for key in kept}) for test in (grubbs(values), dixon(values))]
-    return [line | {"beyond": test.is_beyond, "sentence": test.sentence} for test, line in said]
-
-
-def _advice(whole: Propagated) -> str:
-    if not whole.budget or whole.u == 0:
-        return ""
-    main = whole.budget[0]
-    without = math.sqrt(max(whole.u**2 - main.contribution**2, 0.0))
-    return (
-        f"Most comes from {main.label}, {main.share:.0%} of the variance; "
-        f"without it u would be {without:.2g} instead of {whole.u:.2g}."
-    )
-
-
-def _line_output(line: BudgetLine) -> dict[str, Any]:
-    dof = line.degrees_of_freedom
-    return {
-        "key": line.key, "label": line.label, "value": line.value, "unit": line.unit, "u": line.u,
-        "distribution": line.distribution, "type": line.kind, "sensitivity": line.sensitivity,
-        "contribution": line.contribution, "share": line.share, "degrees_of_freedom": None if math.isinf(dof) else dof,
-    }  # fmt: skip
-
-
-def _complete(item: Titration) -> bool:
-    return item.titre is not None and (item.is_blank or item.amount is not None)
-
-
 def _missing_beside(inputs: Inputs, blank: float | None) -> list[str]:
     """What no result can do without, beside the titrations: the blank, and the loss of a result on the dry basis."""
     method, found = inputs["method"], []
@@ -267,16 +231,19 @@ def _missing_beside(inputs: Inputs, blank: float | None) -> list[str]:
 
 def _too_few_blanks(titrations: Sequence[Titration]) -> list[str]:
     blanks = [item for item in titrations if item.is_blank and not item.is_excluded]
-    complete = sum(item.titre is not None for item in blanks)
+    complete = sum(item.is_complete for item in blanks)
     if complete == len(blanks):
         return []
     return [f"{complete} of {len(blanks)} blanks are complete. Titrate the others."]
 
 
+def _cold(titrations: Sequence[Titration]) -> list[str]:
+    """A volume that is corrected to 20 degC needs the temperature it was read at."""
+    cold = [item for item in titrations if item.lacks_temperature and item.titre is not None and not item.is_excluded]
+    names = ", ".join(f"{'blank' if item.is_blank else 'titration'} {item.number}" for item in cold)
+    return [f"The temperature of {names} is not entered; the volumes are corrected to 20 °C."] if cold else []
+
+
 def _missing(inputs: Inputs, counted: Sequence[Titration]) -> str:
     needed = int(inputs["method"]["replicates_needed"])
     return f"{len(counted)} of {needed} titrations are complete. Enter the amount and the readings of {needed}."
-
-
-def _unit(inputs: Inputs) -> str:
-    return str(inputs["method"].get("unit", "mol/L"))

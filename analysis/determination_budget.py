@@ -38,8 +38,12 @@ def propagated(
     """Value, uncertainty and budget; a solution's line is opened into the physical inputs it rests on."""
     make = model.run_value if kind == "run" else model.standardization_value
     models = [make(inputs, item) for item in inside]
-    named = named_inputs(inputs, inside, titrations, blank, kind=kind)
-    whole = _without_the_smaller(propagate(model.mean_model(models), named))
+    return combined(model.mean_model(models), named_inputs(inputs, inside, titrations, blank, kind=kind), inputs)
+
+
+def combined(mean: model.Model, named: Sequence[Input], inputs: Inputs) -> Propagated:
+    """The law of propagation over named inputs, scatter counted once, solutions opened."""
+    whole = _without_the_smaller(propagate(mean, named))
     opened = [line for each in whole.budget for line in _opened(each, inputs)]
     used = [line for line in merged(opened) if line.u > 0 or line.contribution]
     return from_budget(whole.value, sorted(used, key=lambda line: -abs(line.contribution)))
@@ -59,7 +63,7 @@ def named_inputs(
     for item in inside:
         estimates = {each.name: complex(each.value) for each in all_inputs(inputs, [item], [], blank, kind=kind)}
         alone.append(make(inputs, item)(estimates | {"repeatability": 1}).real)
-    return [*all_inputs(inputs, inside, titrations, blank, kind=kind), _repeatability(spread(alone))]
+    return [*all_inputs(inputs, inside, titrations, blank, kind=kind), repeatability(spread(alone))]
 
 
 def _without_the_smaller(whole: Propagated) -> Propagated:
@@ -69,7 +73,7 @@ def _without_the_smaller(whole: Propagated) -> Propagated:
     return from_budget(whole.value, [line for line in whole.budget if line.key != smaller])
 
 
-def _repeatability(alone: Spread) -> Input:
+def repeatability(alone: Spread) -> Input:
     """Type A: the standard deviation of the mean of the titrations that count, as a factor of the result."""
     relative = (alone.sd or 0.0) / math.sqrt(alone.n) / abs(alone.mean) if alone.mean else 0.0
     return Input(

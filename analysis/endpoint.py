@@ -50,6 +50,7 @@ class CurveSettings:
     deciding: str
     checking: str | None = None
     fixed_reading: float | None = None
+    first_fixed_reading: float | None = None
     expected: int = 1
     chosen: int = 1
     system: System | None = None
@@ -111,6 +112,8 @@ def _check(settings: CurveSettings) -> None:
             raise ValueError(f"Family is {name!r}; expected one of {', '.join(FAMILIES)}.")
     if "fixed" in (settings.deciding, settings.checking) and settings.fixed_reading is None:
         raise ValueError("The family fixed needs a reading, such as pH 8.2.")
+    if settings.first_fixed_reading is not None and settings.first_fixed_reading == settings.fixed_reading:
+        raise ValueError(f"Both fixed readings are {settings.fixed_reading:g}; two different ones are expected.")
     for name, value in (("Expected endpoints", settings.expected), ("Chosen endpoint", settings.chosen)):
         if value < 1:
             raise ValueError(f"{name} is {value}; 1 or more is expected.")
@@ -167,7 +170,7 @@ def _one_family(
     if family == "segments" and curve.quantity in STRAIGHT:
         return (_endpoint(curve, *crossing(curve), family),), None
     if family == "fixed" and settings.fixed_reading is not None:
-        return (_endpoint(curve, *fixed_reading(curve, reading=settings.fixed_reading, noise=noise), family),), None
+        return _fixed(curve, settings, noise=noise), None
     if family == "gran" and system and near:
         return (_endpoint(curve, *gran(curve, system=system, near=near[-1]), family),), None
     if family == "model" and system and near:
@@ -175,6 +178,27 @@ def _one_family(
         pairs = zip(fit.endpoints, fit.endpoint_us, strict=True)
         return tuple(_endpoint(curve, volume, u, family, fit.degrees_of_freedom) for volume, u in pairs), fit
     return (), None
+
+
+def begins_beyond(curve: Curve, settings: CurveSettings) -> bool:
+    """Whether a curve begins past the first of two fixed readings, on the way to the second."""
+    first, last = settings.first_fixed_reading, settings.fixed_reading
+    return first is not None and last is not None and (curve.reading[0] - first) * (last - first) > 0
+
+
+def _fixed(curve: Curve, settings: CurveSettings, *, noise: float) -> tuple[Endpoint, ...]:
+    """The fixed endpoint, after the first of two where there are two.
+
+    A curve that begins beyond the first of them has nothing to titrate there: that endpoint is where it begins.
+    """
+    assert settings.fixed_reading is not None
+    last = _endpoint(curve, *fixed_reading(curve, reading=settings.fixed_reading, noise=noise), "fixed")
+    first = settings.first_fixed_reading
+    if first is None:
+        return (last,)
+    if begins_beyond(curve, settings):
+        return (_endpoint(curve, float(curve.volume[0]), 0.0, "fixed"), last)
+    return (_endpoint(curve, *fixed_reading(curve, reading=first, noise=noise), "fixed"), last)
 
 
 def _endpoint(curve: Curve, volume: float, u: float, family: str, dof: float = math.inf) -> Endpoint:
@@ -227,6 +251,11 @@ def _flags_of_endpoints(
     found = []
     if near and len(near) != settings.expected:
         found.append(f"{len(near)} endpoints found, {settings.expected} expected.")
+    if begins_beyond(curve, settings):
+        found.append(
+            f"The curve begins at {curve.quantity} {curve.reading[0]:.2f}, beyond {settings.first_fixed_reading:g}: "
+            "the first endpoint is where it begins."
+        )
     at = int(np.clip(np.searchsorted(curve.volume, decided.volume), 1, curve.volume.size - 1))
     step = float(curve.volume[at] - curve.volume[at - 1])
     if step > 0.3 and decided.family in ("derivative", "parabola", "polynomial"):

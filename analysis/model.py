@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Mapping, Sequence
 from typing import Any
 
@@ -11,23 +12,26 @@ from analysis.uncertainty import Input
 
 Model = Callable[[Mapping[str, complex]], complex]
 Values = Mapping[str, complex]
+SQRT_3 = math.sqrt(3)
 
 
 def run_value(inputs: Mapping[str, Any], titration: Titration) -> Model:
     """The result of one titration of a run [method's unit] as a function of the named inputs.
 
-    Names: c, blank, bias, volume (a shift of every titre, mL), amount (a shift of the sample amount), excess,
-    excess_volume, flask i, aliquot i, molar_mass, loss, repeatability (a factor).
+    Names: c, blank, bias, volume (a shift of every titre, mL), other_end (the same of an endpoint that is taken off),
+    temperature (a shift, K), amount (a shift of the sample amount), air (density, kg/m3), excess, excess_volume,
+    flask i, aliquot i, molar_mass, loss, repeatability (a factor).
     """
     method = inputs["method"]
     kind = choice(method["titration"], ("direct", "blank_difference", "back"), name="Titration")
     ratio, basis = amount.ratio_of(method["ratio"]), method.get("basis", "as_is")
     scale = result_scale(inputs)
     dilutions = len(inputs.get("dilutions") or [])
-    titre, taken = float(titration.titre or 0.0), float(titration.amount or 0.0)
+    taken = float(titration.amount or 0.0)
+    apparent = buoyancy_of(inputs["sample"])
 
     def value(v: Values) -> complex:
-        shifted = titre + v["volume"] + v["reading"] - v["bias"]
+        shifted = titre_of(titration, v)
         if kind == "blank_difference":
             n = amount.amount_by_difference(concentration=v["c"], blank=v["blank"], titre=shifted, ratio=ratio)
         elif kind == "back":
@@ -38,7 +42,13 @@ def run_value(inputs: Mapping[str, Any], titration: Titration) -> Model:
         else:
             n = amount.amount_direct(concentration=v["c"], net=shifted - v["blank"], ratio=ratio)
         steps = [(v[f"flask {i}"], v[f"aliquot {i}"]) for i in range(1, dilutions + 1)]
-        whole = n * amount.dilution(steps) / (taken + v["amount"]) * v["molar_mass"] ** scale.molar * scale.factor
+        whole = (
+            n
+            * amount.dilution(steps)
+            / ((taken + v["amount"]) * apparent(v))
+            * v["molar_mass"] ** scale.molar
+            * scale.factor
+        )
         return amount.dry_basis(whole, loss_percent=v["loss"]) if basis != "as_is" else whole
 
     return value
@@ -78,24 +88,51 @@ def result_scale(inputs: Mapping[str, Any]) -> Scale:
 def standardization_value(inputs: Mapping[str, Any], titration: Titration) -> Model:
     """The concentration [mol/L] from one titration of a standardization.
 
-    Names: mass or aliquot shift (amount), purity, molar_mass, c_standard, blank, bias, volume, repeatability.
+    Names: mass or aliquot shift (amount), air, purity, molar_mass, c_standard, blank, bias, volume, other_end,
+    temperature, repeatability.
     """
     standard, ratio = inputs["standard"], amount.ratio_of(inputs["method"]["ratio"])
-    titre, taken = float(titration.titre or 0.0), float(titration.amount or 0.0)
+    taken = float(titration.amount or 0.0)
+    apparent = buoyancy_of(standard)
     by_mass = choice(standard["basis"], ("mass", "titrant"), name="Basis") == "mass"
 
     def value(v: Values) -> complex:
-        net = titre + v["volume"] + v["reading"] - v["bias"] - v["blank"]
+        net = titre_of(titration, v) - v["blank"]
         if by_mass:
             return amount.titrant_by_mass(
-                mass=taken + v["amount"], buoyancy=1, purity=v["purity"], ratio=ratio, molar_mass=v["molar_mass"],
-                volume=net,
+                mass=taken + v["amount"], buoyancy=apparent(v), purity=v["purity"], ratio=ratio,
+                molar_mass=v["molar_mass"], volume=net,
             )  # fmt: skip
         return amount.titrant_by_titrant(
             concentration=v["c_standard"], aliquot=taken + v["amount"], ratio=ratio, volume=net
         )
 
     return value
+
+
+def titre_of(titration: Titration, v: Values) -> complex:
+    """The titre [mL] with the shifts that its inputs may have, before the blank."""
+    titre = float(titration.titre or 0.0) * (1 - titration.expansion * v["temperature"])
+    return titre + v["volume"] - v["other_end"] + v["reading"] - v["bias"]
+
+
+def buoyancy_of(weighed: Mapping[str, Any]) -> Model:
+    """True mass over apparent mass as a function of the density of air; 1 where it is not corrected."""
+    density = (weighed.get("buoyancy") or {}).get("density")
+    if density is None:
+        return lambda _: 1.0
+    heavy = 1000 * positive(density, name="Density")
+    return lambda v: amount.buoyancy(air=v["air"], density=heavy)
+
+
+def _air(weighed: Mapping[str, Any]) -> list[Input]:
+    """The density of the air of a weighing [kg/m3]; a room is within 0.05 of 1.2 (common practice)."""
+    settings = weighed.get("buoyancy") or {}
+    if not settings:
+        return []
+    air = positive(settings.get("air", "1.2"), name="Density of air")
+    within = number(settings.get("within", "0.05"), name="Density of air within")
+    return [Input("air", "air", "density of the air", air, within / SQRT_3, "kg/m3", "rectangular")]
 
 
 def mean_model(models: Sequence[Model]) -> Model:
@@ -121,6 +158,7 @@ def run_inputs(inputs: Mapping[str, Any]) -> list[Input]:
             "%",
         ),
     ]
+    found += _air(sample)
     return [*found, *_excess_inputs(inputs.get("excess")), *_dilution_inputs(inputs.get("dilutions") or [])]
 
 
@@ -172,6 +210,7 @@ def standardization_inputs(inputs: Mapping[str, Any]) -> list[Input]:
         raise ValueError(f"Purity is {standard['purity']}; a mass fraction from 0 to 1 is expected, not a percentage.")
     return [
         *found,
+        *_air(standard),
         Input(
             "purity",
             standard["key"],

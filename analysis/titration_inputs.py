@@ -13,7 +13,11 @@ Inputs = Mapping[str, Any]
 
 @dataclass(frozen=True, slots=True)
 class Titration:
-    """One titration as read: amount in the sample's unit, titre in mL (None when it is not complete yet)."""
+    """One titration as read: amount in the sample's unit, titre in mL (None when it is not complete yet).
+
+    ``ends`` are all its endpoints in order, volume and u [mL]; ``expansion`` is that of its solution less that of the
+    glass [1/K]; ``lacks_temperature`` where the method corrects volumes and none was read.
+    """
 
     number: int
     is_blank: bool
@@ -23,6 +27,15 @@ class Titration:
     titre_u: float
     temperature: float | None
     endpoint: Mapping[str, Any] | None
+    ends: tuple[tuple[float, float], ...] = ()
+    expansion: float = 0.0
+    lacks_temperature: bool = False
+
+    @property
+    def is_complete(self) -> bool:
+        """Whether it has all that a result needs."""
+        has_amount = self.is_blank or self.amount is not None
+        return self.titre is not None and has_amount and not self.lacks_temperature
 
 
 def number(value: Any, *, name: str) -> float:
@@ -69,16 +82,19 @@ def correction_at(reading: float, table: Sequence[Sequence[Any]]) -> float:
     return points[-1][1]
 
 
-def burette_titre(line: Inputs, burette: Inputs) -> float | None:
-    """Titre [mL] from two readings as typed, each corrected by the burette's table; None while one is missing."""
+def burette_titre(line: Inputs, burette: Inputs, *, to: str = "end") -> float | None:
+    """Titre [mL] from two readings as typed, each corrected by the burette's table; None while one is missing.
+
+    ``to`` is "end", or "first_end" for the first of two endpoints.
+    """
     where = f"titration {line['number']}"
     start = optional(line["start"], name=f"Start of {where}")
-    end = optional(line["end"], name=f"End of {where}")
+    end = optional(line.get(to), name=f"End of {where}" if to == "end" else f"First endpoint of {where}")
     if start is None or end is None:
         return None
     if start < 0 or end < start:
         raise ValueError(
-            f"Readings of {where} are {line['start']} and {line['end']} mL; the end must not be below the start."
+            f"Readings of {where} are {line['start']} and {line[to]} mL; the end must not be below the start."
         )
     table = burette.get("table") or []
     return round(end - start, 9) + correction_at(end, table) - correction_at(start, table)

@@ -9,9 +9,13 @@ from typing import Any
 from analysis.curve_titre import curve_titre
 from analysis.titration_inputs import Titration, burette_titre, number, optional
 from analysis.uncertainty import Input
+from analysis.water import water_expansion
+from analysis.weighing import GLASS, SOLUTIONS, volume_at
 
 Inputs = Mapping[str, Any]
-SQRT_12, SQRT_6 = math.sqrt(12), math.sqrt(6)
+SQRT_12, SQRT_6, SQRT_3 = math.sqrt(12), math.sqrt(6), math.sqrt(3)
+REFERENCE = 20.0  # [degC] at which volumes are stated, ISO 385 and ISO 4787
+End = tuple[float, float]
 
 
 def read_titrations(inputs: Inputs) -> list[Titration]:
@@ -23,8 +27,12 @@ def read_titrations(inputs: Inputs) -> list[Titration]:
 
 def blank_of(titrations: Sequence[Titration]) -> float | None:
     """Mean titre of the accepted blanks [mL], or None when there is none."""
-    blanks = [item.titre for item in titrations if item.is_blank and not item.is_excluded and item.titre is not None]
+    blanks = [float(item.titre or 0.0) for item in _blanks(titrations)]
     return sum(blanks) / len(blanks) if blanks else None
+
+
+def _blanks(titrations: Sequence[Titration]) -> list[Titration]:
+    return [item for item in titrations if item.is_blank and not item.is_excluded and item.is_complete]
 
 
 def titre_inputs(
@@ -42,7 +50,7 @@ def titre_inputs(
     bias = optional(method.get("indicator_bias_mL"), name="Indicator bias") or 0.0
     bias_u = optional(method.get("indicator_u_mL"), name="u of the indicator") or 0.0
     random = math.sqrt(sum(item.titre_u**2 for item in inside)) / len(inside) if inside else 0.0
-    blanks = [item for item in titrations if item.is_blank and not item.is_excluded and item.titre is not None]
+    blanks = _blanks(titrations)
     blank_u = math.sqrt(sum(item.titre_u**2 for item in blanks)) / len(blanks) if blanks else 0.0
     from_curve = any(item.endpoint for item in inside)
     label = "endpoint of the curve" if from_curve else "reading the burette"
@@ -66,7 +74,19 @@ def titre_inputs(
             bias_u,
             "mL",
         ),
+        Input("other_end", "other_end", "the other endpoint", 0.0, 0.0, "mL"),
+        _temperature(inputs),
     ]
+
+
+def _temperature(inputs: Inputs) -> Input:
+    """How far the solution may be from the temperature written, or from 20 degC where none is corrected.
+
+    Rectangular about it (QUAM:2012.P1, A2); the titre follows by the expansion of its solution less that of the glass.
+    """
+    settings = inputs.get("temperature") or {}
+    within = number(settings.get("within") or 0, name="Temperature within")
+    return Input("temperature", "temperature", "temperature of the titrant", 0.0, within / SQRT_3, "°C", "rectangular")
 
 
 def _titration(line: Inputs, inputs: Inputs, *, is_blank: bool) -> Titration:
@@ -74,16 +94,54 @@ def _titration(line: Inputs, inputs: Inputs, *, is_blank: bool) -> Titration:
     amount = optional(line.get("amount"), name=f"Amount of {where}")
     if amount is not None and amount <= 0:
         raise ValueError(f"Amount of {where} is {line['amount']}; a number above 0 is expected.")
-    endpoint: dict[str, Any] | None = None
-    resolution = number(inputs["burette"]["resolution"], name="Resolution of the burette")
-    titre_u = resolution / SQRT_12 * math.sqrt(2)
-    if line.get("curve"):
-        endpoint = curve_titre(line["curve"], settings=inputs["method"].get("curve") or {}, where=where)
-        titre, titre_u = endpoint["volume"], endpoint["u"]
-    else:
-        titre = burette_titre(line, inputs["burette"])
+    temperature = optional(line.get("temperature"), name=f"Temperature of {where}")
+    settings = inputs.get("temperature") or {}
+    is_corrected = bool(settings.get("correct"))
+    stretch, expansion = _stretch(settings, temperature if is_corrected else None, where=where)
+    endpoint, titre, ends = _ends(line, inputs, where=where)
+    scaled = tuple((volume * stretch, u) for volume, u in ends)
+    titre = None if titre is None else (titre[0] * stretch, titre[1])
     return Titration(
         number=int(line["number"]), is_blank=is_blank, is_excluded=bool(line.get("excluded")), amount=amount,
-        titre=titre, titre_u=titre_u, temperature=optional(line.get("temperature"), name=f"Temperature of {where}"),
-        endpoint=endpoint,
+        titre=titre and titre[0], titre_u=titre[1] if titre else 0.0, temperature=temperature, endpoint=endpoint,
+        ends=scaled, expansion=expansion, lacks_temperature=is_corrected and temperature is None,
     )  # fmt: skip
+
+
+def _ends(line: Inputs, inputs: Inputs, *, where: str) -> tuple[dict[str, Any] | None, End | None, tuple[End, ...]]:
+    """What a curve says, the titre that counts with its u, and every endpoint in order [mL]."""
+    if line.get("curve"):
+        found = curve_titre(line["curve"], settings=inputs["method"].get("curve") or {}, where=where)
+        ends = tuple((end["volume"], end["u"]) for end in found["all"][found["family"]])
+        return found, (found["volume"], found["u"]), ends
+    burette = inputs["burette"]
+    u = number(burette["resolution"], name="Resolution of the burette") / SQRT_12 * math.sqrt(2)
+    titre, first = burette_titre(line, burette), burette_titre(line, burette, to="first_end")
+    if titre is None:
+        return None, None, ()
+    if first is None:
+        return None, (titre, u), ((titre, u),)
+    if first > titre:
+        raise ValueError(
+            f"Readings of {where} are {line['first_end']} mL at the first endpoint and {line['end']} mL at the "
+            "second; the second must not be below the first."
+        )
+    return None, (titre, u), ((first, u), (titre, u))
+
+
+def _stretch(settings: Inputs, temperature: float | None, *, where: str) -> tuple[float, float]:
+    """Volume at 20 degC over volume as read, and how fast a volume changes with temperature [1/K]."""
+    if not settings:
+        return 1.0, 0.0
+    glass, solution = settings.get("glass", "borosilicate"), settings.get("solution", "water")
+    if glass not in GLASS:
+        raise ValueError(f"Glass is {glass!r}; expected one of {', '.join(GLASS)}.")
+    if solution != "water" and solution not in SOLUTIONS:
+        raise ValueError(f"Solution expands like {solution!r}; expected one of water, {', '.join(SOLUTIONS)}.")
+    at = REFERENCE if temperature is None else temperature
+    try:
+        liquid = SOLUTIONS.get(solution)
+        factor = volume_at(1.0, temperature=at, glass=GLASS[glass], liquid=liquid)
+        return factor, (water_expansion(at) if liquid is None else liquid) - GLASS[glass]
+    except ValueError as problem:
+        raise ValueError(f"Temperature of {where}: {problem}") from problem

@@ -14,6 +14,7 @@ from dataclasses import dataclass
 from scipy import stats
 
 STEP = 1e-30
+WHOLE = 0.005  # 18.999 degrees of freedom are 19 that lost a digit on the way
 
 
 @dataclass(frozen=True, slots=True)
@@ -170,7 +171,8 @@ def coverage_factor(degrees_of_freedom: float, *, rule: str = "effective", level
         raise ValueError(f"Effective degrees of freedom are {degrees_of_freedom}; at least 1 are needed for a factor.")
     if math.isinf(degrees_of_freedom):
         return float(stats.norm.ppf(0.5 + level / 2))
-    return float(stats.t.ppf(0.5 + level / 2, math.floor(degrees_of_freedom)))
+    whole = math.floor(degrees_of_freedom + WHOLE)
+    return float(stats.t.ppf(0.5 + level / 2, whole))
 
 
 def _one_line(group: Sequence[BudgetLine]) -> BudgetLine:

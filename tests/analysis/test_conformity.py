@@ -133,3 +133,11 @@ def test_process_risks_shift_from_consumer_to_producer_with_a_wider_guard_band()
 def test_acceptance_limits_refuse_a_guard_band_that_leaves_nothing() -> None:
     with pytest.raises(ValueError, match="twice that is more than the limits"):
         acceptance_limits(lower=1.0, upper=2.0, guard=0.6)
+
+
+def test_verdict_rounds_to_significant_figures() -> None:
+    given = {"standard_uncertainty": 0.1, "expanded": 0.2, "lower": None, "upper": "120", "rounding": "half_up"}
+    assert verdict(120.4, rule="simple", figures=3, **given).outcome == "conforms"
+    assert verdict(120.4, rule="simple", places=1, **given).outcome == "does_not_conform"
+    with pytest.raises(ValueError, match="to None decimals and None significant figures"):
+        verdict(120.4, rule="simple", **given)
