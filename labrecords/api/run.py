@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from django.shortcuts import get_object_or_404
-from drf_spectacular.utils import OpenApiParameter, extend_schema
+from drf_spectacular.utils import OpenApiParameter, extend_schema, extend_schema_field
 from rest_framework import serializers
 from rest_framework.decorators import api_view
 from rest_framework.request import Request
@@ -14,15 +14,32 @@ from labrecords.models import Calculation, Replicate, Run
 from labrecords.queries.run import runs, runs_found
 
 
+class PartShape(serializers.Serializer[dict[str, object]]):
+    """One further result of a run, in the unit of the whole."""
+
+    name = serializers.CharField()
+    value = serializers.FloatField()
+    expanded_uncertainty = serializers.FloatField(source="U")
+    coverage_factor = serializers.FloatField(source="k")
+    unit = serializers.CharField()
+
+
 class ResultShape(serializers.ModelSerializer[Calculation]):
     """A result, never without its uncertainty and its unit."""
+
+    parts = serializers.SerializerMethodField()
+
+    @extend_schema_field(PartShape(many=True))
+    def get_parts(self, calculation: Calculation) -> object:
+        """The results of two endpoints beside the whole."""
+        return PartShape(calculation.outputs.get("parts", []), many=True).data
 
     class Meta:
         model = Calculation
         fields = (
             "number", "value", "standard_uncertainty", "expanded_uncertainty", "coverage_factor",
             "degrees_of_freedom", "unit", "is_acceptable", "needs_person", "outcome", "engine_version",
-            "inputs_sha256", "computed_at",
+            "inputs_sha256", "computed_at", "parts",
         )  # fmt: skip
 
 
@@ -54,12 +71,15 @@ class ReplicateShape(serializers.ModelSerializer[Replicate]):
     kind = serializers.CharField()
     amount = serializers.CharField(allow_null=True)
     start = serializers.CharField(allow_null=True)
+    first_end = serializers.CharField(allow_null=True)
     end = serializers.CharField(allow_null=True)
     temperature = serializers.CharField(allow_null=True)
 
     class Meta:
         model = Replicate
-        fields = ("kind", "number", "amount", "start", "end", "temperature", "is_excluded", "exclusion_cause")
+        fields = (
+            "kind", "number", "amount", "start", "first_end", "end", "temperature", "is_excluded", "exclusion_cause",
+        )  # fmt: skip
 
 
 class RunWithReadingsShape(RunShape):

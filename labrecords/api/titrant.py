@@ -22,6 +22,7 @@ RULE = (
     "standard_substance", "standard_titrant", "ratio", "aliquot", "standard_mass", "indicator",
     "indicator_bias",
     "indicator_u", "replicates_needed", "policy", "limit", "limit_kind", "coverage",
+    "expands_like", "buoyancy", "temperature_correction", "temperature_within",
 )  # fmt: skip
 
 
@@ -65,6 +66,10 @@ class TitrantEntry(serializers.Serializer[Titrant]):
     limit = serializers.DecimalField(8, 4)
     limit_kind = serializers.ChoiceField(Titrant._meta.get_field("limit_kind").choices)
     coverage = serializers.ChoiceField(Titrant._meta.get_field("coverage").choices, required=False)
+    expands_like = serializers.ChoiceField(Titrant._meta.get_field("expands_like").choices, required=False)
+    buoyancy = serializers.BooleanField(required=False)
+    temperature_correction = serializers.BooleanField(required=False)
+    temperature_within = serializers.DecimalField(4, 1, required=False)
 
     def validate(self, attrs: dict[str, Any]) -> dict[str, Any]:
         """Both ways of standardizing are named to the service, also when one is left out."""

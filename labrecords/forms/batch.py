@@ -9,6 +9,7 @@ from django import forms
 from django.utils import timezone
 
 from labrecords.forms.fields import CountField, DayField, NumberField
+from labrecords.forms.parts import PartsField
 from labrecords.models import (
     Batch,
     BatchState,
@@ -110,6 +111,12 @@ class VersionForm(forms.Form):
     deciding_family = forms.ChoiceField(choices=FAMILIES, label="Deciding family", required=False)
     checking_family = forms.ChoiceField(choices=FAMILIES, label="Checking family", required=False)
     fixed_reading = NumberField(label="Fixed pH or mV", required=False)
+    first_fixed_reading = NumberField(
+        label="First fixed pH or mV", required=False, help_text="where a curve has two, such as 8.3 before 4.5"
+    )
+    agreement_limit = NumberField(
+        label="Families may differ by", initial="3", help_text="combined standard uncertainties; more needs a person"
+    )
     endpoints_expected = CountField(label="Endpoints expected", initial="1")
     endpoint_chosen = CountField(label="The one that counts", initial="1")
     system = forms.JSONField(
@@ -129,7 +136,17 @@ class VersionForm(forms.Form):
     quantity = forms.ChoiceField(choices=MethodVersion._meta.get_field("quantity").choices, label="Result quantity")
     unit = forms.CharField(max_length=16, label="Unit", help_text="g/100 mL, mg/L, %, mol/L, ...")
     places = CountField(label="Decimals")
+    parts = PartsField(label="Further results of two endpoints")
     basis = forms.ChoiceField(choices=MethodVersion._meta.get_field("basis").choices, label="Basis")
+    loss_u = NumberField(label="u of the loss on drying, % (m/m)", required=False, initial="0")
+    sample_density = NumberField(
+        label="Density of the sample, g/cm³", required=False, help_text="weighings are then corrected for buoyancy"
+    )
+    temperature_correction = forms.BooleanField(label="Volumes are corrected to 20 °C", required=False)
+    temperature_within = NumberField(
+        label="Temperature known within, °C", initial="4",
+        help_text="about the temperature read, or about 20 °C where volumes are not corrected",
+    )  # fmt: skip
     coverage = forms.ChoiceField(choices=MethodVersion._meta.get_field("coverage").choices, label="Coverage factor")
     instructions = forms.CharField(
         label="How the method goes", required=False, widget=forms.Textarea(attrs={"rows": 5})
@@ -153,7 +170,7 @@ class VersionForm(forms.Form):
         """The sample's unit follows its kind; an empty bias is none."""
         clean = super().clean() or {}
         clean["sample_unit"] = {"volume": "mL", "mass": "g"}.get(clean.get("sample_by", ""), "mL")
-        for name in ("indicator_bias", "indicator_u"):
+        for name in ("indicator_bias", "indicator_u", "loss_u"):
             clean[name] = clean.get(name) or 0
         return clean
 
@@ -185,6 +202,7 @@ class LimitForm(forms.Form):
     upper = NumberField(label="Upper limit", required=False)
     unit = forms.CharField(max_length=16, label="Unit", required=False)
     places = CountField(label="Decimals", required=False)
+    figures = CountField(label="or significant figures", required=False)
     rounding = forms.ChoiceField(choices=[("half_up", "half up"), ("half_even", "half even")], label="Rounding")
     rule = forms.ChoiceField(choices=[("simple", "simple acceptance"), ("guard", "guard band")], label="Rule")
     guard_factor = NumberField(label="Guard, times U", required=False, initial="1")

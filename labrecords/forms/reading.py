@@ -10,6 +10,7 @@ from labrecords.rules.number import parse_number
 LABELS = {
     "amount": "Amount",
     "start": "Start",
+    "first_end": "First endpoint",
     "end": "End",
     "temperature": "Temperature",
     "loss": "Loss on drying",

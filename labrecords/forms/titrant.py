@@ -36,6 +36,15 @@ class TitrantForm(forms.Form):
     policy = OneOfField(choices=Titrant._meta.get_field("policy").choices, label="Which replicates count")
     limit = NumberField(label="Limit")
     limit_kind = OneOfField(choices=Titrant._meta.get_field("limit_kind").choices, label="Limit is a")
+    expands_like = OneOfField(
+        choices=Titrant._meta.get_field("expands_like").choices, label="Expands with temperature like"
+    )
+    temperature_correction = forms.BooleanField(label="Volumes are corrected to 20 °C", required=False)
+    temperature_within = NumberField(
+        label="Temperature known within, °C", initial="4",
+        help_text="about the temperature read, or about 20 °C where volumes are not corrected",
+    )  # fmt: skip
+    buoyancy = forms.BooleanField(label="Weighings of the standard are corrected for buoyancy", required=False)
     coverage = OneOfField(choices=Titrant._meta.get_field("coverage").choices, label="Coverage factor")
 
 

@@ -72,6 +72,9 @@ class MethodVersion(models.Model):
     deciding_family = models.CharField(max_length=12, blank=True)
     checking_family = models.CharField(max_length=12, blank=True)
     fixed_reading = models.DecimalField(max_digits=8, decimal_places=3, null=True)
+    first_fixed_reading = models.DecimalField(
+        max_digits=8, decimal_places=3, null=True, help_text="the first of two fixed endpoints"
+    )
     endpoints_expected = models.PositiveSmallIntegerField(default=1)
     endpoint_chosen = models.PositiveSmallIntegerField(default=1)
     agreement_limit = models.DecimalField(max_digits=4, decimal_places=1, default=3)
@@ -96,6 +99,22 @@ class MethodVersion(models.Model):
         max_length=10,
         choices=[("k2", "k = 2"), ("effective", "from the effective degrees of freedom")],
         default="k2",
+    )
+    sample_density = models.DecimalField(
+        max_digits=8, decimal_places=4, null=True, help_text="g/cm3, where weighings are corrected for buoyancy"
+    )
+    temperature_correction = models.BooleanField(default=False, help_text="volumes are corrected to 20 degC")
+    temperature_within = models.DecimalField(
+        max_digits=4,
+        decimal_places=1,
+        default=0,
+        help_text="degC about the temperature read, or about 20 degC where none is corrected",
+    )
+    loss_u = models.DecimalField(
+        max_digits=6, decimal_places=3, default=0, help_text="standard uncertainty of the loss on drying, % (m/m)"
+    )
+    parts = models.JSONField(
+        default=list, help_text='further results of two endpoints, [{"name": "carbonate", "takes": "first", ...}, ...]'
     )
     instructions = models.TextField(blank=True)
 
@@ -138,3 +157,8 @@ class MethodVersion(models.Model):
 
     def __str__(self) -> str:
         return f"{self.method.code}, version {self.number}"
+
+    @property
+    def reads_two_ends(self) -> bool:
+        """Whether a burette is read at two endpoints."""
+        return bool(self.parts) and self.endpoint == "indicator"

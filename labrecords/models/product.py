@@ -58,6 +58,9 @@ class SpecificationLimit(models.Model):
     upper = models.DecimalField(max_digits=12, decimal_places=6, null=True)
     unit = models.CharField(max_length=16)
     places = models.PositiveSmallIntegerField(help_text="decimals the result is rounded to before comparison")
+    figures = models.PositiveSmallIntegerField(
+        null=True, help_text="significant figures it is rounded to instead, where the limit says so"
+    )
     rounding = models.CharField(max_length=10, choices=[("half_up", "half up"), ("half_even", "half even")])
     rule = models.CharField(max_length=8, choices=[("simple", "simple acceptance"), ("guard", "guard band")])
     guard_factor = models.DecimalField(max_digits=4, decimal_places=2, default=1, help_text="g = factor * U")
@@ -73,6 +76,9 @@ class SpecificationLimit(models.Model):
             models.CheckConstraint(
                 condition=Q(lower__isnull=True) | Q(upper__isnull=True) | Q(lower__lt=F("upper")),
                 name="specification_limit_in_order",
+            ),
+            models.CheckConstraint(
+                condition=Q(figures__isnull=True) | Q(figures__gte=1), name="specification_figures_at_least_one"
             ),
             models.CheckConstraint(condition=Q(guard_factor__gte=0), name="specification_guard_not_negative"),
         ]

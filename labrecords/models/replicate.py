@@ -36,6 +36,7 @@ class Replicate(models.Model):
     number = models.PositiveSmallIntegerField()
     amount = ReadingField(null=True, help_text="g or mL of sample or standard")
     start = ReadingField(null=True, help_text="mL")
+    first_end = ReadingField(null=True, help_text="mL, at the first of two endpoints")
     end = ReadingField(null=True, help_text="mL")
     temperature = ReadingField(null=True, help_text="degC")
     observation = models.CharField(max_length=120, blank=True)
@@ -78,6 +79,13 @@ class Replicate(models.Model):
             models.CheckConstraint(
                 condition=Q(start__isnull=True) | Q(end__isnull=True) | Q(end__gte=models.F("start")),
                 name="replicate_end_not_below_start",
+            ),
+            models.CheckConstraint(
+                condition=Q(first_end__isnull=True)
+                | Q(curve__isnull=True)
+                & (Q(start__isnull=True) | Q(first_end__gte=models.F("start")))
+                & (Q(end__isnull=True) | Q(first_end__lte=models.F("end"))),
+                name="replicate_first_end_between",
             ),
             models.CheckConstraint(
                 condition=Q(curve__isnull=True) | Q(start__isnull=True, end__isnull=True),

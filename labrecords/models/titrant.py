@@ -9,6 +9,13 @@ from django.db.models import F, Q
 from labrecords.models.standard import LotState
 
 
+class Expansion(models.TextChoices):
+    """How the solution expands with temperature."""
+
+    WATER = "water", "water"
+    ETHANOLIC = "ethanolic alkali", "ethanolic alkali"
+
+
 class Titrant(models.Model):
     """A kind of solution: nominal concentration, accepted window, intervals, and how it is standardized."""
 
@@ -43,6 +50,15 @@ class Titrant(models.Model):
         max_length=10,
         choices=[("k2", "k = 2"), ("effective", "from the effective degrees of freedom")],
         default="k2",
+    )
+    expands_like = models.CharField(max_length=20, choices=Expansion, default=Expansion.WATER)
+    buoyancy = models.BooleanField(default=False, help_text="weighings of the standard are corrected for buoyancy")
+    temperature_correction = models.BooleanField(default=False, help_text="volumes are corrected to 20 degC")
+    temperature_within = models.DecimalField(
+        max_digits=4,
+        decimal_places=1,
+        default=0,
+        help_text="degC about the temperature read, or about 20 degC where none is corrected",
     )
     superseded_by = models.ForeignKey("self", on_delete=models.PROTECT, null=True, related_name="supersedes")
 

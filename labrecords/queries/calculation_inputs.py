@@ -13,11 +13,13 @@ from labrecords.models import (
     Instrument,
     InstrumentCalibration,
     InstrumentKind,
+    MethodVersion,
     Replicate,
     ReplicateKind,
     Run,
     Standardization,
     Substance,
+    Titrant,
     UsedInstrument,
 )  # fmt: skip
 from labrecords.queries.method_inputs import as_text, run_method, standardization_method
@@ -39,8 +41,8 @@ def inputs_for_run(run: Run) -> dict[str, Any]:
         "titrant": titrant,
         "excess": _excess(run, used),
         "burette": burette_inputs(used["burette"]),
-        "temperature_correction": False,
-        "sample": _sample(version.sample_by, version.sample_unit, used),
+        "temperature": _temperature(version, expands_like=version.titrant.expands_like),
+        "sample": _sample(version.sample_by, version.sample_unit, used, density=version.sample_density),
         "dilutions": _dilutions(version.dilutions, used),
         **_titrations(run),
         "specification": _specification(run),
@@ -57,7 +59,7 @@ def inputs_for_standardization(standardization: Standardization) -> dict[str, An
         "method": standardization_method(standardization),
         "standard": _standard(standardization),
         "burette": burette_inputs(used["burette"]),
-        "temperature_correction": False,
+        "temperature": _temperature(titrant, expands_like=titrant.expands_like),
         "sample": _sample("mass" if by_mass else "volume", "g" if by_mass else "mL", used),
         "nominal": str(titrant.nominal),
         "window": {"low": str(titrant.window_low), "high": str(titrant.window_high)},
@@ -145,7 +147,22 @@ def _excess(run: Run, used: dict[str, UsedInstrument]) -> dict[str, Any] | None:
     }
 
 
-def _sample(by: str, unit: str, used: dict[str, UsedInstrument]) -> dict[str, Any]:
+def _temperature(rule: MethodVersion | Titrant, *, expands_like: str) -> dict[str, Any]:
+    """What is done about the temperature of the titrant; burettes are of borosilicate glass (ISO 385)."""
+    return {
+        "correct": rule.temperature_correction,
+        "within": str(rule.temperature_within),
+        "solution": expands_like,
+        "glass": "borosilicate",
+    }
+
+
+def _buoyancy(density: Decimal | None) -> dict[str, str] | None:
+    """A weighing in air of 1.2 kg/m3, within 0.05 (common practice)."""
+    return None if density is None else {"density": str(density), "air": "1.2", "within": "0.05"}
+
+
+def _sample(by: str, unit: str, used: dict[str, UsedInstrument], *, density: Decimal | None = None) -> dict[str, Any]:
     measure = used["balance" if by == "mass" else "pipette"]
     return {
         "by": by,
@@ -153,7 +170,7 @@ def _sample(by: str, unit: str, used: dict[str, UsedInstrument]) -> dict[str, An
         "u": repr(standard_uncertainty(measure.instrument, measure.calibration)),
         "key": _key(measure),
         "label": f"{measure.instrument.get_kind_display()} {measure.instrument.identifier}",
-        "buoyancy_density": None,
+        "buoyancy": _buoyancy(density if by == "mass" else None),
     }
 
 
@@ -197,7 +214,7 @@ def _standard(standardization: Standardization) -> dict[str, Any]:
         "molar_mass_u": repr(standard.substance.molar_mass_u),
         "purity": str(standard.purity),
         "purity_u": str(standard.purity_expanded / standard.purity_k),
-        "buoyancy_density": as_text(standard.substance.density),
+        "buoyancy": _buoyancy(standard.substance.density if standardization.lot.titrant.buoyancy else None),
     }
 
 
@@ -215,6 +232,7 @@ def _titration(item: Replicate) -> dict[str, Any]:
         "number": item.number,
         "amount": as_text(item.amount),
         "start": as_text(item.start),
+        "first_end": as_text(item.first_end),
         "end": as_text(item.end),
         "temperature": as_text(item.temperature),
         "curve": {"volume": curve.volumes, "reading": curve.readings} if curve else None,
@@ -229,7 +247,8 @@ def _specification(run: Run) -> dict[str, Any] | None:
     return {
         "lower": _as_compared(limit.lower, places=limit.places),
         "upper": _as_compared(limit.upper, places=limit.places),
-        "places": limit.places,
+        "places": limit.figures or limit.places,
+        "digits": "figures" if limit.figures else "places",
         "rounding": limit.rounding,
         "rule": limit.rule,
         "guard_factor": str(limit.guard_factor),

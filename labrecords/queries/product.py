@@ -45,6 +45,7 @@ def specification_as_signed(specification: Specification) -> dict[str, Any]:
                 "rounding": limit.rounding,
                 "rule": limit.rule,
                 "guard_factor": limit.guard_factor,
+                **({"figures": limit.figures} if limit.figures else {}),
             }
             for limit in specification.limits.select_related("method").order_by("method__code")
         ],

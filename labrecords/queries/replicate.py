@@ -40,6 +40,7 @@ def replicates_as_signed(record: Record) -> list[dict[str, Any]]:
             "temperature": item.temperature,
             "observation": item.observation,
             "curve_sha256": item.curve.file.sha256 if item.curve else None,
+            **({} if item.first_end is None else {"first_end": item.first_end}),
             "entered_by": item.entered_by.username,
             "excluded": item.is_excluded,
             "exclusion_cause": item.exclusion_cause,

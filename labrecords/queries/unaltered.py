@@ -22,6 +22,18 @@ from labrecords.models import (
 )
 from labrecords.queries.seal import leaf_hash, leaves, mark, root_hash
 
+# Columns that came with a later migration: a row from before has their value of then, and the trail says nothing of it.
+ADDED_LATER: dict[str, dict[str, str | None]] = {
+    "labrecords_titrant": {
+        "expands_like": "water", "buoyancy": "false", "temperature_correction": "false", "temperature_within": "0.0",
+    },
+    "labrecords_methodversion": {
+        "first_fixed_reading": None, "sample_density": None, "temperature_correction": "false",
+        "temperature_within": "0.0", "loss_u": "0.000", "parts": "[]",
+    },
+    "labrecords_replicate": {"first_end": None},
+    "labrecords_specificationlimit": {"figures": None},
+}  # fmt: skip
 HASHED = "ARRAY['content', 'inputs', 'outputs', 'volumes', 'readings', 'password']"
 
 
@@ -63,7 +75,7 @@ def altered_records() -> Iterator[str]:
         for key, row in _rows(table):
             if key not in replayed:
                 yield f"Row {key} of {table} stands outside the trail."
-            elif replayed.pop(key) != row:
+            elif ADDED_LATER.get(table, {}) | replayed.pop(key) != row:
                 yield f"Row {key} of {table} is not what the trail says it became."
         for key in replayed:
             yield f"Row {key} of {table} is on the trail and gone from the table."

@@ -3,11 +3,17 @@
 from __future__ import annotations
 
 import re
+from decimal import Decimal
 from fractions import Fraction
 
 from labrecords.models import Method, MethodVersion, User, VersionState
+from labrecords.rules.number import plain
 
 CODE = re.compile(r"[A-Z][A-Z0-9]*(-[A-Z0-9]+)*")
+TAKES = (
+    "first", "second", "second less first", "second less twice first", "hydroxide", "carbonate", "hydrogen carbonate",
+)  # fmt: skip
+DENSITY = (Decimal("0.1"), Decimal(25))
 FAMILIES = ("model", "gran", "derivative", "parabola", "polynomial", "segments", "fixed")
 
 
@@ -43,6 +49,7 @@ def objections_to_recording_version(version: MethodVersion, *, by: User) -> list
         found.append(f"Limit for the replicates is {version.limit}: a number above 0.")
     if not 1 <= version.replicates_needed <= 20:
         found.append(f"Replicates needed is {version.replicates_needed}: from 1 to 20.")
+    found += _objections_to_corrections(version) + _objections_to_parts(version)
     if not version.reason.strip():
         found.append("Reason is empty: say why this version is made.")
     return found
@@ -84,4 +91,42 @@ def _objections_to_endpoint(version: MethodVersion) -> list[str]:
         found.append("Chemistry is empty: the family model needs its analytes and constants.")
     if not version.curve_quantity:
         found.append("Curve quantity is empty: say what the curve records.")
+    return found
+
+
+def objections_to_temperature_within(value: Decimal) -> list[str]:
+    """How well the temperature of a titrant is known: a few degrees."""
+    if 0 <= value <= 15:
+        return []
+    return [f"Temperature known within is {plain(value)} °C: from 0 to 15."]
+
+
+def _objections_to_corrections(version: MethodVersion) -> list[str]:
+    found = objections_to_temperature_within(Decimal(version.temperature_within))
+    density = version.sample_density
+    if density is not None and not DENSITY[0] <= density <= DENSITY[1]:
+        found.append(f"Density of the sample is {plain(density)} g/cm³: from 0.1 to 25. Is it in kg/m³?")
+    if density is not None and version.sample_by != "mass":
+        found.append("Density of the sample is for weighings; this sample is by volume. Leave it empty.")
+    if not 0 <= Decimal(version.loss_u) <= 5:
+        found.append(f"u of the loss on drying is {plain(Decimal(version.loss_u))} %: from 0 to 5.")
+    if not Decimal(version.agreement_limit) > 0:
+        found.append(f"Families may differ by {version.agreement_limit}: a number above 0.")
+    return found
+
+
+def _objections_to_parts(version: MethodVersion) -> list[str]:
+    found = []
+    for part in version.parts:
+        if part["takes"] not in TAKES:
+            found.append(f"{part['name']} takes {part['takes']!r}: one of {', '.join(TAKES)}.")
+        found += objections_to_ratio(part["ratio"])
+    if version.parts and version.titration != "direct":
+        found.append("Further results of two endpoints need a direct titration.")
+    if version.parts and version.endpoint == "curve" and version.endpoint_chosen != 2:
+        found.append(f"The one that counts is {version.endpoint_chosen}: with further results it is the second, 2.")
+    if version.parts and version.deciding_family == "fixed" and version.first_fixed_reading is None:
+        found.append("First fixed reading is empty: further results need two fixed endpoints.")
+    if version.first_fixed_reading is not None and version.first_fixed_reading == version.fixed_reading:
+        found.append(f"Both fixed readings are {plain(version.first_fixed_reading)}: two different ones are expected.")
     return found

@@ -43,6 +43,8 @@ def objections_to_limits(rows: Sequence[Mapping[str, Any]]) -> list[str]:
             found.append(f"{method.code} has no limit: give a lower limit, an upper limit or both.")
         if lower is not None and upper is not None and lower >= upper:
             found.append(f"{method.code}: lower limit {lower} is not below upper limit {upper}.")
+        if row.get("figures") is not None and not 1 <= row["figures"] <= 15:
+            found.append(f"{method.code}: significant figures are {row['figures']}; from 1 to 15, or left empty.")
         version = effective_version(method)
         if version is not None and version.unit != row["unit"]:
             found.append(f"{method.code} reports {version.unit}; the limit is in {row['unit']}.")

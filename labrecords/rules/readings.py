@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from datetime import date
 from decimal import Decimal
+from itertools import pairwise
 
 from labrecords.rules.number import places_of, plain, shortest
 
@@ -26,21 +27,32 @@ YEARS_AHEAD = 30
 
 
 def objections_to_burette_reading(
-    start: Decimal | None, end: Decimal | None, *, capacity: Decimal, resolution: Decimal, burette: str
+    start: Decimal | None,
+    end: Decimal | None,
+    *,
+    capacity: Decimal,
+    resolution: Decimal,
+    burette: str,
+    first: Decimal | None = None,
 ) -> list[str]:
-    """Each reading lies on the burette with places that can be read; the end is not below the start."""
+    """Each reading lies on the burette with places that can be read, and none is below the one before it."""
     found = []
-    for field, value in (("Start", start), ("End", end)):
+    for field, value in (("Start", start), ("First endpoint", first), ("End", end)):
         if value is not None:
             found += _objections_to_burette_mark(
                 value, field=field, capacity=capacity, resolution=resolution, burette=burette
             )
-    if start is not None and end is not None and not found and end < start:
-        found.append(
-            f"End is {plain(end)} mL, below the start at {plain(start)} mL; a burette's reading only rises. "
-            "Check whether the two were swapped."
-        )
-    return found
+    return found or _objections_to_falling([("start", start), ("first endpoint", first), ("end", end)])
+
+
+def _objections_to_falling(readings: list[tuple[str, Decimal | None]]) -> list[str]:
+    there = [(name, value) for name, value in readings if value is not None]
+    return [
+        f"{name.capitalize()} is {plain(value)} mL, below the {before} at {plain(lower)} mL; a burette's reading only "
+        "rises. Check whether the two were swapped."
+        for (before, lower), (name, value) in pairwise(there)
+        if value < lower
+    ]
 
 
 def _objections_to_burette_mark(

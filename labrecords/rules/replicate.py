@@ -22,7 +22,8 @@ from labrecords.rules.readings import (
 )  # fmt: skip
 
 MOST_REPLICATES = 20
-FIELDS = ("amount", "start", "end", "temperature", "observation")
+BURETTE = ("start", "first_end", "end")
+FIELDS = ("amount", "start", "first_end", "end", "temperature", "observation")
 Record = Run | Standardization
 
 
@@ -54,7 +55,7 @@ def objections_to_readings(
         return [*found, f"Field is {unknown[0]!r}; expected one of {', '.join(FIELDS)}."]
     if replicate.is_excluded:
         found.append(f"{str(replicate).capitalize()} is excluded and stays as it is.")
-    if replicate.curve_id and ("start" in values or "end" in values):
+    if replicate.curve_id and any(field in values for field in BURETTE):
         found.append(f"{str(replicate).capitalize()} has a recorded curve; it takes no burette readings.")
     if any(needs_a_reason(replicate, field=field, value=value) for field, value in values.items()):
         found += [] if len(reason.strip()) >= 5 else ["A kept reading is changed. Say in a sentence why."]
@@ -72,11 +73,12 @@ def _objections_to_values(
 ) -> list[str]:
     found: list[str] = []
     read = {field: value for field, value in values.items() if isinstance(value, Decimal)}
-    if "start" in read or "end" in read:
+    if any(field in read for field in BURETTE):
         burette = instruments_of(record)["burette"].instrument
+        start, first, end = (read.get(field, getattr(replicate, field)) for field in BURETTE)
         found += objections_to_burette_reading(
-            read.get("start", replicate.start), read.get("end", replicate.end), capacity=burette.capacity or Decimal(0),
-            resolution=burette.resolution, burette=burette.identifier,
+            start, end, first=first, capacity=burette.capacity or Decimal(0), resolution=burette.resolution,
+            burette=burette.identifier,
         )  # fmt: skip
     if "amount" in read:
         unit, expected = expected_amount(record)

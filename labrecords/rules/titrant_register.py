@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 from datetime import date, timedelta
+from decimal import Decimal
 
 from labrecords.models import LotState, Titrant, TitrantLot, User
 from labrecords.rules.fit import objections_to_fit
 from labrecords.rules.identifier import objections_to_identifier
-from labrecords.rules.method import objections_to_ratio
+from labrecords.rules.method import objections_to_ratio, objections_to_temperature_within
 from labrecords.rules.number import plain
 from labrecords.rules.readings import day, objections_to_date, objections_to_order
 from labrecords.rules.substance import objections_to_keeping_registers
@@ -52,7 +53,11 @@ def _objections_to_standardizing(titrant: Titrant) -> list[str]:
             f"Indicator is {plain(titrant.indicator_bias)} mL past equivalence with u "
             f"{plain(titrant.indicator_u)} mL; within 1 mL, u not below 0, is expected."
         )
-    return found
+    if titrant.buoyancy and titrant.standard_substance is not None and titrant.standard_substance.density is None:
+        found.append(
+            f"Buoyancy: {titrant.standard_substance.name} has no density in the register. Supersede it with one."
+        )
+    return found + objections_to_temperature_within(Decimal(titrant.temperature_within))
 
 
 def objections_to_superseding_titrant(titrant: Titrant, *, by: User) -> list[str]:

@@ -42,7 +42,7 @@ from labrecords.rules.standardization import (
 )  # fmt: skip
 from labrecords.services.signature import Credentials
 
-CELL = re.compile(r"(amount|start|end|temperature)-(\d{1,12})")
+CELL = re.compile(r"(amount|start|first_end|end|temperature)-(\d{1,12})")
 Record = Run | Standardization
 
 
@@ -101,6 +101,8 @@ def words_of(record: Record) -> dict[str, Any]:
         "amount_label": "Sample" if is_run else "Standard",
         "amount_unit": expected_amount(record)[0],
         "takes_curve": takes_curve,
+        "reads_two_ends": is_run and method.reads_two_ends,
+        "reads_temperature": method.temperature_correction,
         "reads": f"recorded {method.curve_quantity} curve" if takes_curve else method.indicator,
         "rule_words": f"{method.get_policy_display()}, {limit}, {method.replicates_needed} needed",
         "value_unit": method.unit if is_run else "mol/L",

@@ -73,6 +73,16 @@ def test_altered_reading_is_named_by_its_row_and_by_its_signature(run: Run, as_e
     ]
 
 
+def test_column_that_came_later_has_its_value_of_then(bench: Bench, as_enemy) -> None:
+    """A row from before a migration says nothing of the new column; another value than the first is named."""
+    approved_standardization(bench)
+    as_enemy("UPDATE labrecords_auditchange SET after = after - 'buoyancy' WHERE table_name = 'labrecords_titrant'")
+    sealed()
+    assert findings() == []
+    as_enemy("UPDATE labrecords_titrant SET buoyancy = true")
+    only_finding(f"Row {bench.titrant.pk} of labrecords_titrant is not what the trail says it became.")
+
+
 def test_deleted_row_is_named(run: Run, as_enemy) -> None:
     reading = run.replicates.get(kind="blank")
     as_enemy("DELETE FROM labrecords_replicate WHERE id = %s", reading.pk)

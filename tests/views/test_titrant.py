@@ -22,7 +22,7 @@ def rule(alkali: Substance, standard: Substance, **given: object) -> dict[str, o
         "shelf_life_days": "45", "standard_substance": standard.pk, "ratio": "1", "standard_mass": "0.42",
         "indicator_bias": "0.02", "indicator_u": "0.01", "replicates_needed": "3", "policy": "all",
         "limit": "0.25",
-        "limit_kind": "rsd_percent", "coverage": "k2",
+        "limit_kind": "rsd_percent", "coverage": "k2", "expands_like": "water", "temperature_within": "4",
     } | given  # fmt: skip
 
 

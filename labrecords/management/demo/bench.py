@@ -26,7 +26,9 @@ from labrecords.services.replicate import add_replicate, attach_curve, record_re
 
 KHP, NACL, CITRIC, CACO3, ACETIC_ACID = 204.222, 58.440, 192.123, 100.086, 60.052
 EFFLUENT = {"kind": "acid_base", "titrant": "acid", "carbonate": 0.0, "activity": True,
-            "analytes": [{"name": "hydrogen carbonate", "pKa": [6.352], "charge": 0}]}  # fmt: skip
+            "analytes": [{"name": "carbonate", "pKa": [6.352, 10.329], "charge": 0},
+                         {"name": "hydrogen carbonate", "pKa": [6.352], "charge": 0}]}  # fmt: skip
+CARBONATE_SHARE = 0.4  # of the effluent's alkalinity
 
 
 @dataclass
@@ -58,6 +60,8 @@ class Bench:
         }
         if amount is not None:
             values["amount"] = D(amount)
+        if replicate.run is not None and replicate.run.method_version.temperature_correction:
+            values["temperature"] = D(f"{20.8 + self.noise(0.4):.1f}")
         self.clock.step(6)
         record_readings(replicate, by=by, values=values)
 
@@ -118,10 +122,14 @@ class Bench:
         amount = alkalinity / CACO3 / 1000 * 2 * 100
         system = System.from_json(EFFLUENT | {"titrant_concentration": self.true[titrant], "sample_volume": 100.0})
         near = amount / self.true[titrant]
-        volume = grid(end=near * 1.4 + 0.6, near=near, coarse=0.25, fine=0.05, width=0.5)
+        end, first = near * 1.4 + 0.6, near * CARBONATE_SHARE / 2
+        volume = np.union1d(
+            grid(end=end, near=near, coarse=0.25, fine=0.05, width=0.5),
+            grid(end=end, near=first, coarse=0.25, fine=0.05, width=0.5),
+        )
         return volume, simulate_curve(
-            system, amounts=np.array([amount]), volumes=volume, generator=self.generator, noise=0.008,
-            offset=self.noise(0.01),
+            system, amounts=amount * np.array([CARBONATE_SHARE / 2, 1 - CARBONATE_SHARE]), volumes=volume,
+            generator=self.generator, noise=0.008, offset=self.noise(0.01),
         )  # fmt: skip
 
     def brine_curve(self, content: float, titrant: str) -> tuple[np.ndarray, np.ndarray]:

@@ -148,13 +148,15 @@ def record_standard_lot(lab: Laboratory, number: str, substance: str, *, receive
 def _titrants(lab: Laboratory) -> None:
     shared: dict[str, Any] = {
         "replicates_needed": 3, "policy": "all", "limit": D("0.25"), "limit_kind": "rsd_percent", "coverage": "k2",
+        "temperature_within": D(3),
     }  # fmt: skip
     by = lab.people["mokafor"]
     lab.titrants["NaOH-0.1"] = record_titrant(
         by=by, code="NaOH-0.1", name="sodium hydroxide 0.1 mol/L", substance=lab.substances["sodium hydroxide"],
         nominal=D("0.1"), window_low=D("0.095"), window_high=D("0.105"), restandardization_days=14, shelf_life_days=45,
         standard_substance=lab.substances["potassium hydrogen phthalate"], ratio="1", standard_mass=D("0.42"),
-        indicator="phenolphthalein, first lasting pale pink", indicator_bias=D("0.02"), indicator_u=D("0.01"), **shared,
+        buoyancy=True, indicator="phenolphthalein, first lasting pale pink", indicator_bias=D("0.02"),
+        indicator_u=D("0.01"), **shared,
     )  # fmt: skip
     lab.titrants["HCl-0.1"] = record_titrant(
         by=by, code="HCl-0.1", name="hydrochloric acid 0.1 mol/L", substance=lab.substances["hydrochloric acid"],
@@ -165,7 +167,7 @@ def _titrants(lab: Laboratory) -> None:
     lab.titrants["AgNO3-0.1"] = record_titrant(
         by=by, code="AgNO3-0.1", name="silver nitrate 0.1 mol/L", substance=lab.substances["silver nitrate"],
         nominal=D("0.1"), window_low=D("0.095"), window_high=D("0.105"), restandardization_days=30, shelf_life_days=90,
-        standard_substance=lab.substances["sodium chloride"], ratio="1", standard_mass=D("0.12"),
+        standard_substance=lab.substances["sodium chloride"], ratio="1", standard_mass=D("0.12"), buoyancy=True,
         indicator="potassium chromate, first red-brown", indicator_bias=D("0.03"), indicator_u=D("0.02"), **shared,
     )  # fmt: skip
 

@@ -28,7 +28,7 @@ CONCORDANT: dict[str, Any] = {
     "limit_kind": "range_mL",
 }
 PAIR: dict[str, Any] = {"replicates_needed": 2, "policy": "all", "limit_kind": "rsd_percent"}
-DIRECT: dict[str, Any] = {"titration": "direct", "coverage": "k2"}
+DIRECT: dict[str, Any] = {"titration": "direct", "coverage": "k2", "temperature_within": D(3)}
 BY_VOLUME: dict[str, Any] = {"sample_by": "volume", "sample_unit": "mL"}
 BY_MASS: dict[str, Any] = {
     "sample_by": "mass",
@@ -103,7 +103,7 @@ def _effluent(lab: Laboratory) -> None:
     record_method_effective(
         lab,
         "ALK-EFF",
-        "Alkalinity to pH 4.5",
+        "Alkalinity to pH 8.3 and 4.5",
         titrant=lab.titrants["HCl-0.1"],
         expressed_as=lab.substances["calcium carbonate"],
         ratio="1/2",
@@ -115,7 +115,11 @@ def _effluent(lab: Laboratory) -> None:
         curve_quantity="pH",
         deciding_family="fixed",
         checking_family="derivative",
+        first_fixed_reading=D("8.3"),
         fixed_reading=D("4.5"),
+        endpoints_expected=2,
+        endpoint_chosen=2,
+        parts=[_kind(lab, kind) for kind in ("hydroxide", "carbonate", "hydrogen carbonate")],
         initial_volume=D("100"),
         limit=D("3"),
         agreement_limit=D("6"),
@@ -127,6 +131,15 @@ def _effluent(lab: Laboratory) -> None:
             "while hydrochloric acid 0.1 mol/L is added, to below pH 3.5."
         ),
     )
+
+
+def _kind(lab: Laboratory, kind: str) -> dict[str, str]:
+    """One kind of alkalinity, expressed as calcium carbonate like the whole."""
+    substance = lab.substances["calcium carbonate"]
+    return {
+        "name": kind, "takes": kind, "ratio": "1/2", "substance": substance.name, "formula": substance.formula,
+        "molar_mass": repr(substance.molar_mass), "u": repr(substance.molar_mass_u),
+    }  # fmt: skip
 
 
 def _brine(lab: Laboratory) -> None:
@@ -164,6 +177,8 @@ def _descaler(lab: Laboratory) -> None:
         lab,
         "CIT-DSC",
         "Citric acid in descaler powder",
+        sample_density=D("1.665"),
+        temperature_correction=True,
         titrant=lab.titrants["NaOH-0.1"],
         expressed_as=lab.substances["citric acid"],
         ratio="1/3",
@@ -172,12 +187,14 @@ def _descaler(lab: Laboratory) -> None:
         replicates_needed=3,
         policy="all",
         limit_kind="rsd_percent",
-        **DIRECT,
+        titration="direct",
+        coverage="k2",
+        temperature_within=D("0.5"),
         **BY_MASS,
         **PHENOLPHTHALEIN,
         instructions=(
             "Weigh 0.13 g of powder, dissolve in 50 mL of water free of "
-            "carbon dioxide.\nTitrate with sodium hydroxide 0.1 mol/L."
+            "carbon dioxide.\nTitrate with sodium hydroxide 0.1 mol/L and read the temperature of the burette."
         ),
     )
 
@@ -196,6 +213,7 @@ def _scale(lab: Laboratory) -> None:
         sample_amount=D("0.15"),
         limit=D("1.0"),
         coverage="k2",
+        temperature_within=D(3),
         **BY_MASS,
         **PAIR,
         **PHENOLPHTHALEIN,
