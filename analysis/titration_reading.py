@@ -43,7 +43,7 @@ def titre_inputs(
     The burette's tolerance is one physical shift of the delivered volume, triangular (QUAM:2012.P1, A2); it is the
     same in every titre, and in the standardization where the same burette was used. Each reading is rounded to the
     burette's resolution, rectangular, two readings a titre (common practice). Overshoot of an indicator is
-    subtracted only where no blank does.
+    subtracted only where no blank does; it is one habit wherever the same method is done.
     """
     burette, method = inputs["burette"], inputs["method"]
     tolerance = number(burette["tolerance"], name="Tolerance of the burette")
@@ -68,7 +68,7 @@ def titre_inputs(
         Input("blank", "blank", "blank", blank or 0.0, blank_u, "mL", "rectangular"),
         Input(
             "bias",
-            "indicator",
+            str(method.get("indicator_key") or "indicator"),
             "indicator past equivalence",
             0.0 if blank is not None else bias,
             bias_u,

@@ -22,6 +22,7 @@ from labrecords.views import (
     question,
     register,
     replicate,
+    result,
     review,
     run,
     sample,
@@ -53,6 +54,7 @@ user_urls = [
 run_urls = [
     path("runs/", run.list, name="run-list"),
     path("runs/start/<str:sample_number>/<int:version_id>/", run.start, name="run-start"),
+    path("results/together/", result.together, name="result-together"),
     path("runs/<str:number>/", run.sheet, name="run-sheet"),
     path("runs/<str:number>/result/", run.result, name="run-result"),
     path("runs/<str:number>/preview/", run.preview, name="run-preview"),

@@ -17,6 +17,7 @@ from labrecords.forms.batch import BatchForm
 from labrecords.models import Batch, BatchState, User
 from labrecords.queries.batch import RequiredTest, batches, batches_found, required_tests
 from labrecords.queries.history import sentences_about
+from labrecords.queries.result import comparable_numbers
 from labrecords.queries.signature import signatures_of
 from labrecords.rules.batch import (
     is_ready,
@@ -108,4 +109,4 @@ def _context(number: str, *, by: User) -> dict[str, Any]:
 def _shown(test: RequiredTest) -> dict[str, Any]:
     outputs = test.run.calculation.outputs if test.run and test.run.calculation else None
     bar = limit_bar(outputs, places=test.limit.places) if outputs and outputs.get("verdict") else ""
-    return {"test": test, "bar": bar, "outputs": outputs}
+    return {"test": test, "bar": bar, "outputs": outputs, "comparable": comparable_numbers(test.runs)}

@@ -10,6 +10,7 @@ from labrecords.errors import Refused
 from labrecords.forms.batch import ControlSampleForm
 from labrecords.models import ControlSample
 from labrecords.queries.history import sentences_about
+from labrecords.queries.result import comparable_numbers
 from labrecords.queries.run import runs
 from labrecords.services import control_sample as service
 from labrecords.views.access import for_roles, signed_in
@@ -55,9 +56,11 @@ def withdraw(request: HttpRequest, code: str) -> HttpResponse:
 
 def _context(code: str) -> dict[str, object]:
     control = get_object_or_404(ControlSample.objects.select_related("method"), code=code)
+    newest = runs().filter(sample__control_sample=control)[:30]
     return {
         "control": control,
         "charts": control.charts.all(),
-        "runs": runs().filter(sample__control_sample=control)[:30],
+        "runs": newest,
+        "comparable": comparable_numbers(newest[:6]),
         "history": sentences_about(control),
     }

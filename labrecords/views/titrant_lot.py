@@ -21,6 +21,7 @@ from labrecords.models import LotState, Standardization, Titrant, TitrantLot
 from labrecords.queries.bench import LotInUse, lots_of_titrant
 from labrecords.queries.history import sentences_about
 from labrecords.queries.register import titrant_lots
+from labrecords.queries.result import comparable_numbers
 from labrecords.queries.standardization import attempts_on_lot, standardizations
 from labrecords.queries.titrant_lot import runs_on_lot, volume_balance
 from labrecords.rules.cautions import cautions_for
@@ -119,6 +120,7 @@ def _shown(request: HttpRequest, number: str, *, refused: tuple[str, ...] = ()) 
         "held": held,
         "fitness": fitness_line(held.fraction_used, label=f"{held.days_left} days left") if held else "",
         "standardizations": records,
+        "comparable": comparable_numbers(records),
         "drift": _drift([record for record in records if record.state == "approved"][::-1]),
         "attempts": attempts_on_lot(lot),
         "run_count": runs_on_lot(lot),
