@@ -69,7 +69,7 @@ def titre_inputs(
         Input(
             "bias",
             str(method.get("indicator_key") or "indicator"),
-            "indicator past equivalence",
+            f"indicator past equivalence{_of(method)}",
             0.0 if blank is not None else bias,
             bias_u,
             "mL",
@@ -77,6 +77,11 @@ def titre_inputs(
         Input("other_end", "other_end", "the other endpoint", 0.0, 0.0, "mL"),
         _temperature(inputs),
     ]
+
+
+def _of(method: Inputs) -> str:
+    """Whose indicator it is, where the inputs say so."""
+    return ", " + str(method["indicator_key"]).partition(":")[2] if method.get("indicator_key") else ""
 
 
 def _temperature(inputs: Inputs) -> Input:

@@ -123,10 +123,8 @@ class Bench:
         system = System.from_json(EFFLUENT | {"titrant_concentration": self.true[titrant], "sample_volume": 100.0})
         near = amount / self.true[titrant]
         end, first = near * 1.4 + 0.6, near * CARBONATE_SHARE / 2
-        volume = np.union1d(
-            grid(end=end, near=near, coarse=0.25, fine=0.05, width=0.5),
-            grid(end=end, near=first, coarse=0.25, fine=0.05, width=0.5),
-        )
+        both = [grid(end=end, near=at, coarse=0.25, fine=0.05, width=0.5) for at in (first, near)]
+        volume = np.unique(np.round(np.concatenate(both) / 0.05)) * 0.05
         return volume, simulate_curve(
             system, amounts=amount * np.array([CARBONATE_SHARE / 2, 1 - CARBONATE_SHARE]), volumes=volume,
             generator=self.generator, noise=0.008, offset=self.noise(0.01),
