@@ -34,6 +34,11 @@ from analysis.titration_reading import blank_of, read_titrations
 from analysis.uncertainty import Propagated
 
 Inputs = Mapping[str, Any]
+NEEDED = {
+    "temperature": "the volumes are corrected to 20 °C",
+    "drift": "the titres are corrected for it",
+    "duration": "the titres are corrected for drift",
+}
 
 
 def compute(inputs: Inputs) -> dict[str, Any]:
@@ -69,9 +74,9 @@ def compute(inputs: Inputs) -> dict[str, Any]:
     values = _values(inputs, titrations, blank, kind=kind)
     _fill_titrations(outputs, values, blank)
     if not counted:
-        return outputs | {"reasons": [*_cold(titrations), _missing(inputs, counted)]}
+        return outputs | {"reasons": [*_unread(titrations), _missing(inputs, counted)]}
     inside, reasons, tie = titrations_that_count(inputs, counted, values, blank=blank)
-    reasons += _cold(titrations) + _too_few_blanks(titrations)
+    reasons += _unread(titrations) + _too_few_blanks(titrations)
     _mark_set(outputs, inside)
     parts, unsplit = _parts(inputs, inside, titrations, blank)
     reasons += unsplit
@@ -237,11 +242,17 @@ def _too_few_blanks(titrations: Sequence[Titration]) -> list[str]:
     return [f"{complete} of {len(blanks)} blanks are complete. Titrate the others."]
 
 
-def _cold(titrations: Sequence[Titration]) -> list[str]:
-    """A volume that is corrected to 20 degC needs the temperature it was read at."""
-    cold = [item for item in titrations if item.lacks_temperature and item.titre is not None and not item.is_excluded]
-    names = ", ".join(f"{'blank' if item.is_blank else 'titration'} {item.number}" for item in cold)
-    return [f"The temperature of {names} is not entered; the volumes are corrected to 20 °C."] if cold else []
+def _unread(titrations: Sequence[Titration]) -> list[str]:
+    """What a correction needs beside the readings: the temperature of a volume, the drift and how long it took."""
+    found = []
+    for what, why in NEEDED.items():
+        lacking = [
+            item for item in titrations if what in item.lacks and item.titre is not None and not item.is_excluded
+        ]
+        names = ", ".join(f"{'blank' if item.is_blank else 'titration'} {item.number}" for item in lacking)
+        if lacking:
+            found.append(f"The {what} of {names} is not entered; {why}.")
+    return found
 
 
 def _missing(inputs: Inputs, counted: Sequence[Titration]) -> str:

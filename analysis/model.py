@@ -19,8 +19,8 @@ def run_value(inputs: Mapping[str, Any], titration: Titration) -> Model:
     """The result of one titration of a run [method's unit] as a function of the named inputs.
 
     Names: c, blank, bias, volume (a shift of every titre, mL), other_end (the same of an endpoint that is taken off),
-    temperature (a shift, K), amount (a shift of the sample amount), air (density, kg/m3), excess, excess_volume,
-    flask i, aliquot i, molar_mass, loss, repeatability (a factor).
+    temperature (a shift, K), drift (a shift, uL/min), amount (a shift of the sample amount), air (density, kg/m3),
+    excess, excess_volume, flask i, aliquot i, molar_mass, loss, repeatability (a factor).
     """
     method = inputs["method"]
     kind = choice(method["titration"], ("direct", "blank_difference", "back"), name="Titration")
@@ -89,7 +89,7 @@ def standardization_value(inputs: Mapping[str, Any], titration: Titration) -> Mo
     """The concentration [mol/L] from one titration of a standardization.
 
     Names: mass or aliquot shift (amount), air, purity, molar_mass, c_standard, blank, bias, volume, other_end,
-    temperature, repeatability.
+    temperature, drift, repeatability.
     """
     standard, ratio = inputs["standard"], amount.ratio_of(inputs["method"]["ratio"])
     taken = float(titration.amount or 0.0)
@@ -113,6 +113,7 @@ def standardization_value(inputs: Mapping[str, Any], titration: Titration) -> Mo
 def titre_of(titration: Titration, v: Values) -> complex:
     """The titre [mL] with the shifts that its inputs may have, before the blank."""
     titre = float(titration.titre or 0.0) * (1 - titration.expansion * v["temperature"])
+    titre -= v["drift"] * titration.minutes / 1000
     return titre + v["volume"] - v["other_end"] + v["reading"] - v["bias"]
 
 

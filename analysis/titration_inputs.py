@@ -16,7 +16,7 @@ class Titration:
     """One titration as read: amount in the sample's unit, titre in mL (None when it is not complete yet).
 
     ``ends`` are all its endpoints in order, volume and u [mL]; ``expansion`` is that of its solution less that of the
-    glass [1/K]; ``lacks_temperature`` where the method corrects volumes and none was read.
+    glass [1/K]; ``minutes`` it took, where drift is taken off; ``lacks`` names what a correction needs.
     """
 
     number: int
@@ -29,13 +29,14 @@ class Titration:
     endpoint: Mapping[str, Any] | None
     ends: tuple[tuple[float, float], ...] = ()
     expansion: float = 0.0
-    lacks_temperature: bool = False
+    minutes: float = 0.0
+    lacks: tuple[str, ...] = ()
 
     @property
     def is_complete(self) -> bool:
         """Whether it has all that a result needs."""
         has_amount = self.is_blank or self.amount is not None
-        return self.titre is not None and has_amount and not self.lacks_temperature
+        return self.titre is not None and has_amount and not self.lacks
 
 
 def number(value: Any, *, name: str) -> float:

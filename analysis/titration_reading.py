@@ -76,6 +76,7 @@ def titre_inputs(
         ),
         Input("other_end", "other_end", "the other endpoint", 0.0, 0.0, "mL"),
         _temperature(inputs),
+        _unsure_drift(inputs),
     ]
 
 
@@ -94,6 +95,12 @@ def _temperature(inputs: Inputs) -> Input:
     return Input("temperature", "temperature", "temperature of the titrant", 0.0, within / SQRT_3, "°C", "rectangular")
 
 
+def _unsure_drift(inputs: Inputs) -> Input:
+    """The drift [uL/min] is one reading before a titration; how well it is known is the method's word."""
+    u = number((inputs.get("drift") or {}).get("u") or 0, name="u of the drift")
+    return Input("drift", "drift", "drift", 0.0, u, "µL/min")
+
+
 def _titration(line: Inputs, inputs: Inputs, *, is_blank: bool) -> Titration:
     where = f"titration {line['number']}"
     amount = optional(line.get("amount"), name=f"Amount of {where}")
@@ -103,13 +110,16 @@ def _titration(line: Inputs, inputs: Inputs, *, is_blank: bool) -> Titration:
     settings = inputs.get("temperature") or {}
     is_corrected = bool(settings.get("correct"))
     stretch, expansion = _stretch(settings, temperature if is_corrected else None, where=where)
+    used, minutes, lacks = _drift(line, inputs, where=where)
     endpoint, titre, ends = _ends(line, inputs, where=where)
-    scaled = tuple((volume * stretch, u) for volume, u in ends)
-    titre = None if titre is None else (titre[0] * stretch, titre[1])
+    scaled = tuple((volume * stretch - used, u) for volume, u in ends)
+    titre = None if titre is None else (titre[0] * stretch - used, titre[1])
+    if is_corrected and temperature is None:
+        lacks = ("temperature", *lacks)
     return Titration(
         number=int(line["number"]), is_blank=is_blank, is_excluded=bool(line.get("excluded")), amount=amount,
         titre=titre and titre[0], titre_u=titre[1] if titre else 0.0, temperature=temperature, endpoint=endpoint,
-        ends=scaled, expansion=expansion, lacks_temperature=is_corrected and temperature is None,
+        ends=scaled, expansion=expansion, minutes=minutes, lacks=lacks,
     )  # fmt: skip
 
 
@@ -132,6 +142,19 @@ def _ends(line: Inputs, inputs: Inputs, *, where: str) -> tuple[dict[str, Any] |
             "second; the second must not be below the first."
         )
     return None, (titre, u), ((first, u), (titre, u))
+
+
+def _drift(line: Inputs, inputs: Inputs, *, where: str) -> tuple[float, float, tuple[str, ...]]:
+    """What was used without a sample while it was titrated [mL], how long that took [min], and what was not read."""
+    if not inputs.get("drift"):
+        return 0.0, 0.0, ()
+    drift = optional(line.get("drift"), name=f"Drift of {where}")
+    minutes = optional(line.get("minutes"), name=f"Duration of {where}")
+    if minutes is not None and minutes < 0:
+        raise ValueError(f"Duration of {where} is {line['minutes']} min; a number not below 0 is expected.")
+    if drift is None or minutes is None:
+        return 0.0, 0.0, (*(("drift",) if drift is None else ()), *(("duration",) if minutes is None else ()))
+    return drift * minutes / 1000, minutes, ()
 
 
 def _stretch(settings: Inputs, temperature: float | None, *, where: str) -> tuple[float, float]:

@@ -74,11 +74,14 @@ class ReplicateShape(serializers.ModelSerializer[Replicate]):
     first_end = serializers.CharField(allow_null=True)
     end = serializers.CharField(allow_null=True)
     temperature = serializers.CharField(allow_null=True)
+    drift = serializers.CharField(allow_null=True)
+    minutes = serializers.CharField(allow_null=True)
 
     class Meta:
         model = Replicate
         fields = (
-            "kind", "number", "amount", "start", "first_end", "end", "temperature", "is_excluded", "exclusion_cause",
+            "kind", "number", "amount", "start", "first_end", "end", "temperature", "drift", "minutes",
+            "is_excluded", "exclusion_cause",
         )  # fmt: skip
 
 

@@ -22,7 +22,9 @@ RULE = (
     "standard_substance", "standard_titrant", "ratio", "aliquot", "standard_mass", "indicator",
     "indicator_bias",
     "indicator_u", "replicates_needed", "policy", "limit", "limit_kind", "coverage",
-    "expands_like", "buoyancy", "temperature_correction", "temperature_within",
+    "expands_like", "buoyancy", "temperature_correction", "temperature_within", "drift_u", "endpoint", "curve_quantity",
+    "deciding_family", "checking_family", "fixed_reading", "agreement_limit", "system", "initial_volume",
+    "blanks_needed",
 )  # fmt: skip
 
 
@@ -70,6 +72,18 @@ class TitrantEntry(serializers.Serializer[Titrant]):
     buoyancy = serializers.BooleanField(required=False)
     temperature_correction = serializers.BooleanField(required=False)
     temperature_within = serializers.DecimalField(4, 1, required=False)
+    drift_u = serializers.DecimalField(6, 2, required=False, allow_null=True)
+    endpoint = serializers.ChoiceField(Titrant._meta.get_field("endpoint").choices, required=False)
+    curve_quantity = serializers.ChoiceField(
+        Titrant._meta.get_field("curve_quantity").choices, required=False, allow_blank=True
+    )
+    deciding_family = serializers.CharField(max_length=12, required=False, allow_blank=True)
+    checking_family = serializers.CharField(max_length=12, required=False, allow_blank=True)
+    fixed_reading = serializers.DecimalField(8, 3, required=False, allow_null=True)
+    agreement_limit = serializers.DecimalField(4, 1, required=False)
+    system = serializers.JSONField(required=False, allow_null=True)
+    initial_volume = serializers.DecimalField(8, 2, required=False, allow_null=True)
+    blanks_needed = serializers.IntegerField(min_value=0, max_value=20, required=False)
 
     def validate(self, attrs: dict[str, Any]) -> dict[str, Any]:
         """Both ways of standardizing are named to the service, also when one is left out."""

@@ -8,6 +8,7 @@ from typing import Any
 from django import forms
 from django.utils import timezone
 
+from labrecords.forms.curve_rule import FAMILIES, ChemistryField
 from labrecords.forms.fields import CountField, DayField, NumberField
 from labrecords.forms.parts import PartsField
 from labrecords.models import (
@@ -20,11 +21,6 @@ from labrecords.models import (
     Substance,
     Titrant,
 )
-
-FAMILIES = [
-    ("", "none"),
-    *((name, name) for name in ("model", "gran", "derivative", "parabola", "polynomial", "segments", "fixed")),
-]
 
 
 class BatchForm(forms.Form):
@@ -119,14 +115,7 @@ class VersionForm(forms.Form):
     )
     endpoints_expected = CountField(label="Endpoints expected", initial="1")
     endpoint_chosen = CountField(label="The one that counts", initial="1")
-    system = forms.JSONField(
-        label="Chemistry for the model",
-        required=False,
-        help_text=(
-            'such as {"kind": "acid_base", "titrant": "base", '
-            '"analytes": [{"name": "acetic acid", "pKa": [4.756], "charge": 0}]}'
-        ),
-    )
+    system = ChemistryField(label="Chemistry for the model", required=False)
     initial_volume = NumberField(label="Volume in the vessel at the start, mL", required=False)
     blanks_needed = CountField(label="Blanks needed", initial="0")
     replicates_needed = CountField(label="Replicates needed", initial="3")
@@ -147,6 +136,9 @@ class VersionForm(forms.Form):
         label="Temperature known within, °C", initial="4",
         help_text="about the temperature read, or about 20 °C where volumes are not corrected",
     )  # fmt: skip
+    drift_u = NumberField(
+        label="u of the drift, µL/min", required=False, help_text="titres are then corrected for drift over their time"
+    )
     coverage = forms.ChoiceField(choices=MethodVersion._meta.get_field("coverage").choices, label="Coverage factor")
     instructions = forms.CharField(
         label="How the method goes", required=False, widget=forms.Textarea(attrs={"rows": 5})

@@ -13,6 +13,8 @@ LABELS = {
     "first_end": "First endpoint",
     "end": "End",
     "temperature": "Temperature",
+    "drift": "Drift",
+    "minutes": "Duration",
     "loss": "Loss on drying",
 }
 

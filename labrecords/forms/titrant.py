@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from django import forms
 
+from labrecords.forms.curve_rule import FAMILIES, ChemistryField
 from labrecords.forms.fields import CountField, DayField, NumberField, OneOfField, RecordField, TextField
 from labrecords.forms.register import ReasonForm
 from labrecords.models import Substance, Titrant, User
@@ -29,9 +30,22 @@ class TitrantForm(forms.Form):
     ratio = TextField(max_length=12, label="Ratio", help_text="mol of titrant per mol of standard: 1, 2 or 1/2")
     aliquot = NumberField(label="Aliquot of the other titrant, mL", required=False)
     standard_mass = NumberField(label="Mass of the standard usually weighed, g", required=False)
+    endpoint = OneOfField(choices=Titrant._meta.get_field("endpoint").choices, label="Endpoint by", initial="indicator")
     indicator = TextField(max_length=120, label="Indicator and colour change", required=False)
     indicator_bias = NumberField(label="Indicator past equivalence, mL", initial="0")
     indicator_u = NumberField(label="Its standard uncertainty, mL", initial="0")
+    curve_quantity = OneOfField(
+        choices=[("", "none"), *Titrant._meta.get_field("curve_quantity").choices], label="Curve of", required=False
+    )
+    deciding_family = OneOfField(choices=FAMILIES, label="Deciding family", required=False)
+    checking_family = OneOfField(choices=FAMILIES, label="Checking family", required=False)
+    fixed_reading = NumberField(label="Fixed pH or mV", required=False)
+    agreement_limit = NumberField(
+        label="Families may differ by", initial="3", help_text="combined standard uncertainties; more needs a person"
+    )
+    system = ChemistryField(label="Chemistry for the model", required=False)
+    initial_volume = NumberField(label="Volume in the vessel at the start, mL", required=False)
+    blanks_needed = CountField(label="Blanks needed", initial="1")
     replicates_needed = CountField(label="Replicates needed")
     policy = OneOfField(choices=Titrant._meta.get_field("policy").choices, label="Which replicates count")
     limit = NumberField(label="Limit")
@@ -44,6 +58,9 @@ class TitrantForm(forms.Form):
         label="Temperature known within, °C", initial="4",
         help_text="about the temperature read, or about 20 °C where volumes are not corrected",
     )  # fmt: skip
+    drift_u = NumberField(
+        label="u of the drift, µL/min", required=False, help_text="titres are then corrected for drift over their time"
+    )
     buoyancy = forms.BooleanField(label="Weighings of the standard are corrected for buoyancy", required=False)
     coverage = OneOfField(choices=Titrant._meta.get_field("coverage").choices, label="Coverage factor")
 

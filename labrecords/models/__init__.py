@@ -5,9 +5,10 @@ from labrecords.models.batch import Batch, BatchState, Sample
 from labrecords.models.calculation import Calculation, CalculationRequest, MonteCarloCheck
 from labrecords.models.control_chart import ControlChart, ControlLimits
 from labrecords.models.control_sample import ControlSample
+from labrecords.models.endpoint_rule import CurveQuantity, EndpointRule
 from labrecords.models.instrument import Instrument, InstrumentCalibration, InstrumentKind, UsedInstrument
 from labrecords.models.investigation import Conclusion, Investigation, InvestigationState, Question
-from labrecords.models.method import CurveQuantity, Method, MethodVersion, Quantity, Titration, VersionState
+from labrecords.models.method import Method, MethodVersion, Quantity, Titration, VersionState
 from labrecords.models.number import NumberSeries
 from labrecords.models.product import Product, Specification, SpecificationLimit
 from labrecords.models.replicate import Curve, ExclusionCause, Replicate, ReplicateKind
@@ -36,6 +37,7 @@ __all__ = [
     "ControlSample",
     "Curve",
     "CurveQuantity",
+    "EndpointRule",
     "ExclusionCause",
     "Hazard",
     "Instrument",

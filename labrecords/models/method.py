@@ -5,6 +5,8 @@ from __future__ import annotations
 from django.db import models
 from django.db.models import Q
 
+from labrecords.models.endpoint_rule import EndpointRule
+
 
 class VersionState(models.TextChoices):
     DRAFT = "draft", "draft"
@@ -25,14 +27,6 @@ class Quantity(models.TextChoices):
     TITRANT_EQUIVALENT = "titrant_equivalent", "titrant equivalent per mass"
 
 
-class CurveQuantity(models.TextChoices):
-    PH = "pH", "pH"
-    MV = "mV", "mV"
-    CONDUCTIVITY = "conductivity", "conductivity"
-    TEMPERATURE = "temperature", "temperature"
-    ABSORBANCE = "absorbance", "absorbance"
-
-
 class Method(models.Model):
     """A test, known by its code; the recipe is in its versions."""
 
@@ -46,7 +40,7 @@ class Method(models.Model):
         return self.code
 
 
-class MethodVersion(models.Model):
+class MethodVersion(EndpointRule):
     """A recipe; once effective it never changes."""
 
     method = models.ForeignKey(Method, on_delete=models.PROTECT, related_name="versions")
@@ -64,24 +58,6 @@ class MethodVersion(models.Model):
     sample_unit = models.CharField(max_length=4, choices=[("mL", "mL"), ("g", "g")])
     sample_amount = models.DecimalField(max_digits=10, decimal_places=4, help_text="nominal, in the unit")
     dilutions = models.JSONField(default=list, help_text='[{"flask": "100.0", "aliquot": "10.00"}, ...] mL')
-    endpoint = models.CharField(max_length=10, choices=[("indicator", "indicator"), ("curve", "recorded curve")])
-    indicator = models.CharField(max_length=120, blank=True, help_text="indicator and colour change")
-    indicator_bias = models.DecimalField(max_digits=6, decimal_places=4, default=0, help_text="mL past equivalence")
-    indicator_u = models.DecimalField(max_digits=6, decimal_places=4, default=0, help_text="mL")
-    curve_quantity = models.CharField(max_length=12, choices=CurveQuantity, blank=True)
-    deciding_family = models.CharField(max_length=12, blank=True)
-    checking_family = models.CharField(max_length=12, blank=True)
-    fixed_reading = models.DecimalField(max_digits=8, decimal_places=3, null=True)
-    first_fixed_reading = models.DecimalField(
-        max_digits=8, decimal_places=3, null=True, help_text="the first of two fixed endpoints"
-    )
-    endpoints_expected = models.PositiveSmallIntegerField(default=1)
-    endpoint_chosen = models.PositiveSmallIntegerField(default=1)
-    agreement_limit = models.DecimalField(max_digits=4, decimal_places=1, default=3)
-    system = models.JSONField(null=True, help_text="the chemistry for the model family")
-    initial_volume = models.DecimalField(
-        max_digits=8, decimal_places=2, null=True, help_text="mL in the vessel at the start, for the model"
-    )
     replicates_needed = models.PositiveSmallIntegerField()
     blanks_needed = models.PositiveSmallIntegerField(default=0)
     policy = models.CharField(max_length=12, choices=[("concordance", "concordance"), ("all", "all replicates")])
@@ -102,13 +78,6 @@ class MethodVersion(models.Model):
     )
     sample_density = models.DecimalField(
         max_digits=8, decimal_places=4, null=True, help_text="g/cm3, where weighings are corrected for buoyancy"
-    )
-    temperature_correction = models.BooleanField(default=False, help_text="volumes are corrected to 20 degC")
-    temperature_within = models.DecimalField(
-        max_digits=4,
-        decimal_places=1,
-        default=0,
-        help_text="degC about the temperature read, or about 20 degC where none is corrected",
     )
     loss_u = models.DecimalField(
         max_digits=6, decimal_places=3, default=0, help_text="standard uncertainty of the loss on drying, % (m/m)"
@@ -161,4 +130,4 @@ class MethodVersion(models.Model):
     @property
     def reads_two_ends(self) -> bool:
         """Whether a burette is read at two endpoints."""
-        return bool(self.parts) and self.endpoint == "indicator"
+        return bool(self.parts) and not self.takes_curve

@@ -39,6 +39,8 @@ class Replicate(models.Model):
     first_end = ReadingField(null=True, help_text="mL, at the first of two endpoints")
     end = ReadingField(null=True, help_text="mL")
     temperature = ReadingField(null=True, help_text="degC")
+    drift = ReadingField(null=True, help_text="µL/min that are used without a sample")
+    minutes = ReadingField(null=True, help_text="from the start of the titration to its endpoint")
     observation = models.CharField(max_length=120, blank=True)
     curve = models.ForeignKey("Curve", on_delete=models.PROTECT, null=True, related_name="replicates")
     entered_by = models.ForeignKey(settings.AUTH_USER_MODEL, on_delete=models.PROTECT, related_name="+")
@@ -79,6 +81,9 @@ class Replicate(models.Model):
             models.CheckConstraint(
                 condition=Q(start__isnull=True) | Q(end__isnull=True) | Q(end__gte=models.F("start")),
                 name="replicate_end_not_below_start",
+            ),
+            models.CheckConstraint(
+                condition=Q(minutes__isnull=True) | Q(minutes__gte=0), name="replicate_minutes_not_negative"
             ),
             models.CheckConstraint(
                 condition=Q(first_end__isnull=True)

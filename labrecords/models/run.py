@@ -6,6 +6,7 @@ from django.conf import settings
 from django.db import models
 from django.db.models import Q
 
+from labrecords.models.endpoint_rule import EndpointRule
 from labrecords.models.fields import ReadingField
 from labrecords.models.standardization import RecordState
 
@@ -52,3 +53,8 @@ class Run(models.Model):
 
     def __str__(self) -> str:
         return self.number
+
+    @property
+    def rule(self) -> EndpointRule:
+        """How its titrations are read."""
+        return self.method_version

@@ -6,6 +6,8 @@ from django.conf import settings
 from django.db import models
 from django.db.models import Q
 
+from labrecords.models.endpoint_rule import EndpointRule
+
 
 class RecordState(models.TextChoices):
     OPEN = "open", "open"
@@ -70,3 +72,8 @@ class Standardization(models.Model):
 
     def __str__(self) -> str:
         return self.number
+
+    @property
+    def rule(self) -> EndpointRule:
+        """How its titrations are read."""
+        return self.lot.titrant

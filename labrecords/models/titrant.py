@@ -6,6 +6,7 @@ from django.conf import settings
 from django.db import models
 from django.db.models import F, Q
 
+from labrecords.models.endpoint_rule import EndpointRule
 from labrecords.models.standard import LotState
 
 
@@ -16,7 +17,7 @@ class Expansion(models.TextChoices):
     ETHANOLIC = "ethanolic alkali", "ethanolic alkali"
 
 
-class Titrant(models.Model):
+class Titrant(EndpointRule):
     """A kind of solution: nominal concentration, accepted window, intervals, and how it is standardized."""
 
     code = models.CharField(max_length=20, unique=True)
@@ -39,9 +40,7 @@ class Titrant(models.Model):
     standard_mass = models.DecimalField(
         max_digits=10, decimal_places=5, null=True, help_text="g of the standard usually weighed"
     )
-    indicator = models.CharField(max_length=120, blank=True)
-    indicator_bias = models.DecimalField(max_digits=6, decimal_places=4, default=0, help_text="mL past equivalence")
-    indicator_u = models.DecimalField(max_digits=6, decimal_places=4, default=0, help_text="mL")
+    blanks_needed = models.PositiveSmallIntegerField(default=1)
     replicates_needed = models.PositiveSmallIntegerField()
     policy = models.CharField(max_length=12, choices=[("concordance", "concordance"), ("all", "all replicates")])
     limit = models.DecimalField(max_digits=8, decimal_places=4)
@@ -53,13 +52,6 @@ class Titrant(models.Model):
     )
     expands_like = models.CharField(max_length=20, choices=Expansion, default=Expansion.WATER)
     buoyancy = models.BooleanField(default=False, help_text="weighings of the standard are corrected for buoyancy")
-    temperature_correction = models.BooleanField(default=False, help_text="volumes are corrected to 20 degC")
-    temperature_within = models.DecimalField(
-        max_digits=4,
-        decimal_places=1,
-        default=0,
-        help_text="degC about the temperature read, or about 20 degC where none is corrected",
-    )
     superseded_by = models.ForeignKey("self", on_delete=models.PROTECT, null=True, related_name="supersedes")
 
     class Meta:
@@ -76,12 +68,21 @@ class Titrant(models.Model):
             models.CheckConstraint(
                 condition=Q(standard_titrant__isnull=True) | Q(aliquot__gt=0), name="titrant_aliquot_positive"
             ),
+            models.CheckConstraint(
+                condition=~Q(endpoint="curve") | (~Q(curve_quantity="") & ~Q(deciding_family="")),
+                name="titrant_curve_says_how",
+            ),
             models.CheckConstraint(condition=Q(replicates_needed__gte=2), name="titrant_needs_replicates"),
             models.CheckConstraint(condition=Q(limit__gt=0), name="titrant_limit_positive"),
         ]
 
     def __str__(self) -> str:
         return self.code
+
+    @property
+    def reads_two_ends(self) -> bool:
+        """A standard has one endpoint that counts."""
+        return False
 
 
 class TitrantLot(models.Model):

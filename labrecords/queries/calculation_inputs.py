@@ -10,16 +10,15 @@ from labrecords import writing
 from labrecords.models import (
     Basis,
     Calculation,
+    EndpointRule,
     Instrument,
     InstrumentCalibration,
     InstrumentKind,
-    MethodVersion,
     Replicate,
     ReplicateKind,
     Run,
     Standardization,
     Substance,
-    Titrant,
     UsedInstrument,
 )  # fmt: skip
 from labrecords.queries.method_inputs import as_text, run_method, standardization_method
@@ -42,6 +41,7 @@ def inputs_for_run(run: Run) -> dict[str, Any]:
         "excess": _excess(run, used),
         "burette": burette_inputs(used["burette"]),
         "temperature": _temperature(version, expands_like=version.titrant.expands_like),
+        "drift": _drift(version),
         "sample": _sample(version.sample_by, version.sample_unit, used, density=version.sample_density),
         "dilutions": _dilutions(version.dilutions, used),
         **_titrations(run),
@@ -60,6 +60,7 @@ def inputs_for_standardization(standardization: Standardization) -> dict[str, An
         "standard": _standard(standardization),
         "burette": burette_inputs(used["burette"]),
         "temperature": _temperature(titrant, expands_like=titrant.expands_like),
+        "drift": _drift(titrant),
         "sample": _sample("mass" if by_mass else "volume", "g" if by_mass else "mL", used),
         "nominal": str(titrant.nominal),
         "window": {"low": str(titrant.window_low), "high": str(titrant.window_high)},
@@ -147,7 +148,12 @@ def _excess(run: Run, used: dict[str, UsedInstrument]) -> dict[str, Any] | None:
     }
 
 
-def _temperature(rule: MethodVersion | Titrant, *, expands_like: str) -> dict[str, Any]:
+def _drift(rule: EndpointRule) -> dict[str, str] | None:
+    """How well the drift is known where titres are corrected for it."""
+    return None if rule.drift_u is None else {"u": str(rule.drift_u)}
+
+
+def _temperature(rule: EndpointRule, *, expands_like: str) -> dict[str, Any]:
     """What is done about the temperature of the titrant; burettes are of borosilicate glass (ISO 385)."""
     return {
         "correct": rule.temperature_correction,
@@ -235,6 +241,8 @@ def _titration(item: Replicate) -> dict[str, Any]:
         "first_end": as_text(item.first_end),
         "end": as_text(item.end),
         "temperature": as_text(item.temperature),
+        "drift": as_text(item.drift),
+        "minutes": as_text(item.minutes),
         "curve": {"volume": curve.volumes, "reading": curve.readings} if curve else None,
         "excluded": item.is_excluded,
     }

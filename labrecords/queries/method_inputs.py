@@ -5,7 +5,7 @@ from __future__ import annotations
 from decimal import Decimal
 from typing import Any
 
-from labrecords.models import Run, Standardization
+from labrecords.models import EndpointRule, Run, Standardization
 
 
 def run_method(run: Run) -> dict[str, Any]:
@@ -27,9 +27,8 @@ def run_method(run: Run) -> dict[str, Any]:
         "places": version.places,
         "coverage": version.coverage,
         "indicator_key": f"indicator:{version.method.code}",
-        "indicator_bias_mL": str(version.indicator_bias) if version.endpoint == "indicator" else None,
-        "indicator_u_mL": str(version.indicator_u) if version.endpoint == "indicator" else None,
-        "curve": _curve_settings(run),
+        **_indicator(version),
+        "curve": _curve_settings(version, concentration=_concentration(run)),
         "equivalent_formula": version.expressed_as.formula if version.quantity == "titrant_equivalent" else None,
     }
 
@@ -47,30 +46,43 @@ def standardization_method(standardization: Standardization) -> dict[str, Any]:
         "places": 5,
         "coverage": titrant.coverage,
         "indicator_key": f"indicator:{titrant.code}",
-        "indicator_bias_mL": str(titrant.indicator_bias),
-        "indicator_u_mL": str(titrant.indicator_u),
-        "curve": None,
+        **_indicator(titrant),
+        "curve": _curve_settings(titrant, concentration=float(titrant.nominal)),
     }
 
 
-def _curve_settings(run: Run) -> dict[str, Any] | None:
-    version = run.method_version
-    if version.endpoint != "curve":
-        return None
-    system = dict(version.system) if version.system else None
-    if system is not None:
-        calculation = run.standardization.calculation
-        system["titrant_concentration"] = calculation.value if calculation else float(version.titrant.nominal)
-        system["sample_volume"] = float(version.initial_volume or 50)
+def _indicator(rule: EndpointRule) -> dict[str, str | None]:
+    """How far past equivalence the colour changes; a curve has no indicator."""
+    is_seen = not rule.takes_curve
     return {
-        "quantity": version.curve_quantity,
-        "deciding": version.deciding_family,
-        "checking": version.checking_family or None,
-        "fixed_reading": as_text(version.fixed_reading),
-        "first_fixed_reading": as_text(version.first_fixed_reading),
-        "expected": version.endpoints_expected,
-        "chosen": version.endpoint_chosen,
-        "agreement_limit": str(version.agreement_limit),
+        "indicator_bias_mL": str(rule.indicator_bias) if is_seen else None,
+        "indicator_u_mL": str(rule.indicator_u) if is_seen else None,
+    }
+
+
+def _concentration(run: Run) -> float:
+    calculation = run.standardization.calculation
+    nominal = run.method_version.titrant.nominal
+    return calculation.value if calculation and calculation.value is not None else float(nominal)
+
+
+def _curve_settings(rule: EndpointRule, *, concentration: float) -> dict[str, Any] | None:
+    """How the curves are evaluated; the model takes the titrant's concentration [mol/L] as known."""
+    if not rule.takes_curve:
+        return None
+    system = dict(rule.system) if rule.system else None
+    if system is not None:
+        system["titrant_concentration"] = concentration
+        system["sample_volume"] = float(rule.initial_volume or 50)
+    return {
+        "quantity": rule.curve_quantity,
+        "deciding": rule.deciding_family,
+        "checking": rule.checking_family or None,
+        "fixed_reading": as_text(rule.fixed_reading),
+        "first_fixed_reading": as_text(rule.first_fixed_reading),
+        "expected": rule.endpoints_expected,
+        "chosen": rule.endpoint_chosen,
+        "agreement_limit": str(rule.agreement_limit),
         "system": system,
     }
 

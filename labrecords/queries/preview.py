@@ -33,7 +33,7 @@ def preview(record: Record, *, typed: Mapping[tuple[int, str], str | None]) -> d
     for kind, lines in (("sample", inputs["replicates"]), ("blank", inputs["blanks"])):
         for line in lines:
             pk = ids[(kind, line["number"])]
-            for field in ("amount", "start", "first_end", "end", "temperature"):
+            for field in ("amount", "start", "first_end", "end", "temperature", "drift", "minutes"):
                 if (pk, field) in typed:
                     line[field] = typed[(pk, field)]
     try:

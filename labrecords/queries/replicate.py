@@ -9,6 +9,7 @@ from django.db.models import QuerySet
 from labrecords.models import Replicate, Run, Standardization, UsedInstrument
 
 Record = Run | Standardization
+LATER = ("first_end", "drift", "minutes")  # readings that few methods take: signed where they were taken
 
 
 def replicates_of(record: Record) -> QuerySet[Replicate]:
@@ -40,7 +41,7 @@ def replicates_as_signed(record: Record) -> list[dict[str, Any]]:
             "temperature": item.temperature,
             "observation": item.observation,
             "curve_sha256": item.curve.file.sha256 if item.curve else None,
-            **({} if item.first_end is None else {"first_end": item.first_end}),
+            **{name: value for name in LATER if (value := getattr(item, name)) is not None},
             "entered_by": item.entered_by.username,
             "excluded": item.is_excluded,
             "exclusion_cause": item.exclusion_cause,

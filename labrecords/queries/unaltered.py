@@ -26,12 +26,15 @@ from labrecords.queries.seal import leaf_hash, leaves, mark, root_hash
 ADDED_LATER: dict[str, dict[str, str | None]] = {
     "labrecords_titrant": {
         "expands_like": "water", "buoyancy": "false", "temperature_correction": "false", "temperature_within": "0.0",
+        "drift_u": None, "endpoint": "indicator", "curve_quantity": "", "deciding_family": "", "checking_family": "",
+        "fixed_reading": None, "first_fixed_reading": None, "endpoints_expected": "1", "endpoint_chosen": "1",
+        "agreement_limit": "3.0", "system": None, "initial_volume": None, "blanks_needed": "1",
     },
     "labrecords_methodversion": {
         "first_fixed_reading": None, "sample_density": None, "temperature_correction": "false",
-        "temperature_within": "0.0", "loss_u": "0.000", "parts": "[]",
+        "temperature_within": "0.0", "loss_u": "0.000", "parts": "[]", "drift_u": None,
     },
-    "labrecords_replicate": {"first_end": None},
+    "labrecords_replicate": {"first_end": None, "drift": None, "minutes": None},
     "labrecords_specificationlimit": {"figures": None},
 }  # fmt: skip
 HASHED = "ARRAY['content', 'inputs', 'outputs', 'volumes', 'readings', 'password']"

@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from datetime import datetime
 from decimal import Decimal
 
-from labrecords.models import Basis, Instrument, InstrumentKind, MethodVersion
+from labrecords.models import Basis, Instrument, InstrumentKind, MethodVersion, Titrant
 from labrecords.queries.instrument import calibration_at
 
 KINDS = {
@@ -32,16 +32,16 @@ def parts_of_method(version: MethodVersion) -> dict[str, Decimal | None]:
         parts[f"aliquot {position}"] = Decimal(step["aliquot"])
     if version.titration == "back":
         parts["excess pipette"] = version.excess_volume
-    if version.endpoint == "curve":
+    if version.takes_curve:
         parts["electrode"] = None
     return parts
 
 
-def parts_of_standardization(basis: str, *, aliquot: Decimal | None) -> dict[str, Decimal | None]:
+def parts_of_standardization(basis: str, *, titrant: Titrant) -> dict[str, Decimal | None]:
     """The parts a standardization needs."""
-    if basis == Basis.MASS:
-        return {"burette": None, "balance": None}
-    return {"burette": None, "pipette": aliquot}
+    parts: dict[str, Decimal | None] = {"burette": None}
+    parts |= {"balance": None} if basis == Basis.MASS else {"pipette": titrant.aliquot}
+    return parts | ({"electrode": None} if titrant.takes_curve else {})
 
 
 def kind_of_part(part: str) -> str:

@@ -6,7 +6,7 @@ import re
 from decimal import Decimal
 from fractions import Fraction
 
-from labrecords.models import Method, MethodVersion, User, VersionState
+from labrecords.models import EndpointRule, Method, MethodVersion, User, VersionState
 from labrecords.rules.number import plain
 
 CODE = re.compile(r"[A-Z][A-Z0-9]*(-[A-Z0-9]+)*")
@@ -77,19 +77,24 @@ def _objections_to_author(by: User) -> list[str]:
 
 
 def _objections_to_endpoint(version: MethodVersion) -> list[str]:
-    if version.endpoint == "indicator":
-        return [] if version.indicator.strip() else ["Indicator is empty: name it and its colour change."]
+    if version.takes_curve:
+        return objections_to_curve(version)
+    return [] if version.indicator.strip() else ["Indicator is empty: name it and its colour change."]
+
+
+def objections_to_curve(rule: EndpointRule) -> list[str]:
+    """What a recorded curve is of, which family decides and which checks."""
     found = []
-    for label, family in (("Deciding", version.deciding_family), ("Checking", version.checking_family)):
+    for label, family in (("Deciding", rule.deciding_family), ("Checking", rule.checking_family)):
         if (family or label == "Deciding") and family not in FAMILIES:
             found.append(f"{label} family is {family!r}: one of {', '.join(FAMILIES)}.")
-    if version.deciding_family and version.deciding_family == version.checking_family:
-        found.append(f"Deciding and checking family are both {version.deciding_family}: a check needs another one.")
-    if "fixed" in (version.deciding_family, version.checking_family) and version.fixed_reading is None:
+    if rule.deciding_family and rule.deciding_family == rule.checking_family:
+        found.append(f"Deciding and checking family are both {rule.deciding_family}: a check needs another one.")
+    if "fixed" in (rule.deciding_family, rule.checking_family) and rule.fixed_reading is None:
         found.append("Fixed reading is empty: the family fixed needs the pH or mV of the endpoint.")
-    if "model" in (version.deciding_family, version.checking_family) and not version.system:
+    if "model" in (rule.deciding_family, rule.checking_family) and not rule.system:
         found.append("Chemistry is empty: the family model needs its analytes and constants.")
-    if not version.curve_quantity:
+    if not rule.curve_quantity:
         found.append("Curve quantity is empty: say what the curve records.")
     return found
 
@@ -101,8 +106,18 @@ def objections_to_temperature_within(value: Decimal) -> list[str]:
     return [f"Temperature known within is {plain(value)} °C: from 0 to 15."]
 
 
+def objections_to_volumes(rule: EndpointRule) -> list[str]:
+    """How volumes are corrected, for methods and titrants alike."""
+    found = objections_to_temperature_within(Decimal(rule.temperature_within))
+    if rule.drift_u is not None and not 0 <= Decimal(rule.drift_u) <= 100:
+        found.append(f"u of the drift is {plain(Decimal(rule.drift_u))} µL/min: from 0 to 100.")
+    if not Decimal(rule.agreement_limit) > 0:
+        found.append(f"Families may differ by {rule.agreement_limit}: a number above 0.")
+    return found
+
+
 def _objections_to_corrections(version: MethodVersion) -> list[str]:
-    found = objections_to_temperature_within(Decimal(version.temperature_within))
+    found = objections_to_volumes(version)
     density = version.sample_density
     if density is not None and not DENSITY[0] <= density <= DENSITY[1]:
         found.append(f"Density of the sample is {plain(density)} g/cm³: from 0.1 to 25. Is it in kg/m³?")
@@ -110,8 +125,6 @@ def _objections_to_corrections(version: MethodVersion) -> list[str]:
         found.append("Density of the sample is for weighings; this sample is by volume. Leave it empty.")
     if not 0 <= Decimal(version.loss_u) <= 5:
         found.append(f"u of the loss on drying is {plain(Decimal(version.loss_u))} %: from 0 to 5.")
-    if not Decimal(version.agreement_limit) > 0:
-        found.append(f"Families may differ by {version.agreement_limit}: a number above 0.")
     return found
 
 
@@ -123,7 +136,7 @@ def _objections_to_parts(version: MethodVersion) -> list[str]:
         found += objections_to_ratio(part["ratio"])
     if version.parts and version.titration != "direct":
         found.append("Further results of two endpoints need a direct titration.")
-    if version.parts and version.endpoint == "curve" and version.endpoint_chosen != 2:
+    if version.parts and version.takes_curve and version.endpoint_chosen != 2:
         found.append(f"The one that counts is {version.endpoint_chosen}: with further results it is the second, 2.")
     if version.parts and version.deciding_family == "fixed" and version.first_fixed_reading is None:
         found.append("First fixed reading is empty: further results need two fixed endpoints.")

@@ -128,6 +128,16 @@ def objections_to_temperature(value: Decimal | None, *, field: str = "Temperatur
     return found
 
 
+def objections_to_drift(drift: Decimal | None, minutes: Decimal | None) -> list[str]:
+    """A cell that is ready drifts by less than 100 µL/min, and a titration ends within hours (common practice)."""
+    found = []
+    if drift is not None:
+        found += _objections_to_range(drift, field="Drift", unit="µL/min", low=Decimal(0), high=Decimal(100))
+    if minutes is not None:
+        found += _objections_to_range(minutes, field="Duration", unit="min", low=Decimal(0), high=Decimal(600))
+    return found
+
+
 def remarks_on_temperature(value: Decimal | None, *, field: str = "Temperature") -> list[str]:
     """Unusual for a room."""
     if value is None or not value.is_finite() or ROOM[0] <= value <= ROOM[1]:

@@ -17,13 +17,14 @@ from labrecords.models import (
 from labrecords.queries.replicate import instruments_of
 from labrecords.rules.readings import (
     objections_to_burette_reading,
+    objections_to_drift,
     objections_to_sample_amount,
     objections_to_temperature,
 )  # fmt: skip
 
 MOST_REPLICATES = 20
 BURETTE = ("start", "first_end", "end")
-FIELDS = ("amount", "start", "first_end", "end", "temperature", "observation")
+FIELDS = ("amount", "start", "first_end", "end", "temperature", "drift", "minutes", "observation")
 Record = Run | Standardization
 
 
@@ -85,6 +86,7 @@ def _objections_to_values(
         found += objections_to_sample_amount(read["amount"], unit=unit, expected=expected)
     if "temperature" in read:
         found += objections_to_temperature(read["temperature"])
+    found += objections_to_drift(read.get("drift"), read.get("minutes"))
     return found
 
 
@@ -113,14 +115,15 @@ def objections_to_excluding(replicate: Replicate, *, record: Record, by: User, c
 def objections_to_attaching(replicate: Replicate, *, record: Record, by: User, digest: str, quantity: str) -> list[str]:
     """A curve goes to a titration without readings, is of the method's quantity, and is used once only."""
     found = objections_to_working_on(record, by=by)
-    if isinstance(record, Standardization) or record.method_version.endpoint != "curve":
+    if not record.rule.takes_curve:
         return [*found, "This sheet takes burette readings, not curves."]
-    wanted = record.method_version.curve_quantity
+    wanted = record.rule.curve_quantity
     if quantity != wanted:
-        found.append(f"The curve is of {quantity}; {record.method_version} takes {wanted}.")
+        found.append(f"The curve is of {quantity}; {record.rule} takes {wanted}.")
     if replicate.curve_id or replicate.start is not None or replicate.end is not None:
         found.append(f"{str(replicate).capitalize()} has its curve or readings. Add another titration for this curve.")
-    twin = Replicate.objects.filter(curve__file__sha256=digest).select_related("run").first()
-    if twin is not None and twin.run is not None:
-        found.append(f"This file is {twin} of {twin.run.number} already. One recording is one titration.")
+    twin = Replicate.objects.filter(curve__file__sha256=digest).select_related("run", "standardization").first()
+    owner = (twin.run or twin.standardization) if twin else None
+    if owner is not None:
+        found.append(f"This file is {twin} of {owner.number} already. One recording is one titration.")
     return found

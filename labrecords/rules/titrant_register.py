@@ -3,12 +3,11 @@
 from __future__ import annotations
 
 from datetime import date, timedelta
-from decimal import Decimal
 
 from labrecords.models import LotState, Titrant, TitrantLot, User
 from labrecords.rules.fit import objections_to_fit
 from labrecords.rules.identifier import objections_to_identifier
-from labrecords.rules.method import objections_to_ratio, objections_to_temperature_within
+from labrecords.rules.method import objections_to_curve, objections_to_ratio, objections_to_volumes
 from labrecords.rules.number import plain
 from labrecords.rules.readings import day, objections_to_date, objections_to_order
 from labrecords.rules.substance import objections_to_keeping_registers
@@ -57,7 +56,9 @@ def _objections_to_standardizing(titrant: Titrant) -> list[str]:
         found.append(
             f"Buoyancy: {titrant.standard_substance.name} has no density in the register. Supersede it with one."
         )
-    return found + objections_to_temperature_within(Decimal(titrant.temperature_within))
+    if titrant.takes_curve:
+        found += objections_to_curve(titrant)
+    return found + objections_to_volumes(titrant)
 
 
 def objections_to_superseding_titrant(titrant: Titrant, *, by: User) -> list[str]:

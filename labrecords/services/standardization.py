@@ -55,18 +55,11 @@ def start_standardization(
     reference_standard, against = _as_stored(reference_standard), _as_stored(against)
     basis = Basis.MASS if reference_standard is not None else Basis.TITRANT
     with audit.event("standardization.start", by=by, subject=lot.number) as event:
-        refuse_if(
-            [
-                *objections_to_starting_standardization(
-                    lot, by=by, reference_standard=reference_standard, against=against, at=event.at
-                ),
-                *objections_to_instruments(
-                    instruments,
-                    parts=parts_of_standardization(basis, aliquot=lot.titrant.aliquot),
-                    at=event.at,
-                ),
-            ]
+        parts = parts_of_standardization(basis, titrant=lot.titrant)
+        found = objections_to_starting_standardization(
+            lot, by=by, reference_standard=reference_standard, against=against, at=event.at
         )
+        refuse_if([*found, *objections_to_instruments(instruments, parts=parts, at=event.at)])
         standardization = Standardization.objects.create(
             number=next_number("S", at=event.at),
             lot=lot,
@@ -77,7 +70,8 @@ def start_standardization(
             started_at=event.at,
         )
         record_used_instruments(standardization, instruments, at=event.at)
-        add_first_replicates(standardization, by=by, at=event.at, replicates=lot.titrant.replicates_needed, blanks=1)
+        counts = {"replicates": lot.titrant.replicates_needed, "blanks": lot.titrant.blanks_needed}
+        add_first_replicates(standardization, by=by, at=event.at, **counts)
     return standardization
 
 

@@ -6,6 +6,7 @@ from typing import Any
 
 from django.http import HttpRequest, HttpResponse
 from django.shortcuts import get_object_or_404, redirect, render
+from django.urls import reverse
 from django.views.decorators.http import require_GET, require_http_methods
 
 from labrecords.errors import Refused
@@ -24,16 +25,23 @@ from labrecords.views.access import for_roles, signed_in
 @require_http_methods(["GET", "POST"])
 def record(request: HttpRequest, pk: int) -> HttpResponse:
     """Drop the file, see which columns were taken and the curve they give, then keep it."""
-    replicate, context, status = _replicate(pk), {"form": CurveFileForm()}, 200
+    replicate, status = _replicate(pk), 200
+    owner, noun = replicate.run or replicate.standardization, "run" if replicate.run else "standardization"
+    context = {
+        "form": CurveFileForm(),
+        "replicate": replicate,
+        "owner": owner,
+        "back": reverse(f"{noun}-sheet", args=[owner.number]),
+    }
     if request.method == "POST":
         try:
             if "packed" in request.POST:
                 _keep(request, replicate)
-                return redirect("run-sheet", replicate.run.number)
+                return redirect(f"{noun}-sheet", owner.number)
             context |= _proposed(request, replicate)
         except Refused as refusal:
             context, status = context | {"refused": refusal.reasons}, 409
-    return render(request, "curve/record.html", context | {"replicate": replicate, "run": replicate.run}, status=status)
+    return render(request, "curve/record.html", context, status=status)
 
 
 @signed_in
@@ -56,7 +64,7 @@ def _proposed(request: HttpRequest, replicate: Replicate) -> dict[str, Any]:
     refuse_size(upload.size, name=upload.name)
     content = upload.read()
     table = read_table(content, name=upload.name)
-    mapping = propose_mapping(table, wanted=replicate.run.method_version.curve_quantity)
+    mapping = propose_mapping(table, wanted=_wanted(replicate))
     return {
         "table": table,
         "mapping": mapping,
@@ -80,7 +88,7 @@ def _keep(request: HttpRequest, replicate: Replicate) -> None:
     content = clean["packed"]
     refuse_size(len(content), name=clean["name"])
     table = read_table(content, name=clean["name"])
-    quantity = replicate.run.method_version.curve_quantity
+    quantity = _wanted(replicate)
     mapping = chosen_mapping(table, volume=clean["volume"], reading=clean["reading"], quantity=quantity)
     curve = extract_curve(table, mapping=mapping)
     attach_curve(
@@ -90,8 +98,12 @@ def _keep(request: HttpRequest, replicate: Replicate) -> None:
 
 
 def _replicate(pk: int) -> Replicate:
-    found = Replicate.objects.select_related("run__method_version__method", "curve")
-    return get_object_or_404(found, pk=pk, run__isnull=False)
+    found = Replicate.objects.select_related("run__method_version__method", "standardization__lot__titrant", "curve")
+    return get_object_or_404(found, pk=pk)
+
+
+def _wanted(replicate: Replicate) -> str:
+    return (replicate.run or replicate.standardization).rule.curve_quantity
 
 
 def _safe(name: str) -> str:

@@ -42,7 +42,7 @@ from labrecords.rules.standardization import (
 )  # fmt: skip
 from labrecords.services.signature import Credentials
 
-CELL = re.compile(r"(amount|start|first_end|end|temperature)-(\d{1,12})")
+CELL = re.compile(r"(amount|start|first_end|end|temperature|drift|minutes)-(\d{1,12})")
 Record = Run | Standardization
 
 
@@ -93,7 +93,7 @@ def words_of(record: Record) -> dict[str, Any]:
     """The headings of a sheet, and how many places its columns show."""
     is_run = isinstance(record, Run)
     method = record.method_version if is_run else record.lot.titrant
-    takes_curve = is_run and method.endpoint == "curve"
+    takes_curve = method.takes_curve
     limit = f"range up to {writing.short(method.limit)} mL"
     if method.limit_kind != "range_mL":
         limit = f"RSD up to {writing.short(method.limit)} %"
@@ -101,7 +101,8 @@ def words_of(record: Record) -> dict[str, Any]:
         "amount_label": "Sample" if is_run else "Standard",
         "amount_unit": expected_amount(record)[0],
         "takes_curve": takes_curve,
-        "reads_two_ends": is_run and method.reads_two_ends,
+        "reads_two_ends": method.reads_two_ends,
+        "reads_drift": method.takes_drift,
         "reads_temperature": method.temperature_correction,
         "reads": f"recorded {method.curve_quantity} curve" if takes_curve else method.indicator,
         "rule_words": f"{method.get_policy_display()}, {limit}, {method.replicates_needed} needed",

@@ -32,7 +32,7 @@ def standardization_form(lot: TitrantLot, *, data: QueryDict | None) -> StartFor
     """Standards in use, or lots of the other titrant in force, and the instruments."""
     now, titrant = timezone.now(), lot.titrant
     basis = "mass" if titrant.standard_substance_id else "titrant"
-    parts = parts_of_standardization(basis, aliquot=titrant.aliquot)
+    parts = parts_of_standardization(basis, titrant=titrant)
     kinds = {part: kind_of_part(part) for part in parts}
     instruments = instruments_for_parts(parts, kinds=kinds, at=now)
     if titrant.standard_titrant_id:

@@ -91,3 +91,26 @@ def test_unknown_settings_are_refused(wrong, sentence) -> None:
 def test_impossible_temperature_names_its_titration() -> None:
     with pytest.raises(ValueError, match=r"Temperature of titration 1: Temperature is 120\.0 degC"):
         compute(run(at("120.0"), temperature=WARM))
+
+
+def test_drift_is_taken_off_over_the_time_of_a_titration() -> None:
+    # 20 uL/min over 5 min are 0.1 mL (definition of drift, common practice of coulometric and volumetric titration).
+    titrations = [line(n, "20.00", amount="10.00", drift="20", minutes="5.0") for n in (1, 2, 3)]
+    plain, found = compute(run(titrations)), compute(run(titrations, drift={"u": "2"}))
+    assert found["value"] / plain["value"] == pytest.approx(19.9 / 20.0, rel=1e-12)
+    unsure = share(found, "drift")
+    assert abs(unsure["contribution"]) / found["value"] == pytest.approx(2 * 5 / 1000 / 19.9, rel=1e-6)
+
+
+def test_missing_drift_and_duration_are_asked_for() -> None:
+    found = compute(run([line(1, "20.00", amount="10.00")], drift={"u": "2"}))
+    assert found["value"] is None
+    assert found["reasons"][:2] == [
+        "The drift of titration 1 is not entered; the titres are corrected for it.",
+        "The duration of titration 1 is not entered; the titres are corrected for drift.",
+    ]
+
+
+def test_negative_duration_is_refused() -> None:
+    with pytest.raises(ValueError, match="Duration of titration 1 is -1 min"):
+        compute(run([line(1, "20.00", amount="10.00", drift="2", minutes="-1")], drift={"u": "2"}))

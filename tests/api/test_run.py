@@ -26,7 +26,7 @@ def test_run_comes_with_its_result_and_the_digits_typed(client, auditor, run) ->
     assert found["result"]["expanded_uncertainty"] > 0
     assert found["replicates"][1] == {
         "kind": "sample", "number": 1, "amount": "10.00", "start": "0.00", "first_end": None, "end": "12.30",
-        "temperature": None,
+        "temperature": None, "drift": None, "minutes": None,
         "is_excluded": False, "exclusion_cause": "",
     }  # fmt: skip
 

@@ -23,6 +23,7 @@ def rule(alkali: Substance, standard: Substance, **given: object) -> dict[str, o
         "indicator_bias": "0.02", "indicator_u": "0.01", "replicates_needed": "3", "policy": "all",
         "limit": "0.25",
         "limit_kind": "rsd_percent", "coverage": "k2", "expands_like": "water", "temperature_within": "4",
+        "endpoint": "indicator", "agreement_limit": "3", "blanks_needed": "1",
     } | given  # fmt: skip
 
 

@@ -15,9 +15,9 @@ from analysis.system import System
 from labrecords.imports.curve import curve_fields, extract_curve
 from labrecords.imports.mapping import propose_mapping
 from labrecords.imports.table import read_table
+from labrecords.management.demo.chemistry import ACETIC, CHLORIDE, EFFLUENT
 from labrecords.management.demo.clock import Clock
 from labrecords.management.demo.laboratory import Laboratory
-from labrecords.management.demo.methods import ACETIC, CHLORIDE
 from labrecords.models import Replicate, Run, Standardization, User
 from labrecords.queries.calculation import latest_request
 from labrecords.queries.replicate import replicates_of
@@ -25,9 +25,6 @@ from labrecords.services.calculation import claim_request, record_calculation
 from labrecords.services.replicate import add_replicate, attach_curve, record_readings
 
 KHP, NACL, CITRIC, CACO3, ACETIC_ACID = 204.222, 58.440, 192.123, 100.086, 60.052
-EFFLUENT = {"kind": "acid_base", "titrant": "acid", "carbonate": 0.0, "activity": True,
-            "analytes": [{"name": "carbonate", "pKa": [6.352, 10.329], "charge": 0},
-                         {"name": "hydrogen carbonate", "pKa": [6.352], "charge": 0}]}  # fmt: skip
 CARBONATE_SHARE = 0.4  # of the effluent's alkalinity
 
 
@@ -77,7 +74,8 @@ class Bench:
     ) -> None:
         """Write the instrument's file and keep it with the titration."""
         content = curve_file(volume, reading, header=header, comma=bool(self.generator.random() < 0.4))
-        name = f"{replicate.run.number}-{replicate.number}.csv" if replicate.run else "curve.csv"
+        owner = replicate.run or replicate.standardization
+        name = f"{owner.number}-{replicate.number}.csv" if owner else "curve.csv"
         table = read_table(content, name=name)
         mapping = propose_mapping(table, wanted=header[1].split(" ")[0])
         curve = extract_curve(table, mapping=mapping)
@@ -132,9 +130,12 @@ class Bench:
 
     def brine_curve(self, content: float, titrant: str) -> tuple[np.ndarray, np.ndarray]:
         """Potential curve of 10 mL of brine [g/L] diluted 5 to 100 mL."""
-        amount = content / NACL * 5 / 100 * 10
-        system = System.from_json(CHLORIDE | {"titrant_concentration": self.true[titrant], "sample_volume": 60.0})
-        near = amount / self.true[titrant]
+        return self.chloride_curve(content / NACL * 5 / 100 * 10, self.true[titrant])
+
+    def chloride_curve(self, amount: float, true: float) -> tuple[np.ndarray, np.ndarray]:
+        """Potential curve of an amount of chloride [mmol] against silver nitrate of a true concentration [mol/L]."""
+        system = System.from_json(CHLORIDE | {"titrant_concentration": true, "sample_volume": 60.0})
+        near = amount / true
         volume = grid(end=near * 1.5, near=near, coarse=0.4, fine=0.1)
         return volume, simulate_curve(
             system, amounts=np.array([amount]), volumes=volume, standard=550.0, generator=self.generator, noise=0.5,

@@ -8,6 +8,7 @@ from decimal import Decimal as D
 from typing import Any
 
 from labrecords.management.demo.certificate import certificate_pdf
+from labrecords.management.demo.chemistry import CHLORIDE
 from labrecords.models import (
     ControlSample,
     Instrument,
@@ -168,7 +169,8 @@ def _titrants(lab: Laboratory) -> None:
         by=by, code="AgNO3-0.1", name="silver nitrate 0.1 mol/L", substance=lab.substances["silver nitrate"],
         nominal=D("0.1"), window_low=D("0.095"), window_high=D("0.105"), restandardization_days=30, shelf_life_days=90,
         standard_substance=lab.substances["sodium chloride"], ratio="1", standard_mass=D("0.12"), buoyancy=True,
-        indicator="potassium chromate, first red-brown", indicator_bias=D("0.03"), indicator_u=D("0.02"), **shared,
+        endpoint="curve", curve_quantity="mV", deciding_family="model", checking_family="derivative", system=CHLORIDE,
+        initial_volume=D(60), blanks_needed=0, **shared,
     )  # fmt: skip
 
 

@@ -6,6 +6,7 @@ from datetime import date, timedelta
 from decimal import Decimal as D
 from typing import Any
 
+from labrecords.management.demo.chemistry import ACETIC, CHLORIDE
 from labrecords.management.demo.laboratory import (
     Laboratory,
     record_control,
@@ -13,10 +14,6 @@ from labrecords.management.demo.laboratory import (
     record_product_effective,
 )  # fmt: skip
 
-ACETIC = {"kind": "acid_base", "titrant": "base", "carbonate": 0.0, "activity": True,
-          "analytes": [{"name": "acetic acid", "pKa": [4.756], "charge": 0}]}  # fmt: skip
-CHLORIDE = {"kind": "precipitation", "titrant": "silver", "carbonate": 0.0, "activity": False,
-            "analytes": [{"name": "chloride", "pKa": [], "charge": -1, "pKs": 9.752}]}  # fmt: skip
 PHENOLPHTHALEIN = {"endpoint": "indicator", "indicator": "phenolphthalein, first lasting pale pink",
                    "indicator_bias": D("0.02"), "indicator_u": D("0.01")}  # fmt: skip
 

@@ -66,11 +66,14 @@ def standardize(
     """Standardize a lot, have it reviewed, and leave it in force."""
     lab, by = bench.lab, team.analyst
     parts = {"burette": "B-07", "balance": "W-01"} if standard else {"burette": "B-07", "pipette": "P-20"}
+    if lot.titrant.takes_curve:
+        parts |= {"burette": "M-02", "electrode": "E-06"}
     record = start_standardization(
         lot, by=by, instruments={part: lab.instruments[name] for part, name in parts.items()},
         reference_standard=lab.standards[standard] if standard else None, against=against,
     )  # fmt: skip
-    bench.titrate(bench.rows(record, "blank")[0], 0.03, by=by, amount=None, burette=BURETTE)
+    for blank in bench.rows(record, "blank"):
+        bench.titrate(blank, 0.03, by=by, amount=None, burette=BURETTE)
     rows = bench.rows(record, "sample")
     for _ in range(3 + MOST_EXTRA):
         for row in rows:
@@ -95,6 +98,10 @@ def _standard_titration(
         return
     molar, nominal = (KHP, 0.42) if (standard or "").startswith("KHP") else (NACL, 0.12)
     mass = bench.weighed(nominal)
+    if lot.titrant.takes_curve:
+        curve = bench.chloride_curve(1000 * mass * 0.9997 / molar, true)
+        bench.attach(row, *curve, by=by, amount=f"{mass:.4f}", header=("Volume mL", "mV"))
+        return
     bench.titrate(row, 1000 * mass * 0.9997 / (molar * true) + 0.03, by=by, amount=f"{mass:.4f}", burette=BURETTE)
 
 
