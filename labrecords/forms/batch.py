@@ -115,7 +115,7 @@ class VersionForm(forms.Form):
     )
     endpoints_expected = CountField(label="Endpoints expected", initial="1")
     endpoint_chosen = CountField(label="The one that counts", initial="1")
-    system = ChemistryField(label="Chemistry for the model", required=False)
+    system = ChemistryField(label="Chemistry for the model")
     initial_volume = NumberField(label="Volume in the vessel at the start, mL", required=False)
     blanks_needed = CountField(label="Blanks needed", initial="0")
     replicates_needed = CountField(label="Replicates needed", initial="3")

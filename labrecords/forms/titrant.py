@@ -43,7 +43,7 @@ class TitrantForm(forms.Form):
     agreement_limit = NumberField(
         label="Families may differ by", initial="3", help_text="combined standard uncertainties; more needs a person"
     )
-    system = ChemistryField(label="Chemistry for the model", required=False)
+    system = ChemistryField(label="Chemistry for the model")
     initial_volume = NumberField(label="Volume in the vessel at the start, mL", required=False)
     blanks_needed = CountField(label="Blanks needed", initial="1")
     replicates_needed = CountField(label="Replicates needed")

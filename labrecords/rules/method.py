@@ -7,6 +7,7 @@ from decimal import Decimal
 from fractions import Fraction
 
 from labrecords.models import EndpointRule, Method, MethodVersion, User, VersionState
+from labrecords.queries.chemistry import objections_to_chemistry
 from labrecords.rules.number import plain
 
 CODE = re.compile(r"[A-Z][A-Z0-9]*(-[A-Z0-9]+)*")
@@ -94,6 +95,8 @@ def objections_to_curve(rule: EndpointRule) -> list[str]:
         found.append("Fixed reading is empty: the family fixed needs the pH or mV of the endpoint.")
     if "model" in (rule.deciding_family, rule.checking_family) and not rule.system:
         found.append("Chemistry is empty: the family model needs its analytes and constants.")
+    if rule.system:
+        found += objections_to_chemistry(rule.system)
     if not rule.curve_quantity:
         found.append("Curve quantity is empty: say what the curve records.")
     return found
