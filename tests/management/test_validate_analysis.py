@@ -21,9 +21,9 @@ OWN: dict[str, Any] = {
 }  # fmt: skip
 
 
-def run(**options: Any) -> str:
+def run(*, quick: bool = True, **options: Any) -> str:
     out = io.StringIO()
-    call_command("validate_analysis", stdout=out, **options)
+    call_command("validate_analysis", stdout=out, quick=quick, **options)
     return out.getvalue()
 
 
@@ -102,12 +102,12 @@ def test_validate_analysis_shows_a_case_that_can_be_run_as_it_is(tmp_path: Path)
         ("if __name__ == '__main__': raise SystemExit(1)", False),
     ],
 )
-def test_validate_analysis_runs_benchmarks_when_asked(tmp_path: Path, monkeypatch, script: str, passes: bool) -> None:
+def test_validate_analysis_runs_the_benchmarks_too(tmp_path: Path, monkeypatch, script: str, passes: bool) -> None:
     (tmp_path / "speed.py").write_text(script, encoding="utf-8")
     monkeypatch.setattr(validate_analysis, "BENCHMARKS", tmp_path)
     if passes:
-        run(benchmarks=True, report=tmp_path / "report.html")
+        run(quick=False, report=tmp_path / "report.html")
         assert "coverage 95 %" in (tmp_path / "report.html").read_text("utf-8")
         return
     with pytest.raises(CommandError, match="1 failures"):
-        run(benchmarks=True, report=tmp_path / "report.html")
+        run(quick=False, report=tmp_path / "report.html")
