@@ -20,6 +20,9 @@ from labrecords.rules.readings import (
     objections_to_drift,
     objections_to_sample_amount,
     objections_to_temperature,
+    remarks_on_burette_reading,
+    remarks_on_sample_amount,
+    remarks_on_temperature,
 )  # fmt: skip
 
 MOST_REPLICATES = 20
@@ -88,6 +91,22 @@ def _objections_to_values(
         found += objections_to_temperature(read["temperature"])
     found += objections_to_drift(read.get("drift"), read.get("minutes"))
     return found
+
+
+def remarks_on_reading(replicate: Replicate, *, record: Record, field: str, value: Decimal | str | None) -> list[str]:
+    """What deserves a second look though it is kept: an unusual amount, a warm room, a reading cut short."""
+    if not isinstance(value, Decimal):
+        return []
+    if field == "amount":
+        unit, expected = expected_amount(record)
+        return remarks_on_sample_amount(value, unit=unit, expected=expected)
+    if field == "temperature":
+        return remarks_on_temperature(value)
+    if field not in BURETTE:
+        return []
+    resolution = instruments_of(record)["burette"].instrument.resolution
+    name = {"start": "Start", "first_end": "First endpoint", "end": "End"}[field]
+    return remarks_on_burette_reading(value, field=name, resolution=resolution)
 
 
 def expected_amount(record: Record) -> tuple[str, Decimal | None]:

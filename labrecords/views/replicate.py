@@ -13,7 +13,7 @@ from labrecords.errors import Refused
 from labrecords.forms.reading import clean_cell, clean_observation
 from labrecords.models import ExclusionCause, Replicate, Run, Standardization
 from labrecords.queries.replicate import replicates_of
-from labrecords.rules.replicate import FIELDS, needs_a_reason
+from labrecords.rules.replicate import FIELDS, needs_a_reason, remarks_on_reading
 from labrecords.services import replicate as service
 from labrecords.views.access import for_roles
 from labrecords.views.sheet import refused_sheet
@@ -31,7 +31,9 @@ def record(request: HttpRequest, pk: int, field: str) -> HttpResponse:
         service.record_readings(replicate, by=request.user, values={field: value}, reason=reason)
     except Refused as refusal:
         return JsonResponse({"reasons": list(refusal.reasons)}, status=409)
-    return JsonResponse({"saved": timezone.localtime().strftime("%H:%M:%S")})
+    owner = replicate.run or replicate.standardization
+    remarks = remarks_on_reading(replicate, record=owner, field=field, value=value)
+    return JsonResponse({"saved": timezone.localtime().strftime("%H:%M:%S"), "remark": " ".join(remarks)})
 
 
 @for_roles("analyst")

@@ -35,7 +35,9 @@ function accept(cell, sent, answer) {
     if (answer.value !== undefined && answer.value !== null) cell.value = cell.dataset.kept = answer.value;
     forget(cell);
   }
-  say(cell, answer.saved ? `saved ${answer.saved}` : "saved");
+  const words = answer.saved ? `saved ${answer.saved}` : "saved";
+  if (answer.remark) say(cell, `${answer.remark} It is ${words}.`, "is-remark");
+  else say(cell, words);
   cell.dispatchEvent(new CustomEvent("labrecords:saved", { bubbles: true }));
 }
 

@@ -30,7 +30,8 @@ function sentence(cell, words, mark) {
   cell.setAttribute("aria-describedby", line.id);
 }
 
-// mark: "" for what needs nobody, "is-person" for what waits, "is-out" for what was refused
+// mark: "" for what needs nobody, "is-person" for what waits, "is-remark" for what was kept and
+// deserves a second look, "is-out" for what was refused
 export function say(cell, words, mark = "") {
   const under = document.getElementById(`${cell.id}-kept`);
   cell.toggleAttribute("aria-invalid", false);

@@ -50,6 +50,9 @@ def answer(text, *, reason):
     if text == "11.00" and not reason:
         fragment = Template('{% include "components/_reason.html" with id="end" %}').render(Context())
         return 428, "text/html", fragment
+    if text == "33.00":
+        remark = "End is 33.00 mL, more than 50 % away from the usual."
+        return 200, "application/json", json.dumps({"saved": "09:42:16", "remark": remark})
     return 200, "application/json", json.dumps({"value": text.replace(",", "."), "saved": "09:42:16"})
 
 
@@ -117,6 +120,15 @@ def test_refused_value_stays_with_its_sentence(sheet):
     expect_text(sheet, "#end-room", 'End is "1o.05": a number in mL is expected.')
     assert sheet.input_value("#end") == "1o.05"
     assert sheet.get_attribute("#end", "aria-invalid") == "true"
+
+
+def test_kept_value_that_deserves_a_second_look_says_so_and_is_sent_once(sheet):
+    type_in(sheet, "end", "33.00")
+    expect_text(sheet, "#end-room", "more than 50 % away from the usual. It is saved 09:42:16.")
+    assert sheet.get_attribute("#end", "aria-invalid") is None
+    sheet.evaluate("window.dispatchEvent(new Event('online'))")
+    sheet.wait_for_timeout(200)
+    assert sheet.received == [{"end": "33.00"}]
 
 
 def test_correction_is_recorded_with_its_reason(sheet):

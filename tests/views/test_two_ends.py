@@ -79,6 +79,24 @@ def test_cells_are_kept_one_by_one(client, run, analyst) -> None:
     assert (str(row.first_end), str(row.temperature)) == ("4.00", "22.0")
 
 
+@pytest.mark.parametrize(
+    ("field", "typed", "remark"),
+    [
+        ("amount", "17.00", "Sample amount is 17.00 mL, more than 50 % away from the usual 10 mL."),
+        ("temperature", "33.0", "a laboratory is usually at 15 to 30"),
+        ("end", "12.3", "End is 12.3 mL with one decimal; the burette is read to 2."),
+        ("amount", "10.00", ""),
+    ],
+)
+def test_unusual_reading_is_kept_with_a_remark(client, run, analyst, field, typed, remark) -> None:
+    client.force_login(analyst)
+    row = run.replicates.filter(kind="sample")[0]
+    answer = client.post(f"/replicates/{row.pk}/{field}/", {f"{field}-{row.pk}": typed})
+    assert answer.status_code == 200
+    assert remark in answer.json()["remark"]
+    assert bool(remark) == bool(answer.json()["remark"])
+
+
 def test_submitting_without_the_first_endpoint_is_refused(run, analyst) -> None:
     read(run, by=analyst, first=None)
     compute(run)
