@@ -3,10 +3,13 @@
 from __future__ import annotations
 
 import numpy as np
+import numpy.typing as npt
 
 from analysis.curve import Curve
 
+FloatArray = npt.NDArray[np.float64]
 FLAT_SHARE = 0.6
+NEIGHBOURS = (-2, -1, 1, 2)
 
 
 def noise_of(curve: Curve) -> float:
@@ -15,23 +18,23 @@ def noise_of(curve: Curve) -> float:
     Only the flattest part of the curve is used, and the median absolute deviation over 0.6745.
     """
     v, y = curve.volume, curve.reading
-    if v.size < 7:
+    size = v.size
+    if size < 7:
         return 0.0
-    away, scale, steep = [], [], []
-    for place in range(2, v.size - 2):
-        near = [place - 2, place - 1, place + 1, place + 2]
-        weights = _lagrange(v[near], float(v[place]))
-        away.append(float(y[place] - weights @ y[near]))
-        scale.append(float(np.sqrt(1 + (weights**2).sum())))
-        steep.append(abs(float((y[place + 1] - y[place - 1]) / (v[place + 1] - v[place - 1]))))
-    flat = np.argsort(steep)[: max(3, int(FLAT_SHARE * len(steep)))]
-    return float(np.median(np.abs(np.array(away)[flat] / np.array(scale)[flat])) / 0.6745)
+    nodes = np.stack([v[2 + k : size - 2 + k] for k in NEIGHBOURS])
+    weights = _lagrange(nodes, v[2:-2])
+    away = y[2:-2] - (weights * np.stack([y[2 + k : size - 2 + k] for k in NEIGHBOURS])).sum(axis=0)
+    scale = np.sqrt(1 + (weights**2).sum(axis=0))
+    steep = np.abs((y[3:-1] - y[1:-3]) / (v[3:-1] - v[1:-3]))
+    flat = np.argsort(steep)[: max(3, int(FLAT_SHARE * steep.size))]
+    return float(np.median(np.abs(away[flat] / scale[flat])) / 0.6745)
 
 
-def _lagrange(nodes: np.ndarray, at: float) -> np.ndarray:
-    weights = np.ones(nodes.size)
-    for i in range(nodes.size):
-        for j in range(nodes.size):
+def _lagrange(nodes: FloatArray, at: FloatArray) -> FloatArray:
+    """Weight of each node in the polynomial through all of them, at these places; nodes by places."""
+    weights = np.ones_like(nodes)
+    for i in range(len(nodes)):
+        for j in range(len(nodes)):
             if i != j:
                 weights[i] *= (at - nodes[j]) / (nodes[i] - nodes[j])
     return weights
