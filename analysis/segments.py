@@ -44,7 +44,8 @@ def _fit(v: FloatArray, y: FloatArray) -> tuple[FloatArray, FloatArray]:
     design = np.column_stack([np.ones_like(v), v])
     line, *_ = np.linalg.lstsq(design, y, rcond=None)
     variance = float(((y - design @ line) ** 2).sum()) / max(v.size - 2, 1)
-    return np.asarray(line, dtype=np.float64), np.linalg.inv(design.T @ design) * variance
+    inverse = np.linalg.pinv(design)
+    return np.asarray(line, dtype=np.float64), inverse @ inverse.T * variance
 
 
 def _best_split(v: FloatArray, y: FloatArray) -> int:
