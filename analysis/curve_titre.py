@@ -40,6 +40,7 @@ def _output(found: CurveEvaluation) -> dict[str, Any]:
         **_endpoint(found.decided),
         "family": found.decided.family,
         "kind": found.decided.kind,
+        "direction": found.direction,
         "checked": _endpoint(found.checked) | {"family": found.checked.family} if found.checked else None,
         "agreement": found.agreement,
         "needs_person": found.needs_person,

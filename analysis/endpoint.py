@@ -18,44 +18,17 @@ from analysis.derivative import (
     second_derivative_zero,
 )  # fmt: skip
 from analysis.detection import LEAST_RISE, endpoints_near
+from analysis.endpoint_flags import direction_of, flags_of_curve, flags_of_direction, flags_of_endpoints
+from analysis.endpoint_rule import STOICHIOMETRIC, CurveSettings, Endpoint, begins_beyond
 from analysis.equilibrium import Fit, fit_equilibrium
 from analysis.fixed import fixed_reading
 from analysis.gran import gran
 from analysis.noise import noise_of
 from analysis.segments import crossing
-from analysis.system import System
 
 FloatArray = npt.NDArray[np.float64]
 FAMILIES = ("model", "gran", "derivative", "parabola", "polynomial", "segments", "fixed")
-STOICHIOMETRIC = ("model", "gran", "segments")
 STRAIGHT = ("conductivity", "temperature", "absorbance")
-
-
-@dataclass(frozen=True, slots=True)
-class Endpoint:
-    """One endpoint: its volume [mL], standard uncertainty [mL], the family that found it, and what it is."""
-
-    volume: float
-    standard_uncertainty: float
-    family: str
-    kind: str
-    reading: float | None
-    degrees_of_freedom: float
-
-
-@dataclass(frozen=True, slots=True)
-class CurveSettings:
-    """What a method version says about its curves."""
-
-    deciding: str
-    checking: str | None = None
-    fixed_reading: float | None = None
-    first_fixed_reading: float | None = None
-    expected: int = 1
-    chosen: int = 1
-    system: System | None = None
-    agreement_limit: float = 3.0
-    temperature: float = 25.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -73,6 +46,7 @@ class CurveEvaluation:
     derivative: tuple[FloatArray, FloatArray]
     model: tuple[FloatArray, FloatArray] | None
     residuals: FloatArray | None
+    direction: str = ""
 
 
 def evaluate_curve(curve: Curve, *, settings: CurveSettings) -> CurveEvaluation:
@@ -85,7 +59,7 @@ def evaluate_curve(curve: Curve, *, settings: CurveSettings) -> CurveEvaluation:
     """
     _check(settings)
     noise = noise_of(curve)
-    flags = _flags_of_curve(curve)
+    flags = flags_of_curve(curve)
     near = _near(curve, settings, noise=noise)
     found, problems, fit = _all_families(curve, settings, near, noise=noise)
     if settings.deciding not in found:
@@ -95,14 +69,18 @@ def evaluate_curve(curve: Curve, *, settings: CurveSettings) -> CurveEvaluation:
     decided = _chosen(found[settings.deciding], settings)
     checked = _nearest(found.get(settings.checking or "", ()), decided)
     agreement = _agreement(decided, checked)
-    flags += _flags_of_endpoints(curve, settings, near, decided, checked, agreement, fit, problems)
-    needs = (agreement is not None and agreement > settings.agreement_limit) or _is_doubtful(
-        settings, near, fit, checked
+    flags += flags_of_endpoints(curve, settings, near, decided, checked, agreement, fit, problems)
+    against = flags_of_direction(curve, settings)
+    flags += against
+    needs = (
+        bool(against)
+        or (agreement is not None and agreement > settings.agreement_limit)
+        or _is_doubtful(settings, near, fit, checked)
     )
     model = (curve.volume, fit.fitted) if fit else None
     return CurveEvaluation(
         curve, settings, found, decided, checked, agreement, needs, tuple(flags), first_derivative(curve), model,
-        fit.residuals if fit else None,
+        fit.residuals if fit else None, direction_of(curve),
     )  # fmt: skip
 
 
@@ -180,12 +158,6 @@ def _one_family(
     return (), None
 
 
-def begins_beyond(curve: Curve, settings: CurveSettings) -> bool:
-    """Whether a curve begins past the first of two fixed readings, on the way to the second."""
-    first, last = settings.first_fixed_reading, settings.fixed_reading
-    return first is not None and last is not None and (curve.reading[0] - first) * (last - first) > 0
-
-
 def _fixed(curve: Curve, settings: CurveSettings, *, noise: float) -> tuple[Endpoint, ...]:
     """The fixed endpoint, after the first of two where there are two.
 
@@ -230,49 +202,6 @@ def _is_doubtful(settings: CurveSettings, near: list[float], fit: Fit | None, ch
     wrong_count = bool(near) and len(near) != settings.expected
     bad_model = settings.deciding == "model" and fit is not None and bool(fit.flags)
     return wrong_count or bad_model or (settings.checking is not None and checked is None)
-
-
-def _flags_of_curve(curve: Curve) -> list[str]:
-    steps = np.diff(curve.reading)
-    rising = curve.reading[-1] >= curve.reading[0]
-    against = -steps if rising else steps
-    limit = {"pH": 0.2, "mV": 15.0}.get(curve.quantity)
-    found = []
-    if limit is not None and against.size and against.max() > limit:
-        at = int(against.argmax())
-        found.append(f"The reading reverses by {against[at]:.2g} {curve.quantity} at {curve.volume[at + 1]:.2f} mL.")
-    return found
-
-
-def _flags_of_endpoints(
-    curve: Curve, settings: CurveSettings, near: list[float], decided: Endpoint, checked: Endpoint | None,
-    agreement: float | None, fit: Fit | None, problems: dict[str, str],
-) -> list[str]:  # fmt: skip
-    found = []
-    if near and len(near) != settings.expected:
-        found.append(f"{len(near)} endpoints found, {settings.expected} expected.")
-    if begins_beyond(curve, settings):
-        found.append(
-            f"The curve begins at {curve.quantity} {curve.reading[0]:.2f}, beyond {settings.first_fixed_reading:g}: "
-            "the first endpoint is where it begins."
-        )
-    at = int(np.clip(np.searchsorted(curve.volume, decided.volume), 1, curve.volume.size - 1))
-    step = float(curve.volume[at] - curve.volume[at - 1])
-    if step > 0.3 and decided.family in ("derivative", "parabola", "polynomial"):
-        found.append(
-            f"Volume step at the endpoint {step:.2f} mL: a derivative endpoint is uncertain by {step / 2:.2f} mL."
-        )
-    if agreement is not None and checked is not None and agreement > settings.agreement_limit:
-        found.append(
-            f"{decided.family.capitalize()} and {checked.family} differ "
-            f"by {agreement:.1f} combined standard uncertainties."
-        )
-    if settings.checking and checked is None:
-        found.append(
-            f"The checking family {settings.checking} finds no endpoint: "
-            f"{problems.get(settings.checking, 'nothing to go by')}"
-        )
-    return found + (list(fit.flags) if fit else [])
 
 
 __all__ = [

@@ -80,6 +80,16 @@ def test_evaluate_curve_says_where_the_reading_reverses() -> None:
     assert found.flags[0] == f"The reading reverses by {fall:.2g} pH at 4.00 mL."
 
 
+def test_evaluate_curve_tells_which_way_it_went() -> None:
+    curve = recorded(ACETIC, 1.0)
+    assert evaluate_curve(curve, settings=MODEL).direction == "Rising curve: an acid titrated with base."
+    falling = Curve(curve.volume, 14 - curve.reading, "pH", ())
+    odd = CurveSettings(deciding="derivative", system=ACETIC)
+    found = evaluate_curve(falling, settings=odd)
+    assert found.needs_person
+    assert "Falling curve: a base titrated with acid. The method titrates with base" in found.flags[0]
+
+
 def test_evaluate_curve_asks_a_person_when_the_check_finds_nothing() -> None:
     found = evaluate_curve(
         strong_acid(VOLUMES), settings=CurveSettings("derivative", checking="fixed", fixed_reading=13.9)
