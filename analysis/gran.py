@@ -90,7 +90,7 @@ def _line(v: FloatArray, g: FloatArray) -> tuple[float, float] | None:
         return None
     a, b = map(float, coefficients)
     variance = float(((np.ones_like(v) - design @ coefficients) ** 2).sum()) / max(v.size - 2, 1)
-    inverse = np.linalg.pinv(design)  # the square of the design would be singular much sooner
-    covariance = inverse @ inverse.T * variance
     slope = np.array([-1 / b, a / b**2])
-    return -a / b, max(math.sqrt(float(slope @ covariance @ slope)), 1e-4)
+    # by the inverse of the design: its square would be singular much sooner
+    u = float(np.linalg.norm(slope @ np.linalg.pinv(design))) * math.sqrt(variance)
+    return (-a / b, max(u, 1e-4)) if math.isfinite(u) else None

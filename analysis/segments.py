@@ -85,4 +85,4 @@ def _cross(first: tuple[FloatArray, FloatArray], second: tuple[FloatArray, Float
 def _cross_u(first: tuple[FloatArray, FloatArray], second: tuple[FloatArray, FloatArray], volume: float) -> float:
     slope = np.array([1.0, volume])
     variance = float(slope @ first[1] @ slope + slope @ second[1] @ slope)
-    return math.sqrt(variance) / abs(float(first[0][1] - second[0][1]))
+    return math.sqrt(max(variance, 0.0)) / abs(float(first[0][1] - second[0][1]))
