@@ -17,6 +17,7 @@ import numpy.typing as npt
 from analysis import model
 from analysis.determination import compute
 from analysis.determination_budget import named_inputs, solution_parts
+from analysis.determination_parts import models_of_parts
 from analysis.monte_carlo import monte_carlo
 from analysis.titration_reading import blank_of, read_titrations
 from analysis.uncertainty import Input, coverage_factor
@@ -57,8 +58,24 @@ def check_by_monte_carlo(
     kind, blank = inputs["kind"], blank_of(titrations)
     make = model.run_value if kind == "run" else model.standardization_value
     mean = model.mean_model([make(inputs, item) for item in inside])
-    counted = {line["key"] for line in outputs["budget"]}
     named = named_inputs(inputs, inside, titrations, blank, kind=kind)
+
+    how: dict[str, Any] = {"seed": seed, "most_draws": most_draws, "progress": progress}
+    whole = _check(mean, named, inputs, outputs, **how)
+    parts = models_of_parts(inputs, inside, titrations, blank) if outputs["parts"] else []
+    whole["parts"] = [
+        {"name": part.name, **_check(part.mean, part.named, part.inputs, result, **how)}
+        for part, result in zip(parts, outputs["parts"], strict=True)
+        if result["u"] > 0
+    ]
+    return whole
+
+
+def _check(
+    mean: model.Model, named: Sequence[Input], inputs: Inputs, outputs: Mapping[str, Any], *, seed: int,
+    most_draws: int, progress: Callable[[int], None] | None,
+) -> dict[str, Any]:  # fmt: skip
+    counted = {line["key"] for line in outputs["budget"]}
     drawn, solutions = _opened(inputs, [_only_counted(item, counted) for item in named])
 
     def draws_of(values: Mapping[str, FloatArray]) -> FloatArray:

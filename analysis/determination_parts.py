@@ -39,6 +39,19 @@ class Part:
     values: dict[int, float]
 
 
+@dataclass(frozen=True, slots=True)
+class PartModel:
+    """How one further result follows from its named inputs; ``inputs`` are the run's, with the part's substance."""
+
+    name: str
+    takes: str
+    formula: str
+    inputs: Inputs
+    mean: model.Model
+    named: list[Input]
+    values: dict[int, float]
+
+
 def parts_of(
     inputs: Inputs, inside: Sequence[Titration], titrations: Sequence[Titration], blank: float | None
 ) -> list[Part]:
@@ -52,6 +65,18 @@ def parts_of(
     ValueError
         When a rule is not known or a titration has not both endpoints.
     """
+    return [
+        Part(
+            model_.name, model_.takes, model_.formula, combined(model_.mean, model_.named, model_.inputs), model_.values
+        )
+        for model_ in models_of_parts(inputs, inside, titrations, blank)
+    ]
+
+
+def models_of_parts(
+    inputs: Inputs, inside: Sequence[Titration], titrations: Sequence[Titration], blank: float | None
+) -> list[PartModel]:
+    """The measurement model of every further result, with its named inputs; ValueError as ``parts_of``."""
     wanted = inputs["method"].get("parts") or []
     if not wanted:
         return []
@@ -80,14 +105,14 @@ def _weights(part: Inputs, first: float, last: float) -> tuple[float, float]:
 def _part(
     inputs: Inputs, part: Inputs, inside: Sequence[Titration], titrations: Sequence[Titration], blank: float | None,
     *, weights: tuple[float, float],
-) -> Part:  # fmt: skip
+) -> PartModel:  # fmt: skip
     own = _inputs_of(inputs, part)
     taken = [_taken(item, weights) for item in inside]
     others = model.run_inputs(own)
     alone = {item.number: _value(own, item, [*others, *_volumes(own, [item], [], blank, weights)]) for item in taken}
     named = [*others, *_volumes(own, taken, titrations, blank, weights), repeatability(spread(list(alone.values())))]
     mean = model.mean_model([model.run_value(own, item) for item in taken])
-    return Part(part["name"], part["takes"], part["formula"], combined(mean, named, own), alone)
+    return PartModel(part["name"], part["takes"], part["formula"], own, mean, named, alone)
 
 
 def _inputs_of(inputs: Inputs, part: Inputs) -> dict[str, Any]:

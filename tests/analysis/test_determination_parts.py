@@ -8,6 +8,7 @@ import numpy as np
 import pytest
 
 from analysis.determination import compute
+from analysis.determination_monte_carlo import check_by_monte_carlo
 from analysis.simulate import grid, simulate_curve
 from analysis.system import Analyte, System
 from tests.support.determinations import Data, line, lines, method, run, solution, substance
@@ -115,3 +116,17 @@ def test_two_acids_of_one_curve_are_two_results() -> None:
     for item, true in zip(found["parts"], truth, strict=True):
         assert abs(item["value"] - true) < item["U"]
         assert item["U"] < 0.01 * true
+
+
+def test_parts_are_drawn_too() -> None:
+    ends = [("2.00", "8.00"), ("2.02", "8.01"), ("1.99", "7.98")] * 4
+    titrations = [line(n, end, amount="100.00", first_end=first) for n, (first, end) in enumerate(ends, start=1)]
+    wanted = method(ratio="1/2", unit="mg/L", parts=KINDS)
+    inputs = run(titrations, method=wanted, **AS_CARBONATE)
+    by_budget = {part["name"]: part for part in compute(inputs)["parts"]}
+    drawn = check_by_monte_carlo(inputs, seed=5, most_draws=200_000)["parts"]
+    assert [part["name"] for part in drawn] == ["carbonate", "hydrogen carbonate"]  # hydroxide is none, without doubt
+    for part in drawn:
+        assert part["value"] == pytest.approx(by_budget[part["name"]]["value"], rel=1e-4)
+        assert part["u"] == pytest.approx(by_budget[part["name"]]["u"], rel=0.02)
+        assert part["interval"] == pytest.approx(part["budget_interval"], abs=0.1 * part["budget_u"])
