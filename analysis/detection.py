@@ -1,50 +1,93 @@
-"""How many endpoints a curve has, and where about."""
+"""How many endpoints a curve has, and where about.
+
+A jump is a place where little titrant changes the reading much: a dip of dV/dy, the volume that a unit of the reading
+takes, between two buffers that take more.
+"""
 
 from __future__ import annotations
 
 import numpy as np
 import numpy.typing as npt
+from scipy.ndimage import median_filter
 from scipy.signal import find_peaks
 
 from analysis.curve import Curve
 
 FloatArray = npt.NDArray[np.float64]
 LEAST_RISE = {"pH": 1.0, "mV": 60.0}
-BIN = {"pH": 0.30, "mV": 18.0}
-PROMINENCE = 0.20
-LN_10 = np.log(10.0)
+WINDOW = {"pH": 0.39, "mV": 23.0}  # two neighbouring pKa 2.5 apart still leave a dip between them
+OF_SCATTER = 5.0  # times the scatter of a reading, that a window is at least
+LEVELS = 4  # in each window
+PROMINENCE = 0.215  # decades of dV/dy; two neighbouring pKa 2.5 apart make 0.3, scatter in a buffer less than 0.1
+QUIET, LOUDER = 0.14, 0.7  # scatter over window, up to which that holds, and what is asked beyond it
+SHOULDER = 0.15  # decades above the least that still belong to the bottom of a dip
+BETWEEN = 3  # recorded points that part two jumps
+STRAY = 5.0  # times the scatter, that a reading is away from the median of its neighbours
 
 
 def endpoints_near(curve: Curve, *, noise: float) -> list[float]:
     """Volumes [mL] near which the curve jumps, in order.
 
-    The reading is made monotone (pool adjacent violators) and inverted to V(y) in bins; interior minima of
-    log10(dV/dy) whose prominence exceeds 0.20 + 3 u count, with u = 2 s / (bin ln 10).
+    Stray readings are put in line, the reading is made monotone (pool adjacent violators) and inverted to V(y); dV/dy
+    is the mean of a triangle of readings about each level, and dips of its logarithm that are deep enough count.
+
+    Parameters
+    ----------
+    curve : Curve
+    noise : float
+        Standard deviation of a reading, see ``noise_of``.
     """
-    sign = 1.0 if curve.reading[-1] >= curve.reading[0] else -1.0
-    y = monotone(sign * curve.reading)
-    width = max(BIN.get(curve.quantity, float(np.ptp(y)) / 20), 12 * noise)
-    if np.ptp(y) < 4 * width:
+    y = _without_strays(curve.reading, noise=noise)
+    y = monotone(y if y[-1] >= y[0] else -y)
+    width = max(WINDOW.get(curve.quantity, float(np.ptp(y)) / 20), OF_SCATTER * noise)
+    if np.ptp(y) < max(3 * width, LEAST_RISE.get(curve.quantity, 0.0)):
         return []
-    edges = np.arange(y[0], y[-1], width)
-    y_strict = y + 1e-9 * np.arange(y.size)
-    volumes = np.interp(edges, y_strict, curve.volume)
-    log_width = np.log10(np.maximum(np.diff(volumes), 1e-4))
-    least = PROMINENCE + 3 * 2 * noise / (width * LN_10)
-    found = [
-        (float(log_width[at]), float((volumes[at] + volumes[at + 1]) / 2))
-        for at in _minima(log_width, prominence=least)
+    log_width, volumes = _log_volume_per_reading(curve.volume, y, width=width)
+    least = PROMINENCE + LOUDER * max(noise / width - QUIET, 0.0)
+    dips, found = find_peaks(-log_width, prominence=least)
+    bottoms = [
+        (float(log_width[at]), _bottom(log_width, volumes, at=int(at), shoulder=min(SHOULDER, depth / 2)))
+        for at, depth in zip(dips, found["prominences"], strict=True)
     ]
-    return _merged(found, curve)
+    return _merged(bottoms, curve.volume)
 
 
-def _merged(found: list[tuple[float, float]], curve: Curve) -> list[float]:
-    """Minima within two points of the grid are one jump; the sharpest stands for it."""
+def _without_strays(y: FloatArray, *, noise: float) -> FloatArray:
+    """One or two bad readings become the median of five; a curve that only rises is its own median and stays."""
+    middle = median_filter(y, size=5, mode="nearest")
+    return np.where(np.abs(y - middle) > STRAY * noise, middle, y)
+
+
+def _log_volume_per_reading(v: FloatArray, y: FloatArray, *, width: float) -> tuple[FloatArray, FloatArray]:
+    """log10 of dV/dy at even levels of the reading, and the volume of each level [mL].
+
+    The second difference of the integral of V over y is dV/dy in the mean of a triangle of half this width, so that
+    all points within it count and not the two at its edges alone.
+    """
+    y = y + 1e-9 * (y[-1] - y[0]) * np.linspace(0.0, 1.0, y.size)  # no two alike
+    levels = np.arange(y[0], y[-1], width / LEVELS)
+    volumes = np.interp(levels, y, v)
+    below = np.clip(np.searchsorted(y, levels, side="right") - 1, 0, y.size - 1)
+    whole = np.concatenate([[0.0], np.cumsum(np.diff(y) * (v[1:] + v[:-1]) / 2)])
+    integral = whole[below] + (levels - y[below]) * (volumes + v[below]) / 2
+    second = integral[2 * LEVELS :] - 2 * integral[LEVELS:-LEVELS] + integral[: -2 * LEVELS]
+    return np.log10(np.maximum(second / width**2, 1e-6 * float(v[-1] - v[0]) / width)), volumes[LEVELS:-LEVELS]
+
+
+def _bottom(log_width: FloatArray, volumes: FloatArray, *, at: int, shoulder: float) -> float:
+    """Mean volume of the bottom of a dip, weighted by its depth; its single least level is at the mercy of scatter."""
+    rim = log_width[at] + shoulder
+    above = np.flatnonzero(log_width >= rim)
+    low = int(above[above < at].max(initial=-1)) + 1
+    high = int(above[above > at].min(initial=log_width.size))
+    return float(np.average(volumes[low:high], weights=rim - log_width[low:high]))
+
+
+def _merged(found: list[tuple[float, float]], volume: FloatArray) -> list[float]:
+    """Dips with hardly a recorded point between them are one jump; the sharpest stands for it."""
     groups: list[list[tuple[float, float]]] = []
     for each in found:
-        at = int(np.searchsorted(curve.volume, each[1]))
-        reach = float(curve.volume[min(at + 2, curve.volume.size - 1)] - curve.volume[max(at - 2, 0)])
-        if groups and each[1] - groups[-1][-1][1] <= reach:
+        if groups and np.count_nonzero((volume > groups[-1][-1][1]) & (volume < each[1])) < BETWEEN:
             groups[-1].append(each)
         else:
             groups.append([each])
@@ -65,8 +108,3 @@ def monotone(y: FloatArray) -> FloatArray:
             values.pop()
             weights.pop()
     return np.repeat(np.array(values), np.array(weights))
-
-
-def _minima(x: FloatArray, *, prominence: float) -> list[int]:
-    found, _ = find_peaks(-x, prominence=prominence)
-    return [int(at) for at in found]

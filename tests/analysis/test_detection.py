@@ -55,6 +55,35 @@ def test_endpoints_near_counts_one_in_spite_of_scatter(seed: int) -> None:
     assert endpoints_near(curve, noise=noise_of(curve)) == pytest.approx([10.0], abs=0.5)
 
 
+@pytest.mark.parametrize("seed", range(5))
+@pytest.mark.parametrize(
+    ("pKa", "amount", "truths"),
+    [((9.5,), 1.0, (10.0,)), ((4.0, 6.5), 0.5, (5.0, 10.0)), ((4.0, 6.5, 9.0), 0.4, (4.0, 8.0, 12.0))],
+)
+def test_endpoints_near_tells_weak_jumps_from_scatter_of_2_mV(
+    pKa: tuple, amount: float, truths: tuple, seed: int
+) -> None:
+    generator = np.random.default_rng(seed)
+    curve = recorded(base(Analyte("acid", pKa)), amount, end=15.0, noise=2 / 59.16, generator=generator)
+    assert endpoints_near(curve, noise=noise_of(curve)) == pytest.approx(list(truths), abs=0.75)
+
+
+@pytest.mark.parametrize("off", [-3.0, -0.5, 0.5, 3.0])
+@pytest.mark.parametrize("at", [0, 1, 20, 49, 50])
+def test_endpoints_near_takes_no_bad_reading_for_a_jump(off: float, at: int) -> None:
+    volumes = np.linspace(0.0, 10.0, 51)
+    readings = 4.0 + 0.15 * volumes
+    readings[at] += off
+    assert endpoints_near(clean_curve(volumes, readings, quantity="pH"), noise=0.0) == []
+
+
+def test_endpoints_near_finds_none_before_a_jump_and_none_after_it() -> None:
+    whole = strong_acid(np.linspace(0.0, 20.0, 201))
+    for part in (whole.volume < 9.5, whole.volume > 10.5):
+        curve = clean_curve(whole.volume[part], whole.reading[part], quantity="pH")
+        assert endpoints_near(curve, noise=noise_of(curve)) == []
+
+
 @given(st.lists(st.floats(-10, 10), min_size=1, max_size=8))
 def test_monotone_is_the_nearest_rising_sequence(values: list[float]) -> None:
     y = np.array(values)
