@@ -11,8 +11,10 @@ from django.views.decorators.http import require_GET, require_http_methods, requ
 from labrecords.errors import Refused
 from labrecords.forms.batch import LimitRows, ProductForm, SpecificationForm, SupersedingProductForm
 from labrecords.models import Product, Specification
+from labrecords.queries.capability import FEWEST
 from labrecords.queries.history import sentences_about
-from labrecords.queries.product import products
+from labrecords.queries.product import effective_specification, products
+from labrecords.queries.risk import risks_of
 from labrecords.services import product as service
 from labrecords.views.access import for_roles, signed_in
 from labrecords.views.recording import recorded
@@ -104,8 +106,11 @@ def make_effective(request: HttpRequest, pk: int) -> HttpResponse:
 
 def _context(code: str) -> dict[str, Any]:
     product = get_object_or_404(products(), code=code)
+    effective = effective_specification(product)
     return {
         "product": product,
+        "risks": risks_of(effective) if effective else [],
+        "fewest": FEWEST,
         "specifications": product.specifications.all(),
         "history": sentences_about(product),
     }
