@@ -15,10 +15,10 @@ from analysis.curve import Curve
 
 FloatArray = npt.NDArray[np.float64]
 LEAST_RISE = {"pH": 1.0, "mV": 60.0}
-WINDOW = {"pH": 0.39, "mV": 23.0}  # two neighbouring pKa 2.5 apart still leave a dip between them
+WINDOW = {"pH": 0.38, "mV": 22.5}  # two neighbouring pKa 2.5 apart still leave a dip between them
 OF_SCATTER = 5.0  # times the scatter of a reading, that a window is at least
 LEVELS = 4  # in each window
-PROMINENCE = 0.215  # decades of dV/dy; two neighbouring pKa 2.5 apart make 0.3, scatter in a buffer less than 0.1
+PROMINENCE = 0.212  # decades of dV/dy; two neighbouring pKa 2.5 apart make 0.3, scatter in a buffer less than 0.1
 QUIET, LOUDER = 0.14, 0.7  # scatter over window, up to which that holds, and what is asked beyond it
 SHOULDER = 0.15  # decades above the least that still belong to the bottom of a dip
 BETWEEN = 3  # recorded points that part two jumps
