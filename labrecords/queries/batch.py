@@ -95,8 +95,8 @@ def runs_of_batch(batch: Batch) -> QuerySet[Run]:
             ),
             Prefetch(
                 "investigations",
-                queryset=Investigation.objects.filter(conclusion=Conclusion.NOT_CONFIRMED),
-                to_attr="not_confirmed",
+                queryset=Investigation.objects.filter(state=InvestigationState.CLOSED),
+                to_attr="concluded",
             ),
         )
         .order_by("started_at", "id")
@@ -105,7 +105,7 @@ def runs_of_batch(batch: Batch) -> QuerySet[Run]:
 
 def _required_test(limit: SpecificationLimit, runs: list[Run]) -> RequiredTest:
     doubtful = [run for run in runs if run.open_investigations]  # type: ignore[attr-defined]
-    live = [run for run in runs if run.state != RecordState.VOID]
+    live = [run for run in runs if run.state != RecordState.VOID or _is_confirmed(run)]
     if doubtful:
         return RequiredTest(limit=limit, runs=runs, status="under investigation", run=doubtful[-1])
     if not live:
@@ -123,8 +123,18 @@ def _required_test(limit: SpecificationLimit, runs: list[Run]) -> RequiredTest:
 
 
 def _is_outside(run: Run) -> bool:
-    """Out of limits, unless an investigation's planned retests did not confirm it."""
-    return _outcome(run) == "does_not_conform" and not run.not_confirmed  # type: ignore[attr-defined]
+    """Out of limits, unless an investigation's planned retests did not confirm it; confirmed, even when it is void."""
+    if _is_confirmed(run):
+        return True
+    return _outcome(run) == "does_not_conform" and Conclusion.NOT_CONFIRMED not in _conclusions(run)
+
+
+def _is_confirmed(run: Run) -> bool:
+    return Conclusion.CONFIRMED in _conclusions(run)
+
+
+def _conclusions(run: Run) -> list[str]:
+    return [investigation.conclusion for investigation in run.concluded]  # type: ignore[attr-defined]
 
 
 def _outcome(run: Run) -> str:

@@ -118,7 +118,11 @@ def objections_to_voiding_run(run: Run, *, by: User) -> list[str]:
 
 
 def needs_an_investigation(run: Run) -> bool:
-    """Out of specification and not yet investigated; a planned retest belongs to the investigation that planned it."""
+    """Out of specification and not yet investigated.
+
+    A planned retest belongs to the investigation that planned it, unless it is made void: its result would be gone.
+    """
     latest = latest_calculation(run)
     is_outside = latest is not None and latest.outcome == "does_not_conform"
-    return is_outside and run.retest_for_id is None and not run.investigations.exists()
+    is_planned = run.retest_for_id is not None and run.state != RecordState.VOID
+    return is_outside and not is_planned and not run.investigations.exists()
