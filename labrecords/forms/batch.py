@@ -11,6 +11,8 @@ from django.utils import timezone
 from labrecords.forms.curve_rule import FAMILIES, ChemistryField
 from labrecords.forms.fields import CountField, DayField, NumberField
 from labrecords.forms.parts import PartsField
+from labrecords.forms.register import GroupedForm
+from labrecords.forms.titrant import CORRECTIONS, COUNTING, ENDPOINT
 from labrecords.models import (
     Batch,
     BatchState,
@@ -71,8 +73,18 @@ class MethodForm(forms.Form):
     title = forms.CharField(max_length=120, label="Title")
 
 
-class VersionForm(forms.Form):
+class VersionForm(GroupedForm):
     """The recipe of a method version, in the order a bench would read it."""
+
+    groups = (
+        ("The version", ("reason", "instructions")),
+        ("What is titrated", ("titrant", "titration", "excess_titrant", "excess_volume", "sample_by", "sample_amount",
+                              "dilutions")),
+        ("Endpoint", ENDPOINT),
+        ("Which titrations count", COUNTING),
+        ("Result", ("expressed_as", "ratio", "quantity", "unit", "places", "basis", "loss_u", "parts")),
+        ("Corrections and uncertainty", CORRECTIONS),
+    )  # fmt: skip
 
     reason = forms.CharField(max_length=500, label="Why this version is made")
     titrant = forms.ModelChoiceField(queryset=Titrant.objects.filter(superseded_by=None), label="Titrant")

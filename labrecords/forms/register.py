@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from decimal import Decimal
-from typing import Any
+from typing import Any, ClassVar
 
 from django import forms
 
@@ -15,6 +15,20 @@ class ReasonForm(forms.Form):
     """Why a record is changed, superseded or taken out of use."""
 
     reason = TextField(max_length=500, label="Reason")
+
+
+class GroupedForm(forms.Form):
+    """A long form in parts with a heading each; what no part names comes in the first one."""
+
+    groups: ClassVar[tuple[tuple[str, tuple[str, ...]], ...]] = ()
+
+    def grouped(self) -> list[tuple[str, list[forms.BoundField]]]:
+        """Heading and fields of each part, in order."""
+        named = {name for _, names in self.groups for name in names}
+        rest = [name for name in self.fields if name not in named]
+        parts = [(title, list(names)) for title, names in self.groups]
+        parts[0][1][:0] = rest
+        return [(title, [self[name] for name in names if name in self.fields]) for title, names in parts]
 
 
 def initial_of(record: Any, form: type[forms.Form]) -> dict[str, Any]:

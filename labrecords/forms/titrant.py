@@ -6,14 +6,34 @@ from django import forms
 
 from labrecords.forms.curve_rule import FAMILIES, ChemistryField
 from labrecords.forms.fields import CountField, DayField, NumberField, OneOfField, RecordField, TextField
-from labrecords.forms.register import ReasonForm
+from labrecords.forms.register import GroupedForm, ReasonForm
 from labrecords.models import Substance, Titrant, User
 
 SUBSTANCES = Substance.objects.filter(superseded_by=None)
 
 
-class TitrantForm(forms.Form):
+ENDPOINT = (
+    "endpoint", "indicator", "indicator_bias", "indicator_u", "curve_quantity", "deciding_family", "checking_family",
+    "agreement_limit", "fixed_reading", "first_fixed_reading", "endpoints_expected", "endpoint_chosen",
+    "initial_volume", "system",
+)  # fmt: skip
+COUNTING = ("blanks_needed", "replicates_needed", "policy", "limit", "limit_kind")
+CORRECTIONS = (
+    "temperature_correction", "expands_like", "temperature_within", "drift_u", "buoyancy", "sample_density", "coverage",
+)  # fmt: skip
+
+
+class TitrantForm(GroupedForm):
     """A kind of solution and the rule of its standardization."""
+
+    groups = (
+        ("The solution", ("code", "name", "substance", "nominal", "window_low", "window_high",
+                          "restandardization_days", "shelf_life_days")),
+        ("How it is standardized", ("standard_substance", "standard_mass", "standard_titrant", "aliquot", "ratio")),
+        ("Endpoint", ENDPOINT),
+        ("Which titrations count", COUNTING),
+        ("Corrections and uncertainty", CORRECTIONS),
+    )  # fmt: skip
 
     code = TextField(max_length=20, label="Code")
     name = TextField(max_length=120, label="Name")
