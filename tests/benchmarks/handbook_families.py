@@ -36,7 +36,7 @@ def families(case: Case) -> dict[str, Callable[[Curve, float], Found]]:
         "derivative": lambda curve, near: second_derivative_zero(curve, near=near),
         "parabola": lambda curve, near: inverse_square_parabola(curve, near=near),
         "polynomial": lambda curve, near: local_polynomial(curve, near=near),
-        "gran": lambda curve, near: gran(curve, system=case.system, near=near),
+        "gran": lambda curve, near: gran(curve, system=case.system, near=near, step=case.step),
         "fixed": lambda curve, near: fixed_reading(curve, reading=pH, noise=noise_of(curve)),
     }
 
