@@ -25,7 +25,7 @@ from analysis.system import System
 FloatArray = npt.NDArray[np.float64]
 MOST_DECADES = 18  # as wide as pH
 RELATIVE_SD = 0.01  # of a point of a line: 0.25 mV; where they scatter more, that counts
-UNKNOWN = ({"lean": 0.04}, {"stretch": 1.015}, {"apart": 0.04})  # what the slopes of the lines do not tell
+LEAN, STRETCH, APART = 0.04, 1.015, 0.04  # what no slope of a line tells: pH of the free ions, electrode, pKa
 
 
 def gran(
@@ -78,7 +78,8 @@ def _acid_base(curve: Curve, *, system: System, near: float, step: int | None, a
             break
         plot = replace(plot, near=volume)
         volume, u = _combined(sides_of(plot))
-    varied = [sides_of(replace(plot, **change)) for change in UNKNOWN]
+    unknown = (replace(plot, lean=LEAN), replace(plot, stretch=STRETCH), replace(plot, apart=APART))
+    varied = [sides_of(changed) for changed in unknown]
     away = [_combined(sides)[0] - volume for sides in varied if sides]
     return volume, math.hypot(u, *away)
 

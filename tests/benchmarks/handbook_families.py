@@ -31,7 +31,7 @@ Found = tuple[float, float]  # volume and standard uncertainty [mL]
 def families(case: Case) -> dict[str, Callable[[Curve, float], Found]]:
     """What a handbook does with a curve and the place of its jump; the fixed pH is that of the equivalence point."""
     at_end = np.array([[NEAR * amount for amount in case.per_mL]])
-    pH = round(float(true_x(case.system, amounts=at_end, volumes=np.array([NEAR]))[0, 0]), 1)
+    pH = round(float(true_x(case.system, amounts=at_end, volumes=np.array([NEAR]))[0, 0]), 2)
     return {
         "derivative": lambda curve, near: second_derivative_zero(curve, near=near),
         "parabola": lambda curve, near: inverse_square_parabola(curve, near=near),
