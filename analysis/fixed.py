@@ -9,9 +9,10 @@ import numpy as np
 from analysis.curve import Curve
 
 READING_U = {
-    "pH": 0.03,
-    "mV": 2.0,
-}  # of the calibration of the electrode (common practice), beside the scatter
+    "pH": 0.06,
+    "mV": 3.5,
+}  # of the electrode's zero between calibrations, as the model of a curve takes it; beside the scatter
+SQRT_12 = math.sqrt(12)
 CLEAR = 6  # times the scatter of a reading, that a slope is told from two of them
 
 
@@ -30,10 +31,32 @@ def fixed_reading(curve: Curve, *, reading: float, noise: float) -> tuple[float,
         low, high = curve.reading.min(), curve.reading.max()
         raise ValueError(f"The curve runs from {low:g} to {high:g} {curve.quantity} and does not pass {reading:g}.")
     volume, slope = _line_about(curve, int(crossing[0]), reading=reading, noise=noise)
-    at = int(np.clip(np.searchsorted(curve.volume, volume), 1, curve.volume.size - 1))
     u_reading = math.hypot(READING_U.get(curve.quantity, 0.0), noise)
-    step = float(curve.volume[at] - curve.volume[at - 1])
-    return volume, math.hypot(u_reading / abs(slope), step / 20)
+    return volume, math.hypot(u_reading / abs(slope), _bend(curve, int(crossing[0]), reading=reading) / SQRT_12)
+
+
+def _bend(curve: Curve, at: int, *, reading: float) -> float:
+    """How far apart the crossing is by the straight line between two points and by the lines beside it, drawn on [mL].
+
+    A curve bends between its points: the crossing lies between these lines, and never outside the two points.
+    """
+    v, y = curve.volume, curve.reading
+    width, rise = float(v[at + 1] - v[at]), float(y[at + 1] - y[at])
+    share = float((reading - y[at]) / rise)
+    shares = [share]
+    if at > 0:
+        shares.append(_drawn_on(share, slope=float(y[at] - y[at - 1]) / float(v[at] - v[at - 1]) * width / rise))
+    if at + 2 < v.size:
+        slope = float(y[at + 2] - y[at + 1]) / float(v[at + 2] - v[at + 1]) * width / rise
+        shares.append(1.0 - _drawn_on(1.0 - share, slope=slope))
+    return width * (max(shares) - min(shares))
+
+
+def _drawn_on(share: float, *, slope: float) -> float:
+    """How much of the interval a line takes to rise by this share of its rise: all of it, if it does not get there."""
+    if share <= 0:
+        return 0.0
+    return share / slope if slope > share else 1.0
 
 
 def _line_about(curve: Curve, at: int, *, reading: float, noise: float) -> tuple[float, float]:
