@@ -50,6 +50,8 @@ def gran(
         When the chemistry has no line for this endpoint, neither side has four usable points, or the lines end
         outside the curve.
     """
+    if not 0 < near < np.inf:
+        raise ValueError(f"The endpoint is sought near {near:g} mL; more than 0 mL is expected.")
     if system.kind == "acid_base":
         volume, u = _acid_base(curve, system=system, near=near, step=step, after=after)
     else:
@@ -74,7 +76,7 @@ def _acid_base(curve: Curve, *, system: System, near: float, step: int | None, a
     plot = _plot(curve, system=system, near=near, step=step, after=after)
     volume, u = _combined(sides_of(plot))
     for _ in range(2):  # with a better idea of where the step ends
-        if not curve.volume[0] <= volume <= curve.volume[-1] or abs(volume - plot.near) < u:
+        if not plot.base < volume <= curve.volume[-1] or abs(volume - plot.near) < u:
             break
         plot = replace(plot, near=volume)
         volume, u = _combined(sides_of(plot))

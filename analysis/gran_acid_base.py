@@ -177,13 +177,14 @@ def _undone(plot: Plot, pH: FloatArray, gamma: FloatArray) -> FloatArray:
 
 
 def _ionic_strength(plot: Plot, whole: FloatArray) -> FloatArray:
-    """Half the sum of c z^2 [mol/L], with the analyte's charge changing evenly up to the endpoint."""
+    """Half the sum of c z^2 [mol/L], proton after proton; counter-ions are univalent."""
     system, v = plot.system, plot.curve.volume
-    salt = np.minimum(v, plot.near) + 2 * np.maximum(v - plot.near, 0.0)
-    first = plot.analyte.charge - (_start(plot) if plot.analyte.pKa else 0.0)
-    turn = -1.0 if system.titrant == "base" else 1.0
-    charge = first + turn * (v - plot.base) / _step(plot) if plot.analyte.pKa else np.ones_like(v)
-    charge = np.clip(charge, -len(plot.analyte.pKa) or -1, max(plot.analyte.charge, 1))
-    carried = _step(plot) * (charge**2 + abs(first)) if plot.analyte.pKa else _step(plot) * np.ones_like(v)
-    ions = system.titrant_concentration * (salt + carried + max(plot.base, 0.0)) / 2
-    return np.asarray((ions + system.background * system.sample_volume) / whole)
+    if plot.analyte.pKa:
+        turn, first = (-1 if system.titrant == "base" else 1), plot.analyte.charge - _start(plot)
+        steps = np.arange(plot.protons + 2 - plot.is_last)
+        squares = np.interp((v - plot.base) / _step(plot), steps, (first + turn * steps) ** 2.0)
+        beyond = np.maximum(v - plot.near, 0.0) if plot.is_last else 0.0
+        ions = v + beyond + _step(plot) * (squares + abs(first)) + plot.base
+    else:
+        ions = 2 * np.maximum(v, plot.near)
+    return np.asarray((system.titrant_concentration * ions / 2 + system.background * system.sample_volume) / whole)
