@@ -1,10 +1,11 @@
-"""Whether the chemistry of a rule can be fitted at all."""
+"""Whether the chemistry of a rule can be fitted at all, and its result be told in its unit."""
 
 from __future__ import annotations
 
 from typing import Any
 
 from analysis.system import System
+from analysis.unit import factor
 
 
 def objections_to_chemistry(system: dict[str, Any]) -> list[str]:
@@ -13,4 +14,13 @@ def objections_to_chemistry(system: dict[str, Any]) -> list[str]:
         System.from_json({**system, "titrant_concentration": 0.1, "sample_volume": 50})
     except ValueError as problem:
         return [f"Chemistry for the model: {problem}"]
+    return []
+
+
+def objections_to_unit(unit: str, *, quantity: str, formula: str) -> list[str]:
+    """A result has a unit of its quantity; an equivalent also mg of the substance it is expressed as per g."""
+    try:
+        factor(quantity, unit, equivalent=formula if quantity == "titrant_equivalent" else None)
+    except ValueError as problem:
+        return [str(problem)]
     return []

@@ -5,13 +5,15 @@ from __future__ import annotations
 from decimal import Decimal
 from typing import Any
 
-from django.db.models import CharField, DecimalField, Model
+from django.db.models import CharField, DecimalField, Model, PositiveSmallIntegerField
 
 from labrecords.rules.number import places_of, plain, shown
 
+LARGEST = 32767  # of a small whole number in the database
+
 
 def objections_to_fit(record: Model) -> list[str]:
-    """Every text, choice and decimal of a record that has no room in its column."""
+    """Every text, choice and number of a record that has no room in its column."""
     found = []
     for field in record._meta.concrete_fields:
         value = getattr(record, field.attname)
@@ -20,6 +22,8 @@ def objections_to_fit(record: Model) -> list[str]:
             found += _objections_to_number(value, name=name, field=field)
         elif isinstance(field, CharField) and isinstance(value, str):
             found += _objections_to_text(value, name=name, field=field)
+        elif isinstance(field, PositiveSmallIntegerField) and isinstance(value, int) and not 0 <= value <= LARGEST:
+            found.append(f"{name} is {value}: a whole number from 0 to {LARGEST} is expected.")
     return found
 
 

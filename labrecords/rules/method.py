@@ -8,7 +8,14 @@ from fractions import Fraction
 
 from labrecords.models import EndpointRule, Method, MethodVersion, User, VersionState
 from labrecords.queries.chemistry import objections_to_chemistry
+from labrecords.rules.fit import objections_to_fit
 from labrecords.rules.number import plain
+from labrecords.rules.recipe import (
+    objections_to_counts,
+    objections_to_indicator,
+    objections_to_result,
+    objections_to_working,
+)
 
 CODE = re.compile(r"[A-Z][A-Z0-9]*(-[A-Z0-9]+)*")
 TAKES = (
@@ -25,6 +32,7 @@ def objections_to_recording_method(*, by: User, code: str, title: str) -> list[s
         found.append(f"Code is {code!r}: capital letters, digits and hyphens, a letter first, 20 at most.")
     if Method.objects.filter(code=code).exists():
         found.append(f"Code {code} is in use. Record a new version of that method, or choose another code.")
+    found += objections_to_fit(Method(title=title))
     if not title.strip():
         found.append("Title is empty: name the test, for example Titratable acidity.")
     return found
@@ -38,8 +46,8 @@ def objections_to_recording_version(version: MethodVersion, *, by: User) -> list
             *found,
             f"{version} is {version.state}; an effective version never changes. Record a new version.",
         ]
-    found += objections_to_ratio(version.ratio)
-    found += _objections_to_endpoint(version)
+    found += objections_to_fit(version) + objections_to_ratio(version.ratio)
+    found += _objections_to_endpoint(version) + objections_to_working(version) + objections_to_result(version)
     if version.titration == "back" and (version.excess_titrant is None or not version.excess_volume):
         found.append("Back titration: name the excess solution and the volume that is pipetted.")
     if version.titration == "blank_difference" and version.blanks_needed < 1:
@@ -80,7 +88,8 @@ def _objections_to_author(by: User) -> list[str]:
 def _objections_to_endpoint(version: MethodVersion) -> list[str]:
     if version.takes_curve:
         return objections_to_curve(version)
-    return [] if version.indicator.strip() else ["Indicator is empty: name it and its colour change."]
+    found = [] if version.indicator.strip() else ["Indicator is empty: name it and its colour change."]
+    return found + objections_to_indicator(version)
 
 
 def objections_to_curve(rule: EndpointRule) -> list[str]:
@@ -99,7 +108,7 @@ def objections_to_curve(rule: EndpointRule) -> list[str]:
         found += objections_to_chemistry(rule.system)
     if not rule.curve_quantity:
         found.append("Curve quantity is empty: say what the curve records.")
-    return found
+    return found + objections_to_counts(rule)
 
 
 def objections_to_temperature_within(value: Decimal) -> list[str]:

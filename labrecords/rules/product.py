@@ -5,9 +5,11 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 from typing import Any
 
-from labrecords.models import Product, Specification, User, VersionState
+from labrecords.models import Product, Specification, SpecificationLimit, User, VersionState
 from labrecords.queries.method import effective_version
+from labrecords.rules.fit import objections_to_fit
 from labrecords.rules.method import CODE
+from labrecords.rules.recipe import MOST_PLACES
 
 
 def objections_to_recording_product(*, by: User, code: str, name: str) -> list[str]:
@@ -17,6 +19,7 @@ def objections_to_recording_product(*, by: User, code: str, name: str) -> list[s
         found.append(f"Code is {code!r}: capital letters, digits and hyphens, a letter first, 20 at most.")
     if Product.objects.filter(code=code).exists():
         found.append(f"Code {code} is in use. Choose another.")
+    found += objections_to_fit(Product(name=name))
     if not name.strip():
         found.append("Name is empty: write the product's name.")
     return found
@@ -43,11 +46,21 @@ def objections_to_limits(rows: Sequence[Mapping[str, Any]]) -> list[str]:
             found.append(f"{method.code} has no limit: give a lower limit, an upper limit or both.")
         if lower is not None and upper is not None and lower >= upper:
             found.append(f"{method.code}: lower limit {lower} is not below upper limit {upper}.")
+        found += [f"{method.code}: {sentence}" for sentence in _objections_to_rounding(row)]
         if row.get("figures") is not None and not 1 <= row["figures"] <= 15:
             found.append(f"{method.code}: significant figures are {row['figures']}; from 1 to 15, or left empty.")
         version = effective_version(method)
         if version is not None and version.unit != row["unit"]:
             found.append(f"{method.code} reports {version.unit}; the limit is in {row['unit']}.")
+    return found
+
+
+def _objections_to_rounding(row: Mapping[str, Any]) -> list[str]:
+    found = objections_to_fit(SpecificationLimit(**row))
+    if not 0 <= row["places"] <= MOST_PLACES:
+        found.append(f"Places is {row['places']}: decimals from 0 to {MOST_PLACES} are expected.")
+    if row.get("guard_factor", 1) < 0:
+        found.append(f"Guard factor is {row['guard_factor']}: a number not below 0.")
     return found
 
 

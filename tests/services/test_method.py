@@ -71,6 +71,7 @@ def test_record_method_has_no_recipe_yet(supervisor: User) -> None:
         ({"code": "T" * 21}, "20 at most"),
         ({"code": "TA"}, "Code TA is in use"),
         ({"title": " "}, "Title is empty: name the test"),
+        ({"title": "t" * 121}, "121 characters: up to 120 are kept"),
     ],
 )
 def test_record_method_refuses(method: Method, supervisor: User, given: dict, sentence: str) -> None:
@@ -114,6 +115,20 @@ def test_record_version_numbers_on_and_is_a_draft(method: Method, supervisor: Us
         ({"sample_density": D("998")}, "Density of the sample is 998 g/cm³: from 0.1 to 25. Is it in kg/m³?"),
         ({"sample_density": D("1")}, "is for weighings; this sample is by volume"),
         ({"loss_u": D("6")}, "u of the loss on drying is 6 %: from 0 to 5"),
+        ({"unit": "furlong"}, "Unit is 'furlong'; a mass concentration is in g/L, mg/L"),
+        ({"quantity": "luck"}, "Quantity is “luck”; expected one of amount_concentration"),
+        ({"quantity": "titrant_equivalent", "unit": "mg KOH/g"}, "Unit is 'mg KOH/g'; a titrant equivalent is in"),
+        ({"policy": "best"}, "Policy is “best”; expected one of concordance, all"),
+        ({"places": 9}, "Places is 9: decimals from 0 to 8"),
+        ({"blanks_needed": 99999}, "Blanks needed is 99999: a whole number from 0 to 32767"),
+        ({"sample_amount": D("1.23456")}, "Sample amount is 1.23456: up to 4 decimals are kept"),
+        ({"sample_amount": D("9999999")}, "Sample amount is 9999999: up to 6 digits before the decimal mark"),
+        ({"sample_by": "mass"}, "Sample unit is mL; a sample by mass is in g"),
+        ({"indicator_bias": D("2")}, "Indicator is 2 mL past equivalence"),
+        ({"indicator_u": D("-0.1")}, "u -0.1 mL; within 1 mL, u not below 0"),
+        ({"titration": "back", "excess_volume": D("-3")}, "Excess volume is -3 mL: a number above 0"),
+        ({"dilutions": [{"flask": "10", "aliquot": "100"}]}, "Dilution 1 takes 100 mL from a flask of 10 mL"),
+        ({"dilutions": [{"flask": "0", "aliquot": "0"}]}, "Dilution 1 takes 0 mL from a flask of 0 mL: above 0"),
     ],
 )
 def test_record_version_refuses(
@@ -132,6 +147,10 @@ def test_record_version_refuses(
         ({"checking_family": "model"}, "Chemistry is empty: the family model needs its analytes"),
         ({"system": ACID | {"kind": "alchemy"}}, "Chemistry for the model:"),
         ({"curve_quantity": ""}, "Curve quantity is empty"),
+        ({"curve_quantity": "colour"}, "Curve quantity is “colour”; expected one of pH, mV"),
+        ({"endpoints_expected": 0}, "Endpoints expected is 0: from 1 to 10"),
+        ({"endpoint_chosen": 2}, "The one that counts is 2, of 1 expected"),
+        ({"initial_volume": D("-5")}, "Volume at the start is -5 mL: above 0"),
     ],
 )
 def test_record_version_by_curve_refuses(

@@ -71,6 +71,7 @@ def test_record_product_has_no_limits_yet(supervisor: User) -> None:
         ({"code": "T" * 21}, "20 at most"),
         ({"code": "TV"}, "Code TV is in use. Choose another."),
         ({"name": " "}, "Name is empty: write the product's name."),
+        ({"name": "n" * 121}, "121 characters: up to 120 are kept."),
     ],
 )
 def test_record_product_refuses(product: Product, supervisor: User, given: dict, sentence: str) -> None:
@@ -120,6 +121,13 @@ def test_record_specification_numbers_on_and_is_a_draft(
         ({"figures": 0}, "TA: significant figures are 0; from 1 to 15, or left empty."),
         ({"figures": 16}, "TA: significant figures are 16"),
         ({"unit": "g/L"}, "TA reports g/100 mL; the limit is in g/L."),
+        ({"places": 9}, "TA: Places is 9: decimals from 0 to 8 are expected."),
+        ({"figures": 99999}, "TA: Figures is 99999: a whole number from 0 to 32767 is expected."),
+        ({"upper": D("1000000")}, "TA: Upper is 1000000: up to 6 digits before the decimal mark are kept."),
+        ({"lower": D("0.1234567")}, "TA: Lower is 0.1234567: up to 6 decimals are kept."),
+        ({"guard_factor": D("-1")}, "TA: Guard factor is -1: a number not below 0."),
+        ({"rule": "luck"}, "TA: Rule is “luck”; expected one of simple, guard."),
+        ({"rounding": "down"}, "TA: Rounding is “down”; expected one of half_up, half_even."),
     ],
 )
 def test_record_specification_refuses(
