@@ -4,56 +4,46 @@ from __future__ import annotations
 
 from datetime import date, datetime
 
-from labrecords.models import Batch, BatchState, Product, Sample, Specification, User
+from django.utils import timezone
+
+from labrecords.models import Batch, BatchState, Sample, Specification, User
 from labrecords.queries.audit import contributor_ids
 from labrecords.queries.batch import RequiredTest, required_tests, runs_of_batch
+from labrecords.rules.control_sample import objections_to_drawing
+from labrecords.rules.fit import objections_to_fit
+from labrecords.rules.identifier import objections_to_identifier
 
 
 def objections_to_recording_batch(
-    number: str,
-    *,
-    by: User,
-    product: Product,
-    specification: Specification | None,
-    made_on: date,
-    today: date,
+    batch: Batch, *, by: User, specification: Specification | None, today: date
 ) -> list[str]:
     """A batch has a number of its own, a day that has come, and a product with effective limits."""
-    found = _objections_to_recorder(by)
-    if not number.strip():
-        found.append("Number is empty: write the batch number as production gave it.")
-    if Batch.objects.filter(number=number).exists():
-        found.append(f"Batch {number} is recorded already. Open it, or correct the number.")
+    found = _objections_to_recorder(by) + objections_to_fit(batch)
+    same = Batch.objects.filter(number__iexact=batch.number)
+    found += objections_to_identifier(batch.number, field="Number", known=same.values_list("number", flat=True))
     if specification is None:
-        found.append(f"{product.name} has no effective specification. Make one effective first.")
-    if made_on > today:
-        found.append(f"Made on is {made_on:%-d %b %Y}, in the future; expected a day up to {today:%-d %b %Y}.")
+        found.append(f"{batch.product.name} has no effective specification. Make one effective first.")
+    if batch.product.superseded_by is not None:
+        found.append(f"{batch.product.name} is superseded. Choose {batch.product.superseded_by.name}.")
+    if batch.made_on > today:
+        found.append(f"Made on is {batch.made_on:%-d %b %Y}, in the future; expected a day up to {today:%-d %b %Y}.")
     return found
 
 
-def objections_to_recording_sample(
-    number: str,
-    *,
-    by: User,
-    batch: Batch | None,
-    has_control: bool,
-    drawn_at: datetime,
-    drawn_by: str,
-    now: datetime,
-) -> list[str]:
+def objections_to_recording_sample(sample: Sample, *, by: User, now: datetime) -> list[str]:
     """A sample has a number of its own, one source, who drew it and when."""
-    found = _objections_to_recorder(by)
-    if not number.strip():
-        found.append("Number is empty: write the number on the sample's label.")
-    if Sample.objects.filter(number=number).exists():
-        found.append(f"Sample {number} is recorded already. Open it, or correct the number.")
-    if (batch is None) == (not has_control):
+    found = _objections_to_recorder(by) + objections_to_fit(sample)
+    same = Sample.objects.filter(number__iexact=sample.number)
+    found += objections_to_identifier(sample.number, field="Number", known=same.values_list("number", flat=True))
+    if (sample.batch is None) == (sample.control_sample is None):
         found.append("A sample comes from a batch or from a control sample: choose one of the two.")
-    if batch is not None and batch.state in (BatchState.RELEASED, BatchState.REJECTED):
-        found.append(f"Batch {batch.number} is {batch.state}. Nothing more is drawn from it.")
-    if drawn_at > now:
-        found.append(f"Drawn at is {drawn_at:%-d %b %Y %H:%M}, in the future; expected a time up to now.")
-    if not drawn_by.strip():
+    if sample.batch is not None and sample.batch.state in (BatchState.RELEASED, BatchState.REJECTED):
+        found.append(f"Batch {sample.batch.number} is {sample.batch.state}. Nothing more is drawn from it.")
+    if sample.control_sample is not None:
+        found += objections_to_drawing(sample.control_sample, today=timezone.localtime(now).date())
+    if sample.drawn_at > now:
+        found.append(f"Drawn at is {sample.drawn_at:%-d %b %Y %H:%M}, in the future; expected a time up to now.")
+    if not sample.drawn_by.strip():
         found.append("Drawn by is empty: name who drew the sample.")
     return found
 

@@ -20,23 +20,22 @@ from labrecords.rules.batch import (
 )  # fmt: skip
 from labrecords.rules.review import objections_to_reason
 from labrecords.services import audit
+from labrecords.services.number import reserve_name
 from labrecords.services.signature import Credentials, sign
 
 
 @transaction.atomic(durable=True)
 def record_batch(*, by: User, number: str, product: Product, made_on: date, size: str = "") -> Batch:
     """Record a batch under the specification of its product that is effective now."""
+    batch = Batch(number=number, product=product, made_on=made_on, size=size)
     specification = effective_specification(product)
+    reserve_name("batch", number)
     with audit.event("batch.record", by=by, subject=number) as event:
-        refuse_if(
-            objections_to_recording_batch(
-                number, by=by, product=product, specification=specification, made_on=made_on,
-                today=timezone.localtime(event.at).date(),
-            )
-        )  # fmt: skip
-        return Batch.objects.create(
-            number=number, product=product, specification=sure_of(specification), made_on=made_on, size=size
-        )
+        today = timezone.localtime(event.at).date()
+        refuse_if(objections_to_recording_batch(batch, by=by, specification=specification, today=today))
+        batch.specification = sure_of(specification)
+        batch.save()
+    return batch
 
 
 @transaction.atomic(durable=True)
@@ -52,17 +51,15 @@ def record_sample(
     is_urgent: bool = False,
 ) -> Sample:
     """Record what was drawn, from a batch or from a control material."""
+    sample = Sample(
+        number=number, batch=batch, control_sample=control_sample, drawn_at=drawn_at, drawn_by=drawn_by,
+        place=place, is_urgent=is_urgent, recorded_by=by,
+    )  # fmt: skip
+    reserve_name("sample", number)
     with audit.event("sample.record", by=by, subject=number) as event:
-        refuse_if(
-            objections_to_recording_sample(
-                number, by=by, batch=batch, has_control=control_sample is not None, drawn_at=drawn_at,
-                drawn_by=drawn_by, now=event.at,
-            )
-        )  # fmt: skip
-        return Sample.objects.create(
-            number=number, batch=batch, control_sample=control_sample, drawn_at=drawn_at, drawn_by=drawn_by,
-            place=place, is_urgent=is_urgent, recorded_by=by,
-        )  # fmt: skip
+        refuse_if(objections_to_recording_sample(sample, by=by, now=event.at))
+        sample.save()
+    return sample
 
 
 @transaction.atomic(durable=True)

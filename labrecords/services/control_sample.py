@@ -13,6 +13,7 @@ from labrecords.models import ControlSample, Method, User
 from labrecords.rules.control_sample import objections_to_recording_control_sample
 from labrecords.rules.review import objections_to_reason
 from labrecords.services import audit
+from labrecords.services.number import reserve_name
 
 
 @transaction.atomic(durable=True)
@@ -28,17 +29,16 @@ def record_control_sample(
     expires_on: date,
 ) -> ControlSample:
     """Record a material with its assigned value and U (k = 2)."""
+    control_sample = ControlSample(
+        code=code, name=name, method=method, assigned_value=assigned_value, assigned_expanded=assigned_expanded,
+        unit=unit, expires_on=expires_on,
+    )  # fmt: skip
+    reserve_name("control sample", code)
     with audit.event("control_sample.record", by=by, subject=code) as event:
-        refuse_if(
-            objections_to_recording_control_sample(
-                code, by=by, name=name, method=method, unit=unit, assigned_expanded=assigned_expanded,
-                expires_on=expires_on, today=timezone.localtime(event.at).date(),
-            )
-        )  # fmt: skip
-        return ControlSample.objects.create(
-            code=code, name=name, method=method, assigned_value=assigned_value,
-            assigned_expanded=assigned_expanded, unit=unit, expires_on=expires_on,
-        )  # fmt: skip
+        today = timezone.localtime(event.at).date()
+        refuse_if(objections_to_recording_control_sample(control_sample, by=by, today=today))
+        control_sample.save()
+    return control_sample
 
 
 @transaction.atomic(durable=True)

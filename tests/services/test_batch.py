@@ -84,8 +84,11 @@ def test_record_batch_takes_the_limits_of_the_day(product: Product, bench: Bench
 @pytest.mark.parametrize(
     ("given", "sentence"),
     [
-        ({"number": " "}, "Number is empty: write the batch number"),
-        ({"number": "TV-2611-04"}, "Batch TV-2611-04 is recorded already"),
+        ({"number": " "}, "Number is empty: write what stands on the label"),
+        ({"number": "tv-2611-04"}, "TV-2611-04 is recorded already"),
+        ({"number": "TV/2611"}, "Number is “TV/2611”: letters, digits, spaces"),
+        ({"number": "T" * 31}, "31 characters: up to 30 are kept"),
+        ({"size": "L" * 41}, "41 characters: up to 40 are kept"),
         ({"made_on": days_ago(-2)}, "in the future; expected a day up to"),
     ],
 )
@@ -110,8 +113,10 @@ def test_record_sample_keeps_what_was_drawn(batch: Batch, bench: Bench) -> None:
 @pytest.mark.parametrize(
     ("given", "sentence"),
     [
-        ({"number": ""}, "Number is empty: write the number on the sample's label"),
-        ({"number": "TV-2611-04-1"}, "Sample TV-2611-04-1 is recorded already"),
+        ({"number": ""}, "Number is empty: write what stands on the label"),
+        ({"number": "tv-2611-04-1"}, "TV-2611-04-1 is recorded already"),
+        ({"number": "S?1"}, "Number is “S?1”"),
+        ({"place": "p" * 121}, "121 characters: up to 120 are kept"),
         ({"drawn_at": timezone.now() + timedelta(days=1)}, "in the future; expected a time up to now"),
         ({"drawn_by": " "}, "Drawn by is empty"),
     ],

@@ -7,8 +7,10 @@ from typing import Any
 
 import pytest
 from django.db import DatabaseError
+from django.utils import timezone
 
-from labrecords.models import ControlSample, MethodVersion, User
+from labrecords.models import ControlSample, MethodVersion, Sample, User
+from labrecords.services.batch import record_sample
 from labrecords.services.control_sample import record_control_sample, withdraw_control_sample
 from tests.factories.bench import Bench, some_version
 from tests.factories.register import days_ago
@@ -47,8 +49,14 @@ def test_record_control_sample_keeps_its_value(version: MethodVersion, superviso
 @pytest.mark.parametrize(
     ("given", "sentence"),
     [
-        ({"code": " "}, "Code is ' ': write one that is not in use."),
-        ({"code": "CS-B"}, "Code is 'CS-B': write one that is not in use."),
+        ({"code": " "}, "Code is empty: write what stands on the label."),
+        ({"code": "cs-b"}, "Code: CS-B is recorded already. Open it, or choose another."),
+        ({"code": "CS/B"}, "Code is “CS/B”: letters, digits, spaces"),
+        ({"code": "C" * 21}, "21 characters: up to 20 are kept."),
+        ({"name": "n" * 121}, "121 characters: up to 120 are kept."),
+        ({"assigned_value": D("0.1234567")}, "Assigned value is 0.1234567: up to 6 decimals are kept."),
+        ({"assigned_value": D("-1")}, "Assigned value is -1: a number not below 0."),
+        ({"assigned_expanded": D("0.0000001")}, "Assigned expanded is 0.0000001: up to 6 decimals are kept."),
         ({"name": " "}, "Name is empty: write what the material is."),
         ({"unit": "g/L"}, "TA reports g/100 mL; the assigned value is in g/L."),
         ({"assigned_expanded": D("0")}, "Uncertainty is 0: a number above 0."),
@@ -65,6 +73,23 @@ def test_record_control_sample_is_no_work_of_an_analyst(version: MethodVersion, 
     assert "Ines Castell is not a supervisor. A supervisor records control samples." in refusal_of(
         record, version, analyst
     )
+
+
+def draw(control: ControlSample, by: User) -> Sample:
+    return record_sample(
+        by=by, number="CS-B-1", drawn_at=timezone.now(), drawn_by="the bench", control_sample=control
+    )  # fmt: skip
+
+
+def test_nothing_is_drawn_from_what_is_withdrawn_or_lapsed(
+    control: ControlSample, supervisor: User, analyst: User, as_enemy: Any
+) -> None:
+    as_enemy("UPDATE labrecords_controlsample SET expires_on = current_date - 2")
+    control.refresh_from_db()
+    assert "Control sample CS-B lapsed on" in refusal_of(draw, control, analyst)
+    withdraw_control_sample(control, by=supervisor, reason=WHY)
+    control.refresh_from_db()
+    assert f"Control sample CS-B is withdrawn: {WHY}" in refusal_of(draw, control, analyst)
 
 
 def test_withdraw_control_sample_says_why(control: ControlSample, supervisor: User) -> None:
