@@ -17,12 +17,14 @@ from labrecords.rules.method import (
     objections_to_recording_version,
 )  # fmt: skip
 from labrecords.services import audit
+from labrecords.services.number import reserve_name
 from labrecords.services.signature import Credentials, sign
 
 
 @transaction.atomic(durable=True)
 def record_method(*, by: User, code: str, title: str) -> Method:
     """Record a test; its recipe comes with its first version."""
+    reserve_name("method", code)
     refuse_if(objections_to_recording_method(by=by, code=code, title=title))
     with audit.event("method.record", by=by, subject=code):
         return Method.objects.create(code=code, title=title)

@@ -18,12 +18,14 @@ from labrecords.rules.product import (
     objections_to_specifying,
 )  # fmt: skip
 from labrecords.services import audit
+from labrecords.services.number import reserve_name
 from labrecords.services.signature import Credentials, sign
 
 
 @transaction.atomic(durable=True)
 def record_product(*, by: User, code: str, name: str) -> Product:
     """Record a product."""
+    reserve_name("product", code)
     refuse_if(objections_to_recording_product(by=by, code=code, name=name))
     with audit.event("product.record", by=by, subject=code):
         return Product.objects.create(code=code, name=name)
@@ -33,6 +35,7 @@ def record_product(*, by: User, code: str, name: str) -> Product:
 def supersede_product(product: Product, *, by: User, code: str, name: str, reason: str) -> Product:
     """Replace a product by another; the old one stays with its batches."""
     product = Product.objects.select_for_update().get(pk=product.pk)
+    reserve_name("product", code)
     refuse_if(
         [
             *objections_to_recording_product(by=by, code=code, name=name),

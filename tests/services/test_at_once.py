@@ -10,12 +10,30 @@ import pytest
 from django.db import connection
 
 from labrecords.errors import Refused
-from labrecords.models import AuditEvent, Instrument, ReferenceStandard, Substance, Titrant, TitrantLot, User
+from labrecords.models import (
+    AuditEvent,
+    Batch,
+    ControlSample,
+    Instrument,
+    Method,
+    Product,
+    ReferenceStandard,
+    Sample,
+    Substance,
+    Titrant,
+    TitrantLot,
+    User,
+)  # fmt: skip
+from labrecords.services.batch import record_batch
+from labrecords.services.method import record_method
+from labrecords.services.product import record_product
 from labrecords.services.standard import issue_standard, withdraw_standard
 from labrecords.services.user import record_user
-from tests.factories.bench import Bench
+from tests.factories.bench import Bench, some_sample, some_version
 from tests.factories.people import PASSWORD, signed_by
+from tests.factories.products import some_product
 from tests.factories.register import (
+    days_ago,
     phthalate,
     some_instrument,
     some_lot,
@@ -90,3 +108,18 @@ def test_withdraw_standard_at_once_is_signed_once(bench: Bench) -> None:
     outcomes = at_once(lambda: withdraw_standard(bench.standard, by=by, credentials=signed_by(by), reason="recalled"))
     assert outcomes.count("done") == 1
     assert outcomes.count("KHP-26-01 is withdrawn already.") == TIMES - 1
+
+
+def test_record_method_and_product_at_once_make_one(supervisor: User) -> None:
+    assert at_once(lambda: record_method(by=supervisor, code="TA", title="Titratable acidity")).count("done") == 1
+    assert at_once(lambda: record_product(by=supervisor, code="TV", name="table vinegar")).count("done") == 1
+    assert (Method.objects.count(), Product.objects.count()) == (1, 1)
+
+
+def test_record_batch_and_control_sample_at_once_make_one(bench: Bench) -> None:
+    version = some_version(bench)
+    product = some_product(bench, version)
+    batch = {"by": bench.analyst, "number": "TV-2611-04", "product": product, "made_on": days_ago(1)}
+    assert at_once(lambda: record_batch(**batch)).count("done") == 1
+    assert at_once(lambda: some_sample(bench, version)).count("done") == 1
+    assert (Batch.objects.count(), Sample.objects.count(), ControlSample.objects.count()) == (1, 1, 1)
