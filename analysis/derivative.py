@@ -74,7 +74,7 @@ def inverse_square_parabola(curve: Curve, *, near: float) -> tuple[float, float]
     return float(middle[peak] - b / (2 * a)) if inside else float(middle[peak]), u
 
 
-def local_polynomial(curve: Curve, *, near: float, points: int = 7) -> tuple[float, float]:
+def local_polynomial(curve: Curve, *, near: float, points: int = 6) -> tuple[float, float]:
     """Inflection of a cubic through the points beside the steepest place, as many as stand out of the scatter.
 
     For dense grids, where the difference quotient is mostly scatter.
@@ -103,7 +103,8 @@ def _beside(curve: Curve, peak: int, *, near: float, points: int) -> tuple[int, 
 
 
 def _peak(middle: FloatArray, size: FloatArray, *, near: float) -> int:
-    window = np.abs(middle - near) <= max(3 * float(np.median(np.diff(middle))), 0.02 * float(middle[-1]))
+    reach = max(3 * float(np.median(np.diff(middle))), 0.02 * float(middle[-1] - middle[0]))
+    window = np.abs(middle - near) <= reach
     return int(np.where(window, size, -1.0).argmax())
 
 

@@ -83,7 +83,7 @@ def test_every_family_states_an_uncertainty_that_covers_a_weak_acid_in_scatter(f
     assert np.quantile(away, 0.95) < 1.96
 
 
-def test_local_polynomial_takes_more_points_where_seven_do_not_stand_out() -> None:
+def test_local_polynomial_takes_more_points_where_six_do_not_stand_out() -> None:
     found = []
     for seed in range(40):
         curve = recorded(WEAK, 1.0, noise=0.0085, generator=np.random.default_rng(seed))
