@@ -6,11 +6,20 @@ from typing import Any
 
 from django import forms
 
-from labrecords.models import ControlSample, Titrant
+from labrecords.errors import Refused
+from labrecords.models import ControlSample, Instrument, InstrumentKind, Method, Titrant
+from labrecords.rules.number import parse_number
+
+MEMORY = {
+    "ewma_weight": "Weight of the average, lambda",
+    "ewma_width": "Width of its limits, L",
+    "cusum_reference": "Reference value, k",
+    "cusum_interval": "Decision interval, h",
+}
 
 
 class ChartForm(forms.Form):
-    """A chart of a control sample or of a titrant."""
+    """A chart of a control sample, a titrant, a method's blank or an electrode."""
 
     code = forms.CharField(max_length=20, label="Code")
     title = forms.CharField(max_length=120, label="Title")
@@ -21,6 +30,14 @@ class ChartForm(forms.Form):
     )
     titrant = forms.ModelChoiceField(
         queryset=Titrant.objects.filter(superseded_by=None), label="or of the titrant", required=False
+    )
+    method = forms.ModelChoiceField(
+        queryset=Method.objects.all(), label="or of the blank of the method", required=False
+    )
+    instrument = forms.ModelChoiceField(
+        queryset=Instrument.objects.filter(kind=InstrumentKind.ELECTRODE, withdrawn_at=None),
+        label="or of the slope of the electrode",
+        required=False,
     )
 
 
@@ -36,7 +53,24 @@ def typed_limits(data: Any) -> dict[str, Any]:
         "excluded": excluded,
         "rules": data.getlist("rules"),
         "reason": data.get("limits_reason", "").strip(),
+        "also": data.getlist("also"),
     }
+
+
+def typed_memory(data: Any) -> dict[str, float]:
+    """Lambda, L, k and h as typed; Refused naming what is no number, nothing for what is left empty."""
+    found, reasons = {}, []
+    for field, name in MEMORY.items():
+        text = data.get(field, "").strip()
+        if not text:
+            continue
+        try:
+            found[field] = float(parse_number(text, field=name))
+        except ValueError as problem:
+            reasons.append(str(problem))
+    if reasons:
+        raise Refused(reasons)
+    return found
 
 
 def _key(text: str) -> int:

@@ -3,21 +3,36 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
-from datetime import datetime
+from dataclasses import dataclass, replace
+from datetime import date, datetime, time
 from itertools import groupby
 from typing import Any
 
-from django.db.models import F, QuerySet
+from django.db.models import F, FloatField, QuerySet
+from django.db.models.fields.json import KeyTextTransform
+from django.db.models.functions import Cast
+from django.utils import timezone
 
 from analysis.control import IndividualsLimits, individuals_limits
+from analysis.ewma_cusum import cusum, ewma
 from analysis.run_rules import OTHER_RULES, RULES, signals
-from labrecords.models import Calculation, ControlChart, ControlLimits, RecordState, VersionState
+from labrecords import writing
+from labrecords.models import (
+    Calculation,
+    ControlChart,
+    ControlLimits,
+    InstrumentCalibration,
+    RecordState,
+    VersionState,
+)
+
+PAGES = {"run": "run-sheet", "standardization": "standardization-sheet", "instrument": "instrument-detail"}
+EWMA, CUSUM = "weighted average beyond its limits", "cumulative sum beyond its interval"
 
 
 @dataclass(frozen=True, slots=True)
 class ChartPoint:
-    """One value of a chart with the record it comes from."""
+    """One value of a chart with the record it comes from; its key is that of the calculation, or of a calibration."""
 
     calculation_id: int
     value: float
@@ -26,6 +41,11 @@ class ChartPoint:
     number: str
     noun: str
     label: str
+
+    @property
+    def page(self) -> str:
+        """The name of the page of its record."""
+        return PAGES[self.noun]
 
 
 @dataclass(frozen=True, slots=True)
@@ -38,7 +58,15 @@ class ChartSignal:
 
 def charts() -> QuerySet[ControlChart]:
     """All charts with what they are of."""
-    return ControlChart.objects.select_related("control_sample__method", "titrant").prefetch_related("limits")
+    of = ControlChart.objects.select_related("control_sample__method", "titrant", "method", "instrument")
+    return of.prefetch_related("limits")
+
+
+def unit_of(chart: ControlChart) -> str:
+    """The unit of a chart's points."""
+    if chart.control_sample is not None:
+        return chart.control_sample.unit
+    return "mol/L" if chart.titrant_id else "mL" if chart.method_id else "%"
 
 
 def effective_limits(chart: ControlChart) -> ControlLimits | None:
@@ -52,7 +80,12 @@ def versions_of(chart: ControlChart) -> list[ControlLimits]:
 
 
 def points_of(chart: ControlChart) -> list[ChartPoint]:
-    """The approved values of a chart in the order they were begun: control runs, or a titrant lot by lot."""
+    """The approved values of a chart in the order they were begun.
+
+    Control runs; a titrant lot by lot; the blanks of a method's runs; the slope of an electrode at each calibration.
+    """
+    if chart.instrument_id:
+        return _slopes(chart)
     rows = Calculation.objects.filter(value__isnull=False).defer("inputs", "outputs")
     if chart.control_sample_id:
         of_sample = rows.filter(
@@ -62,6 +95,14 @@ def points_of(chart: ControlChart) -> list[ChartPoint]:
         )
         ordered = of_sample.select_related("run__sample").order_by("run__started_at", "run_id")
         return [_run_point(row) for row in ordered]
+    if chart.method_id:
+        blank = Cast(KeyTextTransform("blank", "outputs"), FloatField())
+        of_method = rows.annotate(blank=blank).filter(
+            run__method_version__method_id=chart.method_id, run__state=RecordState.APPROVED,
+            run__calculation_id=F("pk"), blank__isnull=False,
+        )  # fmt: skip
+        begun_runs = of_method.select_related("run__sample").order_by("run__started_at", "run_id")
+        return [replace(_run_point(row), value=row.blank, expanded_uncertainty=None) for row in begun_runs]
     of_titrant = rows.filter(
         standardization__lot__titrant=chart.titrant,
         standardization__state=RecordState.APPROVED,
@@ -107,7 +148,25 @@ def signals_on(points: Sequence[ChartPoint], versions: Sequence[ControlLimits]) 
 def _broken(part: Sequence[ChartPoint], limits: ControlLimits) -> list[tuple[int, str]]:
     values = [point.value for point in part]
     broken = signals(values, centre=limits.centre, sigma=limits.sigma, rules=limits.rules)
+    broken |= remembered(values, limits)
     return [(place, rule) for rule, places in broken.items() for place in places]
+
+
+def remembered(values: Sequence[float], limits: ControlLimits) -> dict[str, list[int]]:
+    """The signals of the charts with memory that the limits use beside the run rules."""
+    found: dict[str, list[int]] = {}
+    if "ewma" in limits.also and values:
+        average = ewma(
+            values, target=limits.centre, sigma=limits.sigma, weight=limits.ewma_weight, width=limits.ewma_width
+        )
+        found[EWMA] = list(average.signals)
+    if "cusum" in limits.also and values:
+        sums = cusum(
+            values, target=limits.centre, sigma=limits.sigma, reference=limits.cusum_reference,
+            interval=limits.cusum_interval,
+        )  # fmt: skip
+        found[CUSUM] = list(sums.signals)
+    return found
 
 
 def _limits_at(moment: datetime, versions: Sequence[ControlLimits]) -> ControlLimits | None:
@@ -132,8 +191,29 @@ def limits_as_signed(limits: ControlLimits) -> dict[str, Any]:
         "baseline": limits.baseline,
         "excluded": limits.excluded,
         "rules": limits.rules,
+        "also": limits.also,
+        "ewma": [limits.ewma_weight, limits.ewma_width],
+        "cusum": [limits.cusum_reference, limits.cusum_interval],
         "reason": limits.reason,
     }
+
+
+def _slopes(chart: ControlChart) -> list[ChartPoint]:
+    """The slope of an electrode at each calibration that was not withdrawn."""
+    found = InstrumentCalibration.objects.filter(
+        instrument=chart.instrument, slope_percent__isnull=False, withdrawn_at__isnull=True
+    ).select_related("instrument")
+    return [
+        ChartPoint(
+            row.pk, float(row.slope_percent or 0), None, _noon(row.calibrated_on), row.instrument.identifier,
+            "instrument", writing.day(row.calibrated_on),
+        )
+        for row in found.order_by("calibrated_on", "id")
+    ]  # fmt: skip
+
+
+def _noon(day: date) -> datetime:
+    return timezone.make_aware(datetime.combine(day, time(12)))
 
 
 def _run_point(row: Calculation) -> ChartPoint:

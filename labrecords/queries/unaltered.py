@@ -35,6 +35,10 @@ ADDED_LATER: dict[str, dict[str, str | None]] = {
         "temperature_within": "0.0", "loss_u": "0.000", "parts": "[]", "drift_u": None,
     },
     "labrecords_replicate": {"first_end": None, "drift": None, "minutes": None},
+    "labrecords_controlchart": {"method_id": None, "instrument_id": None},
+    "labrecords_controllimits": {
+        "also": "[]", "ewma_weight": "0.2", "ewma_width": "2.962", "cusum_reference": "0.5", "cusum_interval": "5",
+    },
     "labrecords_specificationlimit": {"figures": None},
 }  # fmt: skip
 HASHED = "ARRAY['content', 'inputs', 'outputs', 'volumes', 'readings', 'password']"

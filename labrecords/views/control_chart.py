@@ -7,28 +7,27 @@ from typing import Any
 
 from django.http import HttpRequest, HttpResponse
 from django.shortcuts import get_object_or_404, redirect, render
-from django.urls import reverse
 from django.views.decorators.http import require_GET, require_http_methods
 
 from labrecords.errors import Refused
-from labrecords.figures.control_chart import control_chart_figure
-from labrecords.forms.control_chart import ChartForm, typed_limits
+from labrecords.forms.control_chart import MEMORY, ChartForm, typed_limits, typed_memory
 from labrecords.models import ControlChart, ControlLimits
 from labrecords.queries.capability import FEWEST, fit_of_titrant, fits_of_products
+from labrecords.queries.chart_kinds import KINDS, RunLengths, lengths_of_rules, run_lengths
 from labrecords.queries.control_chart import (
     ChartPoint,
-    ChartSignal,
     charts,
     effective_limits,
     known_rules,
-    limits_at_points,
     points_of,
     signals_on,
+    unit_of,
     versions_of,
 )
 from labrecords.queries.history import sentences_about
 from labrecords.services import control_chart as service
 from labrecords.views.access import for_roles, signed_in
+from labrecords.views.chart_drawing import SPREADS, drawings
 from labrecords.views.recording import recorded, typed
 from labrecords.views.sheet import typed_credentials
 
@@ -48,9 +47,16 @@ def detail(request: HttpRequest, code: str) -> HttpResponse:
     """One chart with its limits, its signals, and every point."""
     chart = get_object_or_404(charts(), code=code)
     shown = _read(chart)
-    figure = _figure(chart, shown["points"], shown["signals"]) if shown["points"] else None
+    kind, spread = request.GET.get("as", "individuals"), request.GET.get("spread", "range")
+    kind, spread = kind if kind in KINDS else "individuals", spread if spread in SPREADS else "range"
+    limits = shown["limits"]
     context = {
-        "figure": figure,
+        "kind": kind,
+        "kinds": {name: words for name, words in KINDS.items() if name != "means" or chart.control_sample_id},
+        "spread": spread,
+        "spreads": SPREADS,
+        "drawings": drawings(chart, shown, kind=kind, spread=spread),
+        "run_lengths": _lengths(run_lengths(limits, kind)) if limits and kind != "means" else None,
         "signals": shown["signals"][::-1],
         "fit": fit_of_titrant(chart, shown["points"]),
         "fewest": FEWEST,
@@ -90,16 +96,21 @@ def set_limits(request: HttpRequest, code: str) -> HttpResponse:
     if request.method == "POST":
         try:
             credentials, _ = typed_credentials(request.POST)
-            service.set_limits(chart, by=request.user, credentials=credentials, **chosen)
+            memory = typed_memory(request.POST)
+            service.set_limits(chart, by=request.user, credentials=credentials, memory=memory, **chosen)
             return redirect("control_chart-detail", code)
         except Refused as refusal:
             refused = refusal.reasons
     shown = _read(chart)
     if request.method == "GET":
         every = [point.calculation_id for point in shown["points"]]
-        chosen |= {"baseline": every, "rules": known_rules()[:USUAL_RULES]}
+        last = shown["limits"]
+        rules, also = (last.rules, last.also) if last else (known_rules()[:USUAL_RULES], [])
+        chosen |= {"baseline": every, "rules": rules, "also": also}
     context = shown | {"rows": _choices(shown["points"], chosen), "known_rules": known_rules()}
-    context |= {"chosen": chosen, "refused": refused}
+    context |= {"chosen": chosen, "refused": refused, "memory": _memory(request.POST, shown["limits"])}
+    ticked = tuple(rule for rule in chosen["rules"] if rule in known_rules())
+    context["run_lengths"] = _lengths(lengths_of_rules(ticked))
     return render(request, "control_chart/set_limits.html", context, status=409 if refused else 200)
 
 
@@ -126,39 +137,23 @@ def _read(chart: ControlChart) -> dict[str, Any]:
         "lower": limits.centre - 3 * limits.sigma if limits else None,
         "upper": limits.centre + 3 * limits.sigma if limits else None,
         "signals": signals_on(points, versions),
-        "unit": chart.control_sample.unit if chart.control_sample else "mol/L",
+        "unit": unit_of(chart),
     }
 
 
-def _figure(chart: ControlChart, points: Sequence[ChartPoint], signals: Sequence[ChartSignal]) -> Any:
-    rules: dict[int, Any] = {}
-    for signal in signals:
-        rules.setdefault(signal.point.calculation_id, []).append(signal.rule)
-    held = limits_at_points(points, versions_of(chart))
-    return control_chart_figure(
-        [
-            _point(point, rules.get(point.calculation_id, []), limits)
-            for point, limits in zip(points, held, strict=True)
-        ],
-        limits=_lines(held) or {"centre": sum(point.value for point in points) / len(points)},
-        title=f"Result, {chart.control_sample.unit}" if chart.control_sample else "Concentration, mol/L",
-        digits=5 if chart.titrant_id else 3,
-    )
+def _lengths(found: RunLengths) -> dict[str, Any]:
+    """Shift and average run length side by side."""
+    return {"rows": [*zip(found.shifts, found.lengths, strict=True)], "left_out": found.left_out}
 
 
-def _lines(held: Sequence[ControlLimits | None]) -> dict[str, Any]:
-    """The limits at each point; one number where they never changed."""
-    known = [limits for limits in held if limits is not None]
-    if not known:
-        return {}
-    of = {"centre": 0, "lower": -3, "upper": 3, "warn_lower": -2, "warn_upper": 2}
-    stepped = {name: [item.centre + times * item.sigma for item in known] for name, times in of.items()}
-    if len(set(known)) == 1:
-        return {name: values[0] for name, values in stepped.items()}
-    return stepped
-
-
-def _point(point: ChartPoint, rules: Sequence[str], limits: ControlLimits | None) -> dict[str, Any]:
-    far = abs(point.value - limits.centre) > 3 * limits.sigma if limits else False
-    url = reverse(f"{point.noun}-sheet", args=[point.number])
-    return {"label": point.number, "value": point.value, "signals": rules, "out": far, "url": url}
+def _memory(data: Any, limits: ControlLimits | None) -> list[dict[str, Any]]:
+    """The settings of the charts with memory: as typed, as in force, or as usual."""
+    usual = {name: ControlLimits._meta.get_field(name).default for name in MEMORY}
+    return [
+        {
+            "name": name,
+            "label": label,
+            "value": data.get(name, f"{getattr(limits, name) if limits else usual[name]:g}"),
+        }
+        for name, label in MEMORY.items()
+    ]

@@ -39,7 +39,7 @@ def test_record_chart_is_one_event(bench: Bench) -> None:
         ({"code": "a/b"}, "letters, digits, spaces, dots"),
         ({"code": "record"}, "a word that the site uses itself"),
         ({"title": " "}, "Title is empty"),
-        ({"titrant": None}, "choose one of the two"),
+        ({"titrant": None}, "electrode's slope: choose one"),
     ],
 )
 def test_record_chart_refuses(bench: Bench, given: dict[str, Any], sentence: str) -> None:
