@@ -8,6 +8,7 @@ Gran, Analyst 77 (1952) 661-671.
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from dataclasses import replace
 
 import numpy as np
@@ -16,7 +17,7 @@ import numpy.typing as npt
 from analysis.activity import nernst
 from analysis.curve import Curve
 from analysis.detection import endpoints_near
-from analysis.equivalence import Step, equivalence_steps
+from analysis.equivalence import equivalence_steps
 from analysis.gran_acid_base import LEAST, Plot, Side, sides_of
 from analysis.line import weighted_line
 from analysis.noise import noise_of
@@ -26,10 +27,23 @@ FloatArray = npt.NDArray[np.float64]
 MOST_DECADES = 18  # as wide as pH
 RELATIVE_SD = 0.01  # of a point of a line: 0.25 mV; where they scatter more, that counts
 LEAN, STRETCH, APART = 0.04, 1.015, 0.04  # what no slope of a line tells: pH of the free ions, electrode, pKa
+BEYOND_LAST = 0.86  # steps; of these the line after uses seven tenths
+
+
+def gran_endpoints(curve: Curve, *, system: System, jumps: Sequence[float]) -> tuple[tuple[float, float], ...]:
+    """``gran`` at each of the jumps that were found on a curve [mL], where they are those of the system.
+
+    Where another number was found, the last of them alone is the last of the system.
+    """
+    expected = [place for place, step in enumerate(equivalence_steps(system)) if step.is_jump]
+    if len(jumps) != len(expected):
+        return (gran(curve, system=system, near=jumps[-1], jumps=jumps),)
+    pairs = zip(jumps, expected, strict=True)
+    return tuple(gran(curve, system=system, near=near, step=place, jumps=jumps) for near, place in pairs)
 
 
 def gran(
-    curve: Curve, *, system: System, near: float, step: int | None = None, after: float | None = None
+    curve: Curve, *, system: System, near: float, step: int | None = None, jumps: Sequence[float] | None = None
 ) -> tuple[float, float]:
     """Equivalence volume [mL] from the lines on both sides, weighted by their variances, and standard uncertainty.
 
@@ -41,8 +55,8 @@ def gran(
         About where the endpoint is [mL].
     step : int, optional
         Which of ``equivalence_steps(system)`` it is, from 0; the last one with a jump otherwise.
-    after : float, optional
-        The endpoint before it [mL], where there are several analytes; found on the curve otherwise.
+    jumps : sequence of float, optional
+        All endpoints of the curve [mL], needed where there are several analytes; found on the curve otherwise.
 
     Raises
     ------
@@ -52,15 +66,33 @@ def gran(
     """
     if not 0 < near < np.inf:
         raise ValueError(f"The endpoint is sought near {near:g} mL; more than 0 mL is expected.")
+    place = _place(system, step)
+    if len(system.analytes) == 1:
+        jumps = [near]
+    elif jumps is None:
+        jumps = endpoints_near(curve, noise=noise_of(curve))
     if system.kind == "acid_base":
-        volume, u = _acid_base(curve, system=system, near=near, step=step, after=after)
+        volume, u = _acid_base(curve, system=system, place=place, near=near, jumps=jumps)
     else:
-        volume, u = _combined(_other(curve, system, near=near, after=after))
+        volume, u = _combined(_other(curve, system=system, place=place, near=near, jumps=jumps))
     if not curve.volume[0] <= volume <= curve.volume[-1]:
         raise ValueError(
             f"Gran's lines end at {volume:g} mL, outside the curve ({curve.volume[0]:g} to {curve.volume[-1]:g} mL)."
         )
     return volume, u
+
+
+def _place(system: System, step: int | None) -> int:
+    steps = equivalence_steps(system)
+    if step is None:
+        return max((k for k, each in enumerate(steps) if each.is_jump), default=len(steps) - 1)
+    if not 0 <= step < len(steps):
+        raise ValueError(f"Step is {step}; 0 to {len(steps) - 1} is expected.")
+    if not steps[step].is_jump:
+        raise ValueError(
+            f"The curve does not jump at step {steps[step].proton} of {steps[step].analyte}; Gran's lines need a jump."
+        )
+    return step
 
 
 def _combined(sides: list[Side]) -> Side:
@@ -72,13 +104,13 @@ def _combined(sides: list[Side]) -> Side:
     return volume, max(u, abs(sides[0][0] - sides[-1][0]) / 2)
 
 
-def _acid_base(curve: Curve, *, system: System, near: float, step: int | None, after: float | None) -> Side:
-    plot = _plot(curve, system=system, near=near, step=step, after=after)
+def _acid_base(curve: Curve, *, system: System, place: int, near: float, jumps: Sequence[float]) -> Side:
+    plot = _plot(curve, system=system, place=place, near=near, jumps=jumps)
     volume, u = _combined(sides_of(plot))
     for _ in range(2):  # with a better idea of where the step ends
-        if not plot.base < volume <= curve.volume[-1] or abs(volume - plot.near) < u:
+        if not plot.begin < volume <= curve.volume[-1] or abs(volume - plot.near) < u:
             break
-        plot = replace(plot, near=volume)
+        plot = _plot(curve, system=system, place=place, near=volume, jumps=jumps)
         volume, u = _combined(sides_of(plot))
     unknown = (replace(plot, lean=LEAN), replace(plot, stretch=STRETCH), replace(plot, apart=APART))
     varied = [sides_of(changed) for changed in unknown]
@@ -86,53 +118,51 @@ def _acid_base(curve: Curve, *, system: System, near: float, step: int | None, a
     return volume, math.hypot(u, *away)
 
 
-def _plot(curve: Curve, *, system: System, near: float, step: int | None, after: float | None) -> Plot:
+def _plot(curve: Curve, *, system: System, place: int, near: float, jumps: Sequence[float]) -> Plot:
     steps = equivalence_steps(system)
-    place = _last_jump(steps) if step is None else step
-    if not 0 <= place < len(steps):
-        raise ValueError(f"Step is {place}; 0 to {len(steps) - 1} is expected.")
-    chosen, is_last = steps[place], place + 1 == len(steps)
-    if any(later.analyte != chosen.analyte for later in steps[place + 1 :]):
-        raise ValueError("Gran's lines of several acids or bases are drawn for the last endpoint only.")
-    if place > 0 and steps[place - 1].analyte != chosen.analyte and not steps[place - 1].is_jump:
-        raise ValueError(
-            f"{steps[place - 1].analyte.capitalize()} and {chosen.analyte} are titrated together; Gran's lines need "
-            "one of them alone."
-        )
-    analyte = next(item for item in system.analytes if item.name == chosen.analyte)
-    alone, protons = len(system.analytes) == 1, chosen.proton
-    begin = 0.0 if alone else _begin(curve, system, near=near, after=after)
-    base = 0.0 if alone else max(near - protons * (near - begin), 0.0)
+    one = _equivalents(system, place=place, near=near, jumps=jumps)
+    sizes = {item.name: size for item, size in zip(system.analytes, one, strict=True)}
+    is_last = place + 1 == len(steps)
+    size = sizes[steps[place].analyte]
+    beyond = near + (BEYOND_LAST * size if is_last else sizes[steps[place + 1].analyte])
     scatter = noise_of(curve) / (1.0 if curve.quantity == "pH" else nernst(system.temperature))
-    return Plot(curve, system, analyte, protons, is_last, near, base, scatter)
+    return Plot(curve, system, steps[place], is_last, near, near - size, beyond, one, scatter)
 
 
-def _last_jump(steps: tuple[Step, ...]) -> int:
-    return max((k for k, step in enumerate(steps) if step.is_jump), default=len(steps) - 1)
-
-
-def _begin(curve: Curve, system: System, *, near: float, after: float | None) -> float:
-    """Where the analyte of this endpoint begins to be titrated [mL]: the endpoint before it, or the first drop."""
-    if after is not None:
-        if not 0 <= after < near:
-            raise ValueError(f"The endpoint before is at {after:g} mL; 0 to {near:g} mL is expected.")
-        return after
+def _equivalents(system: System, *, place: int, near: float, jumps: Sequence[float]) -> tuple[float, ...]:
+    """One proton of each analyte [mL of titrant], from where the jumps are."""
+    steps = equivalence_steps(system)
     if len(system.analytes) == 1:
-        return 0.0
-    return max((jump for jump in endpoints_near(curve, noise=noise_of(curve)) if jump < 0.9 * near), default=0.0)
+        return (near / steps[place].share[0],)
+    expected = [k for k, step in enumerate(steps) if step.is_jump or k == place]
+    if len(jumps) > len(expected):
+        raise ValueError(f"{len(jumps)} endpoints are found and the chemistry has {len(expected)}.")
+    at = [near if k == place else jump for k, jump in zip(expected, jumps, strict=False)]
+    shares = np.array([steps[k].share for k in expected[: len(at)]])
+    if np.linalg.matrix_rank(shares) < len(system.analytes):
+        names = " and ".join(item.name for item in system.analytes)
+        raise ValueError(f"{names[0].upper()}{names[1:]} are titrated together; Gran's lines need one of them alone.")
+    found = np.linalg.lstsq(shares, np.array(at), rcond=None)[0]
+    if found.min() <= 0:
+        raise ValueError(f"The endpoints at {', '.join(f'{v:g}' for v in at)} mL are not those of the chemistry.")
+    return tuple(map(float, found))
 
 
-def _other(curve: Curve, system: System, *, near: float, after: float | None) -> list[Side]:
-    begin = _begin(curve, system, near=near, after=after)
-    sides = (_before(curve, system, near, begin), _after(curve, system, near, begin))
+def _other(curve: Curve, *, system: System, place: int, near: float, jumps: Sequence[float]) -> list[Side]:
+    """The line of the analyte that is left and, after the last endpoint, that of the titrant in excess."""
+    begin = max((jump for jump in jumps if jump < 0.9 * near), default=0.0)
+    name = equivalence_steps(system)[place].analyte
+    electrons = next(item.electrons for item in system.analytes if item.name == name) if system.kind == "redox" else 1
+    sides = [_before(curve, system, near, begin, electrons=electrons)]
+    if place + 1 == len(equivalence_steps(system)):
+        sides.append(_after(curve, system, near, begin))
     return [side for side in sides if side is not None]
 
 
-def _before(curve: Curve, system: System, near: float, begin: float) -> Side | None:
+def _before(curve: Curve, system: System, near: float, begin: float, *, electrons: int) -> Side | None:
     """The line of the analyte that is left: as such, or beside its product (redox)."""
     use = (curve.volume > begin + 0.25 * (near - begin)) & (curve.volume < begin + 0.93 * (near - begin))
     v = curve.volume[use]
-    electrons = system.analytes[-1].electrons if system.kind == "redox" else 1
     left = _grown(curve, system, use, sign=_sign_of_analyte(system) * electrons)
     if left is None:
         return None

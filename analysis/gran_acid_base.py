@@ -1,9 +1,9 @@
 """Gran's lines of acids and bases: what is left, or in excess, against the volume, from the charge balance.
 
 With a the ion that the titrant takes away (H+ for a base titrant, OH- for an acid), b the other one, E one proton of
-the analyte in mL of titrant and f how many of the protons up to the chosen endpoint are left:
+an analyte in mL of titrant and f how many of its protons up to the chosen endpoint are left:
 
-V_e - V = E f + (V0 + V) (a - b) / c
+V_e - V = sum of E f + (V0 + V) (a - b) / c
 
 On either side one term is nearly all of it. That one gets a free slope, so that the electrode's offset, the constant
 and the mean activity do not matter; the others are worked out, with the offset that the slope gives away.
@@ -21,15 +21,17 @@ from dataclasses import dataclass, replace
 import numpy as np
 import numpy.typing as npt
 
+from analysis.acid_base import steps_of
 from analysis.activity import davies_a, log_gamma, nernst, water_pK
 from analysis.curve import Curve
+from analysis.equivalence import Step
 from analysis.line import weighted_line
 from analysis.protonation import protons_lost
 from analysis.system import Analyte, System
 
 FloatArray = npt.NDArray[np.float64]
 LEAST = 4
-FIRST, LAST_BEFORE, FIRST_AFTER, LAST_AFTER = 0.25, 0.995, 0.005, 0.7  # of the step, from its begin or beyond its end
+FIRST, LAST_BEFORE, FIRST_AFTER, LAST_AFTER = 0.25, 0.995, 0.005, 0.7  # of the step before and of the one after
 DOMINANT = 5.0  # times the other terms, that the term of a line is at least
 LOWEST_SCATTER, VOLUME_SD = 0.002, 0.003  # pH, mL
 CALIBRATIONS, SAME_OFFSET = 5, 0.002  # times at most, pH
@@ -41,17 +43,21 @@ Line = tuple[float, float, float]
 
 @dataclass(frozen=True, slots=True)
 class Plot:
-    """One analyte up to one endpoint: ``protons`` of it are titrated at ``near`` [mL], the other analytes and all
-    endpoints before it at ``base`` and below; ``shift`` and ``stretch`` are the electrode's, ``lean`` [pH] moves the
-    free ions alone and ``apart`` the distances of the pKa."""
+    """The balance up to one endpoint, about at ``near``, after the one at ``begin`` and before the one at ``beyond``
+    [mL]; ``equivalents`` [mL] of one proton of each analyte.
+
+    What is not known for certain: ``shift`` [pH] and ``stretch`` of the electrode, ``lean`` [pH] of the free ions
+    alone, ``apart`` [pK] between the chosen constant and all others.
+    """
 
     curve: Curve
     system: System
-    analyte: Analyte
-    protons: int
+    step: Step
     is_last: bool
     near: float
-    base: float
+    begin: float
+    beyond: float
+    equivalents: tuple[float, ...]
     scatter: float
     shift: float = 0.0
     stretch: float = 1.0
@@ -61,7 +67,7 @@ class Plot:
 
 @dataclass(frozen=True, slots=True)
 class Terms:
-    """The terms of the balance at each point [mL of titrant]: left of the step, taken by a, in excess as b."""
+    """The terms of the balance at each point [mL of titrant]: left of the analytes, taken by a, in excess as b."""
 
     v: FloatArray
     left: FloatArray
@@ -97,49 +103,29 @@ def _offset(plot: Plot, lines: tuple[Line | None, Line | None]) -> float:
 
 def _before(plot: Plot, terms: Terms) -> Line | None:
     """The line of what is left: of a strong acid or base its own ion, of a weak one its share."""
-    if plot.analyte.pKa:
-        at, line, others = terms.v + terms.taken - terms.excess, terms.left, terms.taken - terms.excess
-    else:
-        at, line, others = terms.v - terms.excess, terms.taken, terms.excess
-    begin, step = _begin(plot), _step(plot)
-    inside = (terms.v > begin + FIRST * step) & (terms.v < begin + LAST_BEFORE * step)
-    return _line(plot, at, line, inside & (line > DOMINANT * np.abs(others)))
+    step = plot.near - plot.begin
+    inside = (terms.v > plot.begin + FIRST * step) & (terms.v < plot.begin + LAST_BEFORE * step)
+    is_strong = not _chosen(plot).pKa
+    line, others = (terms.taken, terms.left - terms.excess) if is_strong else (terms.left, terms.taken - terms.excess)
+    return _line(plot, terms.v + others, line, inside & (line > DOMINANT * np.abs(others)))
 
 
 def _after(plot: Plot, terms: Terms) -> Line | None:
     """The line of what is in excess: of the titrant beyond the last endpoint, of the next proton beyond another."""
-    if plot.is_last:
-        at, line, others = terms.v + terms.left + terms.taken, -terms.excess, terms.left + terms.taken
-    else:
-        at, line, others = terms.v + terms.taken - terms.excess, terms.left, terms.taken - terms.excess
-    end, step = plot.near, _step(plot)
-    inside = (terms.v > end + FIRST_AFTER * step) & (terms.v < end + LAST_AFTER * step)
-    return _line(plot, at, line, inside & (-line > DOMINANT * np.abs(others)))
+    step = plot.beyond - plot.near
+    inside = (terms.v > plot.near + FIRST_AFTER * step) & (terms.v < plot.near + LAST_AFTER * step)
+    line, others = (
+        (-terms.excess, terms.left + terms.taken) if plot.is_last else (terms.left, terms.taken - terms.excess)
+    )
+    return _line(plot, terms.v + others, line, inside & (-line > DOMINANT * np.abs(others)))
 
 
 def _line(plot: Plot, at: FloatArray, line: FloatArray, use: npt.NDArray[np.bool_]) -> Line | None:
     if np.count_nonzero(use) < LEAST:
         return None
-    x, y = line[use], at[use]
-    sd = np.hypot(LN_10 * max(plot.scatter, LOWEST_SCATTER) * x, VOLUME_SD)
-    found = weighted_line(x, y, sd=sd)
+    sd = np.hypot(LN_10 * max(plot.scatter, LOWEST_SCATTER) * line[use], VOLUME_SD)
+    found = weighted_line(line[use], at[use], sd=sd)
     return found if found is not None and found[1] < 0 else None
-
-
-def _step(plot: Plot) -> float:
-    """One proton of the analyte [mL of titrant]."""
-    return (plot.near - plot.base) / plot.protons if plot.analyte.pKa else plot.near - plot.base
-
-
-def _begin(plot: Plot) -> float:
-    return plot.near - _step(plot)
-
-
-def _start(plot: Plot) -> int:
-    """Protons that the analyte has lost before the first drop."""
-    if plot.analyte.lost is not None:
-        return plot.analyte.lost
-    return 0 if plot.system.titrant == "base" else len(plot.analyte.pKa)
 
 
 def _terms(plot: Plot) -> Terms:
@@ -149,12 +135,11 @@ def _terms(plot: Plot) -> Terms:
     gamma = gamma if system.activity else np.ones_like(v)
     h, oh = 10 ** -(pH + plot.lean) / gamma, 10 ** (pH + plot.lean - water_pK(system.temperature)) / gamma
     a, b = (h, oh) if system.titrant == "base" else (oh, h)
-    taken, excess = whole * a / system.titrant_concentration, whole * b / system.titrant_concentration
-    if not plot.analyte.pKa:
-        return Terms(v, np.zeros_like(v), taken, excess)
-    undone = _undone(plot, pH, gamma)
-    left = (v + taken - excess - plot.base) * undone / np.maximum(plot.protons - undone, 1e-9)
-    return Terms(v, left, taken, excess)
+    left = np.zeros_like(v)
+    for place, item in enumerate(system.analytes):
+        if item.pKa:
+            left += plot.equivalents[place] * _undone(plot, place, pH=pH, gamma=gamma)
+    return Terms(v, left, whole * a / system.titrant_concentration, whole * b / system.titrant_concentration)
 
 
 def _pH(plot: Plot) -> FloatArray:
@@ -163,28 +148,40 @@ def _pH(plot: Plot) -> FloatArray:
     return np.clip(7.0 + plot.stretch * (pH - 7.0) + plot.shift, LOWEST_PH, HIGHEST_PH)
 
 
-def _undone(plot: Plot, pH: FloatArray, gamma: FloatArray) -> FloatArray:
-    """How many of the protons up to the endpoint are left, less than none where the next one has begun."""
-    item, start = plot.analyte, _start(plot)
-    is_base = plot.system.titrant == "base"
-    own = start + plot.protons - 1 if is_base else start - plot.protons
+def _undone(plot: Plot, place: int, *, pH: FloatArray, gamma: FloatArray) -> FloatArray:
+    """How many protons of an analyte up to the endpoint are left; less than none where the next one has begun."""
+    item, system = plot.system.analytes[place], plot.system
+    centre = steps_of(_chosen(plot), system)[plot.step.proton - 1]
     constants = [
-        10.0 ** -(pKa + plot.apart * np.sign(k - own)) * gamma ** (2 * (item.charge - k) - 1)
+        10.0 ** -(pKa + plot.apart * np.sign(pKa - centre)) * gamma ** (2 * (item.charge - k) - 1)
         for k, pKa in enumerate(item.pKa)
     ]
-    lost = protons_lost(10**pH, constants)[0]
-    return np.asarray(plot.protons - (lost - start if is_base else start - lost))
+    lost = protons_lost(10**pH, constants)[0] - _start(item, system)
+    return np.asarray(plot.step.share[place] - (lost if system.titrant == "base" else -lost))
 
 
 def _ionic_strength(plot: Plot, whole: FloatArray) -> FloatArray:
-    """Half the sum of c z^2 [mol/L], proton after proton; counter-ions are univalent."""
+    """Half the sum of c z^2 [mol/L], proton after proton of the chosen analyte; counter-ions are univalent."""
     system, v = plot.system, plot.curve.volume
-    if plot.analyte.pKa:
-        turn, first = (-1 if system.titrant == "base" else 1), plot.analyte.charge - _start(plot)
-        steps = np.arange(plot.protons + 2 - plot.is_last)
-        squares = np.interp((v - plot.base) / _step(plot), steps, (first + turn * steps) ** 2.0)
+    item, one = _chosen(plot), plot.equivalents[system.analytes.index(_chosen(plot))]
+    if item.pKa:
+        base = max(plot.near - plot.step.proton * one, 0.0)
+        turn, first = (-1 if system.titrant == "base" else 1), item.charge - _start(item, system)
+        steps = np.arange(plot.step.proton + 2 - plot.is_last)
+        squares = np.interp((v - base) / one, steps, (first + turn * steps) ** 2.0)
         beyond = np.maximum(v - plot.near, 0.0) if plot.is_last else 0.0
-        ions = v + beyond + _step(plot) * (squares + abs(first)) + plot.base
+        ions = v + beyond + one * (squares + abs(first)) + base
     else:
         ions = 2 * np.maximum(v, plot.near)
     return np.asarray((system.titrant_concentration * ions / 2 + system.background * system.sample_volume) / whole)
+
+
+def _chosen(plot: Plot) -> Analyte:
+    return next(item for item in plot.system.analytes if item.name == plot.step.analyte)
+
+
+def _start(item: Analyte, system: System) -> int:
+    """Protons that an analyte has lost before the first drop."""
+    if item.lost is not None:
+        return item.lost
+    return 0 if system.titrant == "base" else len(item.pKa)

@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 
 from analysis.curve import clean_curve
-from analysis.gran import gran
+from analysis.gran import gran, gran_endpoints
 from analysis.system import Analyte, System
 from tests.support.known_curves import ACETIC, STRONG, recorded, strong_acid
 
@@ -19,6 +19,8 @@ SILVER = System("precipitation", "halide", 0.1, 50.0, (Analyte("silver", charge=
 IRON = System("redox", "oxidant", 0.1, 50.0, (Analyte("iron(II)", potential=680.0),), titrant_potential=1440.0)
 IODINE = System("redox", "reductant", 0.1, 50.0, (Analyte("iodine", potential=540.0),), titrant_potential=90.0)
 CALCIUM = System("complex", "ligand", 0.1, 50.0, (Analyte("calcium", charge=2, log_K=10.25),))
+BOTH = replace(ACETIC, analytes=(*STRONG.analytes, *ACETIC.analytes))
+HALIDES = replace(CHLORIDE, analytes=(Analyte("iodide", charge=-1, pKs=16.08), *CHLORIDE.analytes))
 
 
 def base(name: str, *pKa: float) -> System:
@@ -63,7 +65,7 @@ def test_gran_uses_one_side_where_the_curve_stops() -> None:
         (base("malonic acid", 2.85, 5.70), (0.5,)),
         (System("acid_base", "acid", 0.1, 50.0, (Analyte("carbonate", (6.352, 10.329)),)), (0.5,)),
         (System("acid_base", "base", 0.1, 50.0, (Analyte("hydrogen phthalate", (2.95, 5.408), lost=1),)), (1.0,)),
-        (replace(ACETIC, analytes=(*STRONG.analytes, *ACETIC.analytes)), (0.5, 0.5)),
+        (BOTH, (0.5, 0.5)),
     ],
     ids=["citric", "phosphoric", "malonic", "carbonate", "phthalate", "hydrochloric and acetic"],
 )
@@ -87,12 +89,32 @@ def test_gran_does_not_need_the_zero_of_the_electrode() -> None:
     assert gran(curve, system=ACETIC, near=10.0)[0] == pytest.approx(10.0, abs=0.02)
 
 
-def test_gran_starts_at_the_endpoint_before() -> None:
-    halides = (Analyte("iodide", charge=-1, pKs=16.08), Analyte("chloride", charge=-1, pKs=9.752))
-    system = System("precipitation", "silver", 0.1, 50.0, halides)
-    curve = recorded(system, 0.7, 0.3)
-    assert gran(curve, system=system, near=10.0)[0] == pytest.approx(10.0, abs=0.02)
-    assert gran(curve, system=system, near=10.0, after=7.0)[0] == pytest.approx(10.0, abs=0.02)
+@pytest.mark.parametrize(
+    ("system", "amounts", "truths"),
+    [
+        (base("phosphoric acid", 2.148, 7.198, 12.35), (0.5,), (5.0, 10.0)),
+        (base("acid", 4.0, 6.5), (0.5,), (5.0, 10.0)),
+        (BOTH, (0.6, 0.4), (6.0, 10.0)),
+        (HALIDES, (0.7, 0.3), (7.0, 10.0)),
+    ],
+    ids=["phosphoric", "neighbours", "hydrochloric and acetic", "iodide and chloride"],
+)
+def test_gran_endpoints_are_those_of_every_jump(system: System, amounts: tuple, truths: tuple) -> None:
+    jumps = [truth + 0.1 for truth in truths]  # no better than a detection gives them
+    found = gran_endpoints(recorded(system, *amounts), system=system, jumps=jumps)
+    for (volume, u), truth in zip(found, truths, strict=True):
+        assert volume == pytest.approx(truth, abs=0.03)
+        assert abs(volume - truth) < 3 * u
+
+
+def test_gran_endpoints_give_the_last_where_another_number_was_found() -> None:
+    found = gran_endpoints(recorded(ACETIC, 1.0), system=ACETIC, jumps=[3.0, 10.0])
+    assert [volume for volume, _ in found] == pytest.approx([10.0], abs=0.03)
+
+
+@pytest.mark.parametrize(("step", "truth"), [(0, 6.0), (1, 10.0)])
+def test_gran_finds_the_jumps_of_several_acids_by_itself(step: int, truth: float) -> None:
+    assert gran(recorded(BOTH, 0.6, 0.4), system=BOTH, near=truth, step=step)[0] == pytest.approx(truth, abs=0.03)
 
 
 def test_gran_refuses_acids_that_are_titrated_together() -> None:
@@ -101,17 +123,24 @@ def test_gran_refuses_acids_that_are_titrated_together() -> None:
         gran(recorded(both, 0.5, 0.5), system=both, near=10.0)
 
 
-def test_gran_refuses_the_first_of_several_acids() -> None:
-    both = replace(ACETIC, analytes=(*STRONG.analytes, *ACETIC.analytes))
-    with pytest.raises(ValueError, match=r"^Gran's lines of several acids or bases are drawn for the last endpoint"):
-        gran(recorded(both, 0.5, 0.5), system=both, near=5.0, step=0)
-
-
-def test_gran_refuses_a_step_and_an_endpoint_that_cannot_be() -> None:
+def test_gran_refuses_steps_and_places_that_cannot_be() -> None:
+    curve, citric = recorded(ACETIC, 1.0), base("citric acid", 3.128, 4.761, 6.396)
     with pytest.raises(ValueError, match=r"^Step is 1; 0 to 0 is expected"):
-        gran(recorded(ACETIC, 1.0), system=ACETIC, near=10.0, step=1)
-    with pytest.raises(ValueError, match=r"^The endpoint before is at 12 mL; 0 to 10 mL is expected"):
-        gran(recorded(CHLORIDE, 1.0), system=CHLORIDE, near=10.0, after=12.0)
+        gran(curve, system=ACETIC, near=10.0, step=1)
+    with pytest.raises(
+        ValueError, match=r"^The curve does not jump at step 2 of citric acid; Gran's lines need a jump"
+    ):
+        gran(curve, system=citric, near=10.0, step=1)
+    with pytest.raises(ValueError, match=r"^The endpoint is sought near 0 mL; more than 0 mL is expected"):
+        gran(curve, system=ACETIC, near=0.0)
+
+
+def test_gran_refuses_jumps_that_are_not_those_of_the_chemistry() -> None:
+    curve = recorded(BOTH, 0.5, 0.5)
+    with pytest.raises(ValueError, match=r"^3 endpoints are found and the chemistry has 2"):
+        gran(curve, system=BOTH, near=10.0, jumps=[2.0, 5.0, 10.0])
+    with pytest.raises(ValueError, match=r"^The endpoints at 12, 10 mL are not those of the chemistry"):
+        gran(curve, system=BOTH, near=10.0, jumps=[12.0, 10.0])
 
 
 def test_gran_says_that_it_has_too_few_points() -> None:
