@@ -50,14 +50,16 @@ def claim_request(request_id: int) -> bool:
 def record_calculation(request_id: int) -> Calculation | None:
     """Compute one waiting request and store the outcome; None when there is nothing to do any more.
 
-    Safe to run twice: the request row is locked, and a second worker finds it done or taken.
+    Safe to run twice: a second worker waits and finds it done. The record is locked before its request, as every
+    service that changes a record does, so that neither waits for the other.
     """
-    request = (
-        CalculationRequest.objects.select_for_update(skip_locked=True).filter(pk=request_id, state="waiting").first()
-    )
+    asked = CalculationRequest.objects.filter(pk=request_id, state="waiting").first()
+    if asked is None:
+        return None
+    record = _locked_record(asked)
+    request = CalculationRequest.objects.select_for_update().filter(pk=request_id, state="waiting").first()
     if request is None:
         return None
-    record = _locked_record(request)
     if record.state != RecordState.OPEN:
         return _finish(request, problem=f"{record.number} is {record.state}; it is not computed again.")
     try:

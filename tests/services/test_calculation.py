@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import time
+from concurrent.futures import ThreadPoolExecutor
 from datetime import timedelta
 from typing import Any
 
@@ -14,7 +16,13 @@ from labrecords.canonical import sha256_of
 from labrecords.models import AuditEvent, Calculation, CalculationRequest, Run, Standardization, User
 from labrecords.queries.calculation import latest_request
 from labrecords.services import audit
-from labrecords.services.calculation import MOST_ATTEMPTS, claim_request, overdue_requests, record_calculation
+from labrecords.services.calculation import (
+    MOST_ATTEMPTS,
+    ask_for_calculation,
+    claim_request,
+    overdue_requests,
+    record_calculation,
+)
 from labrecords.services.replicate import exclude_replicate
 from labrecords.services.run import correct_run, submit_run, void_run
 from tests.factories.bench import (
@@ -45,6 +53,14 @@ def asked(run: Run, analyst: User) -> CalculationRequest:
     """The one request of a sheet that is filled."""
     fill(run, ROWS, by=analyst)
     return CalculationRequest.objects.get(run=run)
+
+
+def in_its_own_session(request_id: int) -> Calculation | None:
+    """What one of several workers does."""
+    try:
+        return record_calculation(request_id)
+    finally:
+        connection.close()
 
 
 def counts() -> tuple[int, int]:
@@ -234,3 +250,47 @@ def test_calculation_is_not_added_to_a_submitted_run(asked: CalculationRequest, 
         audit.event("calculation.record", by=analyst),
     ):
         forged.save()
+
+
+@pytest.mark.django_db(transaction=True)
+def test_many_workers_at_once_compute_one_request_once(bench: Bench) -> None:
+    record = started_standardization(bench)
+    fill(record, WEIGHED, by=bench.analyst)
+    request = latest_request(record)
+    with ThreadPoolExecutor(6) as pool:
+        found = [calculation for calculation in pool.map(in_its_own_session, [request.pk] * 6) if calculation]
+    assert found == [record.calculations.get()]
+    assert AuditEvent.objects.filter(action="calculation.record").count() == 1
+
+
+@pytest.mark.django_db(transaction=True)
+def test_worker_waits_for_who_changes_the_record(bench: Bench, other_analyst: User) -> None:
+    record = started_standardization(bench)
+    fill(record, WEIGHED, by=bench.analyst)
+    with ThreadPoolExecutor(1) as pool:
+        with transaction.atomic():
+            Standardization.objects.select_for_update(of=("self",)).get(pk=record.pk)
+            found = pool.submit(in_its_own_session, latest_request(record).pk)
+            time.sleep(0.5)
+            ask_for_calculation(record, by=other_analyst, at=timezone.now())
+        assert found.result().requested_by == other_analyst
+
+
+def test_worker_computes_what_was_read(worker: Any, bench: Bench) -> None:
+    record = started_standardization(bench)
+    fill(record, WEIGHED, by=bench.analyst)
+    worker.wait_until(lambda: latest_request(record).state == "done")
+    assert record.calculations.order_by("-number")[0].is_acceptable
+
+
+def test_worker_finds_what_a_lost_message_left_waiting(worker: Any, bench: Bench) -> None:
+    record = started_standardization(bench)
+    worker.kill()
+    fill(record, WEIGHED, by=bench.analyst)
+    worker.forget()
+    worker.start()
+    assert latest_request(record).state == "waiting"
+    CalculationRequest.objects.update(requested_at=timezone.now() - timedelta(seconds=11))
+    worker.send("labrecords.tasks.sweep_waiting")
+    worker.wait_until(lambda: latest_request(record).state == "done")
+    assert record.calculations.get().is_acceptable
