@@ -13,7 +13,7 @@ from labrecords.models import ControlChart, ControlLimits
 from labrecords.queries.chart_kinds import Drawn, averages, means_and_spread, moving_ranges, sums
 from labrecords.queries.control_chart import CUSUM, EWMA, ChartPoint, ChartSignal, limits_at_points, unit_of
 
-SPREADS = {"range": "range, R", "sd": "standard deviation, s"}
+SPREADS = {"range": "range R", "sd": "standard deviation s"}
 
 
 def drawings(chart: ControlChart, shown: Mapping[str, Any], *, kind: str, spread: str) -> list[dict[str, Any]]:
@@ -87,22 +87,20 @@ def _means(
     return [
         {
             "title": "Means of the titrations that count",
-            "note": "limits from the spread inside the runs",
+            "note": "limits from the spread inside the runs: what differs from run to run shows beyond them",
             "figure": _figure(chart, used, means, title=_axis(chart, "Mean")),
         },
         {
             "title": f"Spread inside each run: {name}",
             "note": "runs may differ in size",
-            "figure": _figure(chart, used, spreads, title=_axis(chart, name.capitalize())),
+            "figure": _figure(chart, used, spreads, title=_axis(chart, name[0].upper() + name[1:])),
         },
     ]
 
 
-def _figure(
-    chart: ControlChart, points: Sequence[ChartPoint], drawn: Drawn, *, title: str, rule: str = "beyond its limits"
-) -> Any:
+def _figure(chart: ControlChart, points: Sequence[ChartPoint], drawn: Drawn, *, title: str, rule: str = "") -> Any:
     rows = [
-        _point(point, value, [rule] if is_out else (), is_out=is_out)
+        _point(point, value, [rule] if is_out and rule else (), is_out=is_out)
         for point, value, is_out in zip(points, drawn.values, drawn.out, strict=True)
     ]
     limits = {"centre": _line(drawn.centre), "lower": _line(drawn.lower), "upper": _line(drawn.upper)}
