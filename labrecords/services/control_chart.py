@@ -68,19 +68,8 @@ def set_limits(
     """
     chart = ControlChart.objects.select_for_update(of=("self",)).get(pk=chart.pk)
     points = points_of(chart)
-    refuse_if(
-        objections_to_setting_limits(
-            chart,
-            by=by,
-            points=points,
-            baseline=baseline,
-            excluded=excluded,
-            rules=rules,
-            reason=reason,
-            also=also,
-            memory=memory,
-        )
-    )
+    chosen: dict[str, Any] = {"baseline": baseline, "excluded": excluded, "rules": rules, "also": also}
+    refuse_if(objections_to_setting_limits(chart, by=by, points=points, reason=reason, memory=memory, **chosen))
     last = chart.limits.order_by("-number").first()
     computed = limits_from_baseline(points, baseline=baseline, excluded=excluded)
     with audit.event("control_chart.set_limits", by=by, subject=chart.code, reason=reason) as event:
