@@ -241,5 +241,5 @@ def record_products(lab: Laboratory, start: date) -> None:
         usual = {"lower": None, "upper": None, "rounding": "half_up", "rule": "simple", "unit": lab.versions[test].unit}
         record_product_effective(lab, code, name, {"method": lab.methods[test], **usual, **limits})
     for code, name, method, value, expanded in CONTROLS:
-        expires = start + timedelta(days=400)
+        expires = start + timedelta(days=1500)
         record_control(lab, code, name, method, value=value, expanded=expanded, expires=expires)
