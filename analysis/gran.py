@@ -9,7 +9,6 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import replace
 
 import numpy as np
 import numpy.typing as npt
@@ -18,7 +17,7 @@ from analysis.activity import nernst
 from analysis.curve import Curve
 from analysis.detection import endpoints_near
 from analysis.equivalence import equivalence_steps
-from analysis.gran_acid_base import LEAST, Plot, Side, sides_of
+from analysis.gran_acid_base import LEAST, Plot, Side, Sides, sides_of, unknowns_of
 from analysis.line import weighted_line
 from analysis.noise import noise_of
 from analysis.system import System
@@ -26,7 +25,6 @@ from analysis.system import System
 FloatArray = npt.NDArray[np.float64]
 MOST_DECADES = 18  # as wide as pH
 RELATIVE_SD = 0.01  # of a point of a line: 0.25 mV; where they scatter more, that counts
-LEAN, STRETCH, APART = 0.04, 1.015, 0.04  # what no slope of a line tells: pH of the free ions, electrode, pKa
 BEYOND_LAST = 0.86  # steps; of these the line after uses seven tenths
 
 
@@ -95,27 +93,48 @@ def _place(system: System, step: int | None) -> int:
     return step
 
 
-def _combined(sides: list[Side]) -> Side:
-    if not sides:
+def _combined(sides: Sides, *, moved: Sequence[Sides] = ()) -> Side:
+    """Mean of both sides, weighted by the inverse of their covariance, and its standard uncertainty.
+
+    What is moved moves both sides at once; where they differ by more than all of it, that counts.
+
+    References
+    ----------
+    JCGM 102:2011, 7.1 (least squares with covariance); Birge, Phys. Rev. 40 (1932) 207-227.
+    """
+    known = [k for k, side in enumerate(sides) if side is not None]
+    if not known:
         raise ValueError("Gran's lines need four usable points before or after the endpoint.")
-    weights = [1 / u**2 for _, u in sides]
-    volume = sum(v * w for (v, _), w in zip(sides, weights, strict=True)) / sum(weights)
-    u = math.sqrt(1 / sum(weights))
-    return volume, max(u, abs(sides[0][0] - sides[-1][0]) / 2)
+    at = np.array([_pair(sides, k)[0] for k in known])
+    covariance = np.diag([_pair(sides, k)[1] ** 2 for k in known])
+    for other in moved:
+        away = np.array([_pair(other, k)[0] - _pair(sides, k)[0] if other[k] is not None else 0.0 for k in known])
+        covariance += np.outer(away, away)
+    if at.size == 1:
+        return float(at[0]), math.sqrt(float(covariance[0, 0]))
+    (first, both), (_, second) = covariance
+    apart = max(float(first + second - 2 * both), 1e-300)
+    share = min(max(float(second - both) / apart, 0.0), 1.0)
+    weights = np.array([share, 1.0 - share])
+    ratio = max(float(at[0] - at[1]) ** 2 / apart, 1.0)
+    return float(weights @ at), math.sqrt(float(weights @ covariance @ weights) * ratio)
+
+
+def _pair(sides: Sides, place: int) -> Side:
+    side = sides[place]
+    return (math.nan, math.nan) if side is None else side
 
 
 def _acid_base(curve: Curve, *, system: System, place: int, near: float, jumps: Sequence[float]) -> Side:
     plot = _plot(curve, system=system, place=place, near=near, jumps=jumps)
-    volume, u = _combined(sides_of(plot))
+    sides = sides_of(plot)
     for _ in range(2):  # with a better idea of where the step ends
+        volume, u = _combined(sides)
         if not plot.begin < volume <= curve.volume[-1] or abs(volume - plot.near) < u:
             break
         plot = _plot(curve, system=system, place=place, near=volume, jumps=jumps)
-        volume, u = _combined(sides_of(plot))
-    unknown = (replace(plot, lean=LEAN), replace(plot, stretch=STRETCH), replace(plot, apart=APART))
-    varied = [sides_of(changed) for changed in unknown]
-    away = [_combined(sides)[0] - volume for sides in varied if sides]
-    return volume, math.hypot(u, *away)
+        sides = sides_of(plot)
+    return _combined(sides, moved=[sides_of(other) for other in unknowns_of(plot)])
 
 
 def _plot(curve: Curve, *, system: System, place: int, near: float, jumps: Sequence[float]) -> Plot:
@@ -148,15 +167,14 @@ def _equivalents(system: System, *, place: int, near: float, jumps: Sequence[flo
     return tuple(map(float, found))
 
 
-def _other(curve: Curve, *, system: System, place: int, near: float, jumps: Sequence[float]) -> list[Side]:
+def _other(curve: Curve, *, system: System, place: int, near: float, jumps: Sequence[float]) -> Sides:
     """The line of the analyte that is left and, after the last endpoint, that of the titrant in excess."""
     begin = max((jump for jump in jumps if jump < 0.9 * near), default=0.0)
     name = equivalence_steps(system)[place].analyte
     electrons = next(item.electrons for item in system.analytes if item.name == name) if system.kind == "redox" else 1
-    sides = [_before(curve, system, near, begin, electrons=electrons)]
-    if place + 1 == len(equivalence_steps(system)):
-        sides.append(_after(curve, system, near, begin))
-    return [side for side in sides if side is not None]
+    is_last = place + 1 == len(equivalence_steps(system))
+    after = _after(curve, system, near, begin) if is_last else None
+    return _before(curve, system, near, begin, electrons=electrons), after
 
 
 def _before(curve: Curve, system: System, near: float, begin: float, *, electrons: int) -> Side | None:

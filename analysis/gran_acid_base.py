@@ -21,7 +21,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 import numpy.typing as npt
 
-from analysis.acid_base import steps_of
+from analysis.acid_base import CARBONIC, steps_of
 from analysis.activity import davies_a, log_gamma, nernst, water_pK
 from analysis.curve import Curve
 from analysis.equivalence import Step
@@ -36,8 +36,10 @@ DOMINANT = 5.0  # times the other terms, that the term of a line is at least
 LOWEST_SCATTER, VOLUME_SD = 0.002, 0.003  # pH, mL
 CALIBRATIONS, SAME_OFFSET = 5, 0.002  # times at most, pH
 LOWEST_PH, HIGHEST_PH = -3.0, 17.0
+SAME_ACID = 0.3  # pK, within which an analyte is carbonate itself
 LN_10 = math.log(10.0)
 Side = tuple[float, float]
+Sides = tuple[Side | None, Side | None]
 Line = tuple[float, float, float]
 
 
@@ -47,7 +49,8 @@ class Plot:
     [mL]; ``equivalents`` [mL] of one proton of each analyte.
 
     What is not known for certain: ``shift`` [pH] and ``stretch`` of the electrode, ``lean`` [pH] of the free ions
-    alone, ``apart`` [pK] between the chosen constant and all others.
+    alone, ``apart`` [pK] between the chosen constant and all others, carbonate in the sample and in the titrant over
+    the titrant's concentration.
     """
 
     curve: Curve
@@ -63,6 +66,8 @@ class Plot:
     stretch: float = 1.0
     lean: float = 0.0
     apart: float = 0.0
+    carbonate: float = 0.0
+    titrant_carbonate: float = 0.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -75,20 +80,35 @@ class Terms:
     excess: FloatArray
 
 
-def sides_of(plot: Plot) -> list[Side]:
-    """Endpoint and standard uncertainty [mL] of the line before and of the line after, where there are points.
+def sides_of(plot: Plot) -> Sides:
+    """Endpoint and standard uncertainty [mL] of the line before and of the line after; None without enough points.
 
     The offset of the electrode is taken from the slope of the line before, or else of the line after.
     """
-    found: list[Side] = []
+    found: Sides = (None, None)
     for _ in range(CALIBRATIONS):
         terms = _terms(plot)
-        lines = (_before(plot, terms), _after(plot, terms))
-        found = [(line[0], line[2]) for line in lines if line is not None]
-        offset = _offset(plot, lines)
+        before, after = _before(plot, terms), _after(plot, terms)
+        found = (None if before is None else (before[0], before[2]), None if after is None else (after[0], after[2]))
+        offset = _offset(plot, (before, after))
         if abs(offset) < SAME_OFFSET:
             break
         plot = replace(plot, shift=plot.shift + min(max(offset, -1.0), 1.0))
+    return found
+
+
+def unknowns_of(plot: Plot) -> list[Plot]:
+    """The plot with each thing that no slope of a line tells moved by a standard deviation, one at a time.
+
+    The slope of the electrode, its offset for the free ions alone, the distance of the constants, and carbonate, as
+    the model of a curve takes them.
+    """
+    found = [replace(plot, lean=0.04), replace(plot, stretch=1.02), replace(plot, apart=0.04)]
+    constants = [pKa for item in plot.system.analytes for pKa in item.pKa]
+    if min((abs(pKa - CARBONIC.pKa[0]) for pKa in constants), default=9.0) > SAME_ACID:
+        found.append(replace(plot, carbonate=0.0015))
+        if plot.system.titrant == "base":
+            found.append(replace(plot, titrant_carbonate=0.0015))
     return found
 
 
@@ -139,6 +159,7 @@ def _terms(plot: Plot) -> Terms:
     for place, item in enumerate(system.analytes):
         if item.pKa:
             left += plot.equivalents[place] * _undone(plot, place, pH=pH, gamma=gamma)
+    left -= (1.0 if system.titrant == "base" else -1.0) * _carbonate(plot, pH=pH, gamma=gamma)
     return Terms(v, left, whole * a / system.titrant_concentration, whole * b / system.titrant_concentration)
 
 
@@ -158,6 +179,14 @@ def _undone(plot: Plot, place: int, *, pH: FloatArray, gamma: FloatArray) -> Flo
     ]
     lost = protons_lost(10**pH, constants)[0] - _start(item, system)
     return np.asarray(plot.step.share[place] - (lost if system.titrant == "base" else -lost))
+
+
+def _carbonate(plot: Plot, *, pH: FloatArray, gamma: FloatArray) -> FloatArray:
+    """What carbon dioxide takes up beside the analytes [mL of titrant]."""
+    of_sample, of_titrant = plot.carbonate, plot.titrant_carbonate + plot.system.carbonate
+    whole = of_sample * plot.system.sample_volume + of_titrant * plot.curve.volume
+    constants = [10.0**-pKa * gamma ** (-2 * k - 1) for k, pKa in enumerate(CARBONIC.pKa)]
+    return np.asarray(whole * protons_lost(10**pH, constants)[0])
 
 
 def _ionic_strength(plot: Plot, whole: FloatArray) -> FloatArray:

@@ -124,7 +124,7 @@ def test_chemistry_scales_with_the_volume(scale: float, system, family: str) -> 
     first = evaluate_curve(curve, settings=CurveSettings(family, system=system)).decided
     second = evaluate_curve(changed(curve, scale=scale), settings=CurveSettings(family, system=larger)).decided
     combined = math.hypot(first.standard_uncertainty, second.standard_uncertainty / scale)
-    assert abs(second.volume / scale - first.volume) < combined < 0.03 / min(scale, 1.0)
+    assert abs(second.volume / scale - first.volume) < combined < 0.1 / min(scale, 1.0)
     assert second.volume / scale == pytest.approx(10.0, abs=0.02 / min(scale, 1.0))
 
 

@@ -48,7 +48,7 @@ def test_gran_is_exact_without_scatter_and_activity() -> None:
     # Strong acid in closed form: (V0 + V) 10^-pH is a straight line to zero at the equivalence point.
     volume, u = gran(strong_acid(np.linspace(0.0, 16.0, 65), at=10.03), system=IDEAL, near=10.0)
     assert volume == pytest.approx(10.03, abs=1e-4)
-    assert u < 0.02  # the electrode's slope is not known better
+    assert u < 0.04  # the electrode's slope is not known better
 
 
 def test_gran_uses_one_side_where_the_curve_stops() -> None:
@@ -72,7 +72,7 @@ def test_gran_uses_one_side_where_the_curve_stops() -> None:
 def test_gran_finds_the_last_jump_of_several_protons(system: System, amounts: tuple, quantity: str) -> None:
     volume, u = gran(recorded(system, *amounts, quantity=quantity), system=system, near=10.1)
     assert volume == pytest.approx(10.0, abs=0.015)
-    assert abs(volume - 10.0) < 3 * u < 0.06
+    assert abs(volume - 10.0) < 3 * u < 0.3
 
 
 @pytest.mark.parametrize(("step", "truth"), [(0, 5.0), (1, 10.0)])
@@ -81,6 +81,21 @@ def test_gran_finds_the_chosen_proton(step: int, truth: float) -> None:
     volume, u = gran(recorded(system, 0.5, near=truth), system=system, near=truth, step=step)
     assert volume == pytest.approx(truth, abs=0.03)
     assert abs(volume - truth) < 3 * u
+
+
+def test_gran_leans_on_the_line_that_carbonate_leaves_alone() -> None:
+    # 0.15 % of the titrant's concentration in 50 mL: 0.075 mL of it stand beside the acid on the line after.
+    curve = recorded(ACETIC, 1.0, constants={"sample carbonate": 0.0015})
+    volume, u = gran(curve, system=ACETIC, near=10.0)
+    assert abs(volume - 10.0) < 2 * u
+    assert volume == pytest.approx(10.0, abs=0.075)
+
+
+def test_gran_takes_the_carbonate_of_the_titrant_as_given() -> None:
+    known = replace(ACETIC, carbonate=0.01)
+    curve = recorded(known, 1.0)
+    assert gran(curve, system=known, near=10.0)[0] == pytest.approx(10.0, abs=0.03)
+    assert abs(gran(curve, system=ACETIC, near=10.0)[0] - 10.0) > 0.03
 
 
 def test_gran_does_not_need_the_zero_of_the_electrode() -> None:
