@@ -252,8 +252,8 @@ def test_calculation_is_not_added_to_a_submitted_run(asked: CalculationRequest, 
         forged.save()
 
 
-@pytest.mark.django_db(transaction=True)
-def test_many_workers_at_once_compute_one_request_once(bench: Bench) -> None:
+def test_many_workers_at_once_compute_one_request_once(worker: Any, bench: Bench) -> None:
+    worker.kill()  # these six do its work
     record = started_standardization(bench)
     fill(record, WEIGHED, by=bench.analyst)
     request = latest_request(record)
@@ -263,8 +263,8 @@ def test_many_workers_at_once_compute_one_request_once(bench: Bench) -> None:
     assert AuditEvent.objects.filter(action="calculation.record").count() == 1
 
 
-@pytest.mark.django_db(transaction=True)
-def test_worker_waits_for_who_changes_the_record(bench: Bench, other_analyst: User) -> None:
+def test_worker_waits_for_who_changes_the_record(worker: Any, bench: Bench, other_analyst: User) -> None:
+    worker.kill()  # this test is the worker
     record = started_standardization(bench)
     fill(record, WEIGHED, by=bench.analyst)
     with ThreadPoolExecutor(1) as pool:
