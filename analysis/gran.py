@@ -154,10 +154,10 @@ def _equivalents(system: System, *, place: int, near: float, jumps: Sequence[flo
     if len(system.analytes) == 1:
         return (near / steps[place].share[0],)
     expected = [k for k, step in enumerate(steps) if step.is_jump or k == place]
-    if len(jumps) > len(expected):
-        raise ValueError(f"{len(jumps)} endpoints are found and the chemistry has {len(expected)}.")
-    at = [near if k == place else jump for k, jump in zip(expected, jumps, strict=False)]
-    shares = np.array([steps[k].share for k in expected[: len(at)]])
+    if len(jumps) != len(expected):
+        raise ValueError(f"Endpoints found on the curve: {len(jumps)}; the chemistry has {len(expected)}.")
+    at = [near if k == place else jump for k, jump in zip(expected, jumps, strict=True)]
+    shares = np.array([steps[k].share for k in expected])
     if np.linalg.matrix_rank(shares) < len(system.analytes):
         names = " and ".join(item.name for item in system.analytes)
         raise ValueError(f"{names[0].upper()}{names[1:]} are titrated together; Gran's lines need one of them alone.")

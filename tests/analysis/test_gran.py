@@ -152,7 +152,7 @@ def test_gran_refuses_steps_and_places_that_cannot_be() -> None:
 
 def test_gran_refuses_jumps_that_are_not_those_of_the_chemistry() -> None:
     curve = recorded(BOTH, 0.5, 0.5)
-    with pytest.raises(ValueError, match=r"^3 endpoints are found and the chemistry has 2"):
+    with pytest.raises(ValueError, match=r"^Endpoints found on the curve: 3; the chemistry has 2"):
         gran(curve, system=BOTH, near=10.0, jumps=[2.0, 5.0, 10.0])
     with pytest.raises(ValueError, match=r"^The endpoints at 12, 10 mL are not those of the chemistry"):
         gran(curve, system=BOTH, near=10.0, jumps=[12.0, 10.0])
