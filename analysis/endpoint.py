@@ -22,7 +22,7 @@ from analysis.endpoint_flags import direction_of, flags_of_curve, flags_of_direc
 from analysis.endpoint_rule import STOICHIOMETRIC, CurveSettings, Endpoint, begins_beyond
 from analysis.equilibrium import Fit, fit_equilibrium
 from analysis.fixed import fixed_reading
-from analysis.gran import gran
+from analysis.gran import gran_endpoints
 from analysis.noise import noise_of
 from analysis.segments import crossing
 
@@ -110,11 +110,7 @@ def _near(curve: Curve, settings: CurveSettings, *, noise: float) -> list[float]
             f"No endpoint found: the reading changes by only {rise:.2g} {curve.quantity} over "
             f"{curve.volume[-1] - curve.volume[0]:g} mL (needs {least:g})."
         )
-    middle, slope = first_derivative(curve)
-    steepest = int(np.abs(slope).argmax())
-    if steepest >= slope.size - 2 or steepest <= 1:
-        raise ValueError("No endpoint found: the curve stops before the jump, or begins in it.")
-    return [float(middle[steepest])]
+    raise ValueError("No endpoint found: there is no jump, or the curve stops before it or begins in it.")
 
 
 def _all_families(
@@ -150,7 +146,7 @@ def _one_family(
     if family == "fixed" and settings.fixed_reading is not None:
         return _fixed(curve, settings, noise=noise), None
     if family == "gran" and system and near:
-        return (_endpoint(curve, *gran(curve, system=system, near=near[-1]), family),), None
+        return tuple(_endpoint(curve, *end, family) for end in gran_endpoints(curve, system=system, jumps=near)), None
     if family == "model" and system and near:
         fit = fit_equilibrium(curve, system=system, guess=near[-1])
         pairs = zip(fit.endpoints, fit.endpoint_us, strict=True)

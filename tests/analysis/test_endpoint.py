@@ -114,7 +114,7 @@ def test_evaluate_curve_of_conductivity_is_a_crossing() -> None:
         ),
         (
             strong_acid(np.linspace(0.0, 9.99, 60)), CurveSettings("derivative"),
-            "^No endpoint found: the curve stops before the jump, or begins in it",
+            "^No endpoint found: there is no jump, or the curve stops before it",
         ),
         (strong_acid(VOLUMES), CurveSettings("magic"), "^Family is 'magic'; expected one of model, gran"),
         (strong_acid(VOLUMES), CurveSettings("fixed"), r"^The family fixed needs a reading, such as pH 8\.2"),
