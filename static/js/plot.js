@@ -20,7 +20,9 @@ function coloured(value) {
 
 async function figureOf(place) {
   if (place.dataset.src) return (await fetch(place.dataset.src, { headers: { Accept: "application/json" } })).json();
-  return JSON.parse(place.parentElement.querySelector("script[type='application/json']").textContent);
+  // while a part of the page is exchanged its data may be on the way: it is drawn when they are there
+  const data = place.parentElement?.querySelector("script[type='application/json']");
+  return data ? JSON.parse(data.textContent) : null;
 }
 
 function narrowed(layout, place) {
@@ -30,7 +32,9 @@ function narrowed(layout, place) {
 }
 
 async function draw(place) {
-  const figure = coloured(await figureOf(place));
+  const told = await figureOf(place);
+  if (!told) return;
+  const figure = coloured(told);
   const face = getComputedStyle(place).fontFamily;
   const layout = { ...figure.layout, autosize: true, font: { ...figure.layout.font, family: face } };
   await window.Plotly.react(place, figure.data, narrowed(layout, place), CONFIG);
