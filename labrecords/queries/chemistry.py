@@ -8,8 +8,12 @@ from analysis.system import System
 from analysis.unit import factor
 
 
-def objections_to_chemistry(system: dict[str, Any]) -> list[str]:
+def objections_to_chemistry(system: Any) -> list[str]:
     """What the model says against it, before a titration needs it."""
+    if not isinstance(system, dict):
+        return [
+            f"Chemistry for the model is {str(system)[:40]!r}; an object with kind, titrant and analytes is expected."
+        ]
     try:
         System.from_json({**system, "titrant_concentration": 0.1, "sample_volume": 50})
     except ValueError as problem:

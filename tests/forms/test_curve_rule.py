@@ -61,3 +61,10 @@ def test_odd_line_is_named(typed: str, sentence: str) -> None:
 )
 def test_what_the_model_cannot_fit_is_said_before_a_titration(typed: str, sentence: str) -> None:
     assert sentence in objections_to_chemistry(FIELD.clean(typed))[0]
+
+
+@pytest.mark.parametrize("odd", ["abc", [1], 7, {"kind": "acid_base", "titrant": "base", "analytes": ["x"]},
+                                 {"kind": "acid_base", "titrant": "base", "analytes": 3}, {}])  # fmt: skip
+def test_chemistry_of_another_shape_is_refused_in_a_sentence(odd) -> None:
+    (sentence,) = objections_to_chemistry(odd)
+    assert sentence.startswith("Chemistry for the model")
