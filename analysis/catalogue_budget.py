@@ -10,6 +10,7 @@ from analysis.calculation import Calculation, Field, Inputs, optional
 from analysis.covariance import mean_covariance, propagate_together
 from analysis.formula import parse_model
 from analysis.monte_carlo import monte_carlo
+from analysis.together import Result, use_together
 from analysis.uncertainty import Input, coverage_factor, propagate
 
 DIVISORS = {"rectangular": math.sqrt(3), "triangular": math.sqrt(6), "normal": 1.0, "u_shaped": math.sqrt(2)}
@@ -98,6 +99,20 @@ def _combined(inputs: Inputs) -> float:
     return math.hypot(*(standard_uncertainty(part) for part in inputs["parts"]))
 
 
+def _results_together(inputs: Inputs) -> dict[str, Any]:
+    unit = str(inputs.get("unit", ""))
+    found = use_together(
+        [Result(str(item["name"]), float(item["value"]), unit, item["contributions"]) for item in inputs["results"]]
+    )
+    weighted, count = found.weighted, len(found.results)
+    return {
+        "mean": found.mean.value, "u": found.mean.u, "u_if_independent": found.mean.u_if_independent,
+        "weighted_mean": weighted.value if weighted else None, "weighted_u": weighted.u if weighted else None,
+        "zeta": [item.zeta for item in found.differences], "probability": found.probability,
+        "correlations": [float(found.correlation[i, j]) for i in range(count) for j in range(i + 1, count)],
+    }  # fmt: skip
+
+
 def _coverage(inputs: Inputs) -> list[float]:
     freedom = inputs.get("degrees_of_freedom")
     known = math.inf if freedom is None else float(freedom)
@@ -127,6 +142,15 @@ BUDGETS = (
             Field("readings", "any", "by name: readings, as many of each, in the order they were read"),
         ),
         "values, u, input_correlations, correlations (pairs in order)", _together,
+    ),
+    Calculation(
+        "results_together", "Results that share inputs: their mean, differences and correlation",
+        (
+            Field("results", "one unit", "a list of name, value and contributions (signed u by the input's key)"),
+            optional("unit", "", "of the results"),
+        ),
+        "mean, u, u_if_independent, weighted_mean, weighted_u, zeta (pairs in order), correlations, probability",
+        _results_together,
     ),
     Calculation(
         "uncertainty_budget", "Value and uncertainty of a formula of named inputs",
