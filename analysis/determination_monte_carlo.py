@@ -25,6 +25,7 @@ from analysis.uncertainty import Input, coverage_factor
 FloatArray = npt.NDArray[np.float64]
 Inputs = Mapping[str, Any]
 MOST_DRAWS = 1_000_000
+NORMAL_95 = 1.959964
 
 
 def check_by_monte_carlo(
@@ -85,7 +86,11 @@ def _check(
         return np.asarray(mean(whole), dtype=float)
 
     found = monte_carlo(draws_of, drawn, seed=seed, most_draws=most_draws, progress=progress)
-    return _compared(outputs, found.value, found.u, found.interval, found.shortest, found.draws, found.is_stable)
+    value, u = found.value, found.u
+    if any(item.distribution == "t" and item.degrees_of_freedom < 3 and item.u for item in drawn):
+        # Student's t has no standard deviation below three degrees of freedom, and no mean at one
+        value, u = found.median, (found.interval[1] - found.interval[0]) / (2 * NORMAL_95)
+    return _compared(outputs, value, u, found.interval, found.shortest, found.draws, found.is_stable)
 
 
 def _only_counted(item: Input, counted: set[str]) -> Input:

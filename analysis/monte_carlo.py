@@ -30,6 +30,8 @@ class MonteCarlo:
     ----------
     value, u : float
         Mean and standard deviation of the draws [unit of the result].
+    median : float
+        It stands still where few degrees of freedom leave no mean [unit of the result].
     interval, shortest : tuple of float
         Probabilistically symmetric and shortest coverage interval.
     level : float
@@ -46,6 +48,7 @@ class MonteCarlo:
     level: float
     draws: int
     is_stable: bool
+    median: float
 
 
 def monte_carlo(
@@ -95,6 +98,7 @@ def monte_carlo(
     return MonteCarlo(
         float(draws.mean()), float(draws.std(ddof=1)), symmetric_interval(draws, level=level),
         shortest_interval(draws, level=level), level, draws.size, is_stable,
+        float(np.median(draws)),
     )  # fmt: skip
 
 

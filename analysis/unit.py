@@ -43,5 +43,6 @@ def factor(quantity: str, unit: str, *, equivalent: str | None = None) -> float:
     if quantity == "titrant_equivalent" and equivalent and unit == EQUIVALENT_MASS.format(name=equivalent):
         return 1.0
     if unit not in UNITS[quantity]:
-        raise ValueError(f"Unit is {unit!r}; a {quantity.replace('_', ' ')} is in {', '.join(UNITS[quantity])}.")
+        spoken = f"{'an' if quantity.startswith('a') else 'a'} {quantity.replace('_', ' ')}"
+        raise ValueError(f"Unit is {unit!r}; {spoken} is in {', '.join(UNITS[quantity])}.")
     return UNITS[quantity][unit]

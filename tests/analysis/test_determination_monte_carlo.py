@@ -54,6 +54,9 @@ def test_three_replicates_give_a_wider_interval_and_the_sentence_says_so():
     found = check_by_monte_carlo(few, seed=7)
     assert not found["is_confirmed"]
     assert "times as wide" in found["sentence"]
+    # Student's t at one degree of freedom has no mean: the middle of the draws is told, and it stands still.
+    assert found["value"] == pytest.approx(found["budget_value"], rel=2e-4)
+    assert check_by_monte_carlo(few, seed=8)["value"] == pytest.approx(found["value"], rel=2e-4)
 
 
 def test_same_seed_gives_the_same_numbers_and_progress_is_told():
