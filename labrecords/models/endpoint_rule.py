@@ -59,6 +59,11 @@ class EndpointRule(models.Model):
         return self.endpoint == "curve"
 
     @property
+    def reads_two_ends(self) -> bool:
+        """Whether a burette is read at two endpoints."""
+        return False
+
+    @property
     def takes_drift(self) -> bool:
         """Whether drift and duration of a titration are read."""
         return self.drift_u is not None

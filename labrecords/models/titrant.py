@@ -79,11 +79,6 @@ class Titrant(EndpointRule):
     def __str__(self) -> str:
         return self.code
 
-    @property
-    def reads_two_ends(self) -> bool:
-        """A standard has one endpoint that counts."""
-        return False
-
 
 class TitrantLot(models.Model):
     """One bottle or tank of a titrant."""

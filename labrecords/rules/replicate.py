@@ -61,6 +61,10 @@ def objections_to_readings(
         found.append(f"{str(replicate).capitalize()} is excluded and stays as it is.")
     if replicate.curve_id and any(field in values for field in BURETTE):
         found.append(f"{str(replicate).capitalize()} has a recorded curve; it takes no burette readings.")
+    if values.get("first_end") is not None and not record.rule.reads_two_ends:
+        found.append("First endpoint: this sheet reads one endpoint, its end.")
+    if (values.get("drift") is not None or values.get("minutes") is not None) and not record.rule.takes_drift:
+        found.append("Drift and duration: the titres of this sheet are not corrected for drift.")
     if any(needs_a_reason(replicate, field=field, value=value) for field, value in values.items()):
         found += [] if len(reason.strip()) >= 5 else ["A kept reading is changed. Say in a sentence why."]
     return found + _objections_to_values(replicate, record=record, values=values)

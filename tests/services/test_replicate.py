@@ -67,6 +67,9 @@ def test_same_value_again_writes_nothing(row, analyst):
         ({"amount": D("5000")}, "5000"),
         ({"temperature": D("90")}, "90"),
         ({"colour": "pink"}, "Field is 'colour'"),
+        ({"first_end": D("4.00")}, "this sheet reads one endpoint"),
+        ({"drift": D("4")}, "not corrected for drift"),
+        ({"minutes": D("4")}, "not corrected for drift"),
     ],
 )
 def test_record_readings_refuses_what_cannot_be(row, analyst, values, sentence):

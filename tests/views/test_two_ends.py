@@ -178,3 +178,21 @@ def test_result_is_rounded_to_significant_figures(bench, supervisor) -> None:
     verdict = run.calculation.outputs["verdict"]
     assert verdict["rounded"] == "0.7"
     assert run.calculation.value == pytest.approx(0.735, abs=0.01)
+
+
+def test_drift_is_read_and_taken_off_each_titre(client, bench, analyst) -> None:
+    run = started_run(bench, drift_u=D("1"), blanks_needed=0)
+    client.force_login(analyst)
+    row = run.replicates.filter(kind="sample")[0]
+    page = client.get(f"/runs/{run.number}/").content.decode()
+    assert f'name="drift-{row.pk}"' in page
+    assert "Duration, min" in page
+    for item in run.replicates.filter(kind="sample"):
+        record_readings(
+            item, by=analyst,
+            values={"amount": D("10.00"), "start": D("0.00"), "end": D("12.30"), "drift": D("20"), "minutes": D("5")},
+        )  # fmt: skip
+    compute(run)
+    outputs = run.calculations.get().outputs
+    assert [line["titre"] for line in outputs["titrations"]] == pytest.approx([12.20] * 3)
+    assert any(line["key"] == "drift" for line in outputs["budget"])
