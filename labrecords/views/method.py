@@ -86,4 +86,5 @@ def make_effective(request: HttpRequest, pk: int) -> HttpResponse:
 
 def _context(code: str) -> dict[str, Any]:
     method = get_object_or_404(methods(), code=code)
-    return {"method": method, "versions": method.versions.all(), "history": sentences_about(method)}
+    versions = method.versions.all()
+    return {"method": method, "versions": versions, "history": sentences_about(method, parts=versions)}

@@ -112,5 +112,5 @@ def _context(code: str) -> dict[str, Any]:
         "risks": risks_of(effective) if effective else [],
         "fewest": FEWEST,
         "specifications": product.specifications.all(),
-        "history": sentences_about(product),
+        "history": sentences_about(product, parts=product.specifications.all()),
     }
