@@ -45,6 +45,11 @@ class Benchmark:
     printed: str
     is_met: bool
 
+    @property
+    def has_failed(self) -> bool:
+        """Whether it casts doubt on a calculation; being slow on a busy machine does not."""
+        return not self.is_met and not self.name.endswith("speed")
+
 
 def validation_report(
     topics: Sequence[Topic],
@@ -61,7 +66,7 @@ def validation_report(
         "topics": topics, "at": at, "lab": lab, "checks": checks, "missed": missed, "benchmarks": benchmarks,
         "misprints": [_row(each) for each in misprints],
         "reproduced": sum(each.is_met for each in misprints),
-        "failed_benchmarks": sum(not each.is_met for each in benchmarks),
+        "failed_benchmarks": sum(each.has_failed for each in benchmarks),
         "machine": _machine(),
     }  # fmt: skip
     return render_to_string("validation/report.html", content)

@@ -96,14 +96,17 @@ def test_validate_analysis_shows_a_case_that_can_be_run_as_it_is(tmp_path: Path)
 
 
 @pytest.mark.parametrize(
-    ("script", "passes"),
+    ("name", "script", "passes"),
     [
-        ("if __name__ == '__main__': print('coverage 95 %')", True),
-        ("if __name__ == '__main__': raise SystemExit(1)", False),
+        ("accuracy", "if __name__ == '__main__': print('coverage 95 %')", True),
+        ("accuracy", "if __name__ == '__main__': raise SystemExit(1)", False),
+        ("fit_speed", "if __name__ == '__main__': raise SystemExit(print('coverage 95 %') or 1)", True),
     ],
 )
-def test_validate_analysis_runs_the_benchmarks_too(tmp_path: Path, monkeypatch, script: str, passes: bool) -> None:
-    (tmp_path / "speed.py").write_text(script, encoding="utf-8")
+def test_validate_analysis_runs_the_benchmarks_too(
+    tmp_path: Path, monkeypatch, name: str, script: str, passes: bool
+) -> None:
+    (tmp_path / f"{name}.py").write_text(script, encoding="utf-8")
     monkeypatch.setattr(validate_analysis, "BENCHMARKS", tmp_path)
     if passes:
         run(quick=False, report=tmp_path / "report.html")

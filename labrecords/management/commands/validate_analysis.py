@@ -73,8 +73,9 @@ class Command(BaseCommand):
                 self.stdout.write(f"FAILED  {checked.case.id}: a known misprint is reproduced")
                 failures += 1
         for benchmark in benchmarks:
-            self.stdout.write(f"{'ok    ' if benchmark.is_met else 'FAILED'}  benchmark {benchmark.name}")
-            failures += not benchmark.is_met
+            word = "FAILED" if benchmark.has_failed else "ok    " if benchmark.is_met else "slow  "
+            self.stdout.write(f"{word}  benchmark {benchmark.name}")
+            failures += benchmark.has_failed
         checks = sum(len(topic.checked) for topic in topics)
         self.stdout.write(f"{checks} checks, {failures} failures. Report: {report}")
         if failures:
