@@ -104,7 +104,7 @@ class AcidBase:
             value -= self.sign * amount
             return
         lost, covariances = protons_lost(inverse_h, self._constants(place, item, theta, medium))
-        charge = np.subtract(_lost_at_start(item, self.system), lost)
+        charge = np.subtract(lost_at_start(item, self.system), lost)
         columns[place] = charge
         value += amount * charge
         for k, covariance in enumerate(covariances):
@@ -170,20 +170,21 @@ def _parameters(system: System, prior: PriorOf) -> tuple[tuple[Parameter, ...], 
             found.append((f"pKa {place} {k}", Parameter(label, "pKa", float(of_pKa or 0.0))))
     for group in ("sample carbonate", "titrant carbonate"):
         sd = prior(group)
-        if sd is not None and _may_have(group, system):
+        if sd is not None and may_have(group, system):
             found.append((group, Parameter(group, group, sd)))
     first = len(system.analytes)
     return tuple(item for _, item in found), {key: first + i for i, (key, _) in enumerate(found)}
 
 
-def _may_have(group: str, system: System) -> bool:
+def may_have(group: str, system: System) -> bool:
     """Carbonate beside the analyte: not in an acid titrant, and not where the analyte itself is carbonate."""
     if group == "titrant carbonate" and system.titrant == "acid":
         return False
     return all(min((abs(pKa - CARBONIC.pKa[0]) for pKa in item.pKa), default=9.0) > 0.3 for item in system.analytes)
 
 
-def _lost_at_start(item: Analyte, system: System) -> float:
+def lost_at_start(item: Analyte, system: System) -> float:
+    """Protons that an analyte has lost before the first drop."""
     if item.lost is not None:
         return float(item.lost)
     return 0.0 if system.titrant == "base" else float(len(item.pKa))
@@ -193,7 +194,7 @@ def _squares(item: Analyte, inverse_h: FloatArray, g: FloatArray, system: System
     """Mean z^2 of an analyte and its univalent counter-ions, per amount."""
     if not item.pKa:
         return 1.0
-    counter = abs(_lost_at_start(item, system) - item.charge)
+    counter = abs(lost_at_start(item, system) - item.charge)
     states = fractions(inverse_h, [10.0**-pKa * g ** (2 * (item.charge - k) - 1) for k, pKa in enumerate(item.pKa)])
     whole: FloatArray | float = counter
     for k, state in enumerate(states):
@@ -216,5 +217,5 @@ def steps_of(item: Analyte, system: System) -> Sequence[float]:
     """
     if not item.pKa:
         return (-1.0,) if system.titrant == "base" else (15.0,)
-    start = int(_lost_at_start(item, system))
+    start = int(lost_at_start(item, system))
     return item.pKa[start:] if system.titrant == "base" else item.pKa[:start][::-1]

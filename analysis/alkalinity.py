@@ -29,8 +29,18 @@ def split_alkalinity(*, phenolphthalein: float, total: float) -> Alkalinity:
         When a number is negative or P is more than T.
     """
     p, t = phenolphthalein, total
+    check_alkalinity(p, t)
+    return Alkalinity(*(of_p * p + of_t * t for of_p, of_t in alkalinity_shares(p, t)))
+
+
+def alkalinity_shares(p: float, t: float) -> tuple[tuple[float, float], ...]:
+    """How many times P and how many times T each kind is: hydroxide, carbonate, bicarbonate."""
+    if 2 * p <= t:
+        return (0.0, 0.0), (2.0, 0.0), (-2.0, 1.0)
+    return (2.0, -1.0), (-2.0, 2.0), (0.0, 0.0)
+
+
+def check_alkalinity(p: float, t: float) -> None:
+    """Refuse what no titration gives."""
     if not (math.isfinite(t) and 0 <= p <= t):
         raise ValueError(f"P is {p} and T is {t}; 0 <= P <= T is expected.")
-    if 2 * p <= t:
-        return Alkalinity(0.0, 2 * p, t - 2 * p)
-    return Alkalinity(2 * p - t, 2 * (t - p), 0.0)

@@ -11,8 +11,7 @@ from collections.abc import Mapping, Sequence
 from typing import Any
 
 import analysis
-from analysis import model
-from analysis.determination_budget import all_inputs, propagated
+from analysis.determination_budget import propagated, value_of
 from analysis.determination_outputs import (
     advice,
     below_zero,
@@ -157,10 +156,8 @@ def _values(
 
 
 def _value_of(inputs: Inputs, item: Titration, blank: float | None, *, kind: str) -> float:
-    estimates = {each.name: complex(each.value) for each in all_inputs(inputs, [item], [], blank, kind=kind)}
-    make = model.run_value if kind == "run" else model.standardization_value
     try:
-        value = make(inputs, item)({**estimates, "repeatability": 1}).real
+        value = value_of(inputs, item, blank, kind=kind)
     except ZeroDivisionError:
         value = math.inf
     if not math.isfinite(value):

@@ -27,6 +27,16 @@ def all_inputs(
     return [*others, *titre_inputs(inputs, inside, titrations, blank)]
 
 
+def value_of(inputs: Inputs, item: Titration, blank: float | None, *, kind: str) -> float:
+    """The value of one titration by itself, every input at its estimate."""
+    return value_at_estimates(_model(inputs, item, kind=kind), all_inputs(inputs, [item], [], blank, kind=kind))
+
+
+def value_at_estimates(value: model.Model, named: Sequence[Input]) -> float:
+    """A model with every named input at its estimate, and no scatter."""
+    return value({each.name: complex(each.value) for each in named} | {"repeatability": 1}).real
+
+
 def propagated(
     inputs: Inputs,
     inside: Sequence[Titration],
@@ -36,9 +46,21 @@ def propagated(
     kind: str,
 ) -> Propagated:
     """Value, uncertainty and budget; a solution's line is opened into the physical inputs it rests on."""
-    make = model.run_value if kind == "run" else model.standardization_value
-    models = [make(inputs, item) for item in inside]
-    return combined(model.mean_model(models), named_inputs(inputs, inside, titrations, blank, kind=kind), inputs)
+    return combined(*measurement(inputs, inside, titrations, blank, kind=kind), inputs)
+
+
+def measurement(
+    inputs: Inputs,
+    inside: Sequence[Titration],
+    titrations: Sequence[Titration],
+    blank: float | None,
+    *,
+    kind: str,
+) -> tuple[model.Model, list[Input]]:
+    """The mean of the titrations that count as a model, and its every input, their own scatter last."""
+    mean = model.mean_model([_model(inputs, item, kind=kind) for item in inside])
+    alone = spread([value_of(inputs, item, blank, kind=kind) for item in inside])
+    return mean, [*all_inputs(inputs, inside, titrations, blank, kind=kind), repeatability(alone)]
 
 
 def combined(mean: model.Model, named: Sequence[Input], inputs: Inputs) -> Propagated:
@@ -49,21 +71,8 @@ def combined(mean: model.Model, named: Sequence[Input], inputs: Inputs) -> Propa
     return from_budget(whole.value, sorted(used, key=lambda line: -abs(line.contribution)))
 
 
-def named_inputs(
-    inputs: Inputs,
-    inside: Sequence[Titration],
-    titrations: Sequence[Titration],
-    blank: float | None,
-    *,
-    kind: str,
-) -> list[Input]:
-    """Every input of the mean of the titrations that count, their own scatter last."""
-    make = model.run_value if kind == "run" else model.standardization_value
-    alone = []
-    for item in inside:
-        estimates = {each.name: complex(each.value) for each in all_inputs(inputs, [item], [], blank, kind=kind)}
-        alone.append(make(inputs, item)(estimates | {"repeatability": 1}).real)
-    return [*all_inputs(inputs, inside, titrations, blank, kind=kind), repeatability(spread(alone))]
+def _model(inputs: Inputs, item: Titration, *, kind: str) -> model.Model:
+    return (model.run_value if kind == "run" else model.standardization_value)(inputs, item)
 
 
 def _without_the_smaller(whole: Propagated) -> Propagated:

@@ -16,7 +16,7 @@ import numpy.typing as npt
 
 from analysis import model
 from analysis.determination import compute
-from analysis.determination_budget import named_inputs, solution_parts
+from analysis.determination_budget import measurement, solution_parts
 from analysis.determination_parts import models_of_parts
 from analysis.monte_carlo import monte_carlo
 from analysis.titration_reading import blank_of, read_titrations
@@ -57,10 +57,7 @@ def check_by_monte_carlo(
     titrations = read_titrations(inputs)
     inside = [item for item in titrations if not item.is_blank and item.number in numbers]
     kind, blank = inputs["kind"], blank_of(titrations)
-    make = model.run_value if kind == "run" else model.standardization_value
-    mean = model.mean_model([make(inputs, item) for item in inside])
-    named = named_inputs(inputs, inside, titrations, blank, kind=kind)
-
+    mean, named = measurement(inputs, inside, titrations, blank, kind=kind)
     how: dict[str, Any] = {"seed": seed, "most_draws": most_draws, "progress": progress}
     whole = _check(mean, named, inputs, outputs, **how)
     parts = models_of_parts(inputs, inside, titrations, blank) if outputs["parts"] else []

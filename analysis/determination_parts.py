@@ -14,8 +14,8 @@ from dataclasses import dataclass, replace
 from typing import Any
 
 from analysis import model
-from analysis.alkalinity import split_alkalinity
-from analysis.determination_budget import combined, repeatability
+from analysis.alkalinity import alkalinity_shares, check_alkalinity
+from analysis.determination_budget import combined, repeatability, value_at_estimates
 from analysis.replicates import spread
 from analysis.titration_inputs import Titration, choice
 from analysis.titration_reading import titre_inputs
@@ -96,10 +96,8 @@ def _weights(part: Inputs, first: float, last: float) -> tuple[float, float]:
     takes = choice(part["takes"], TAKES, name=f"{part['name']} takes")
     if takes in FIXED:
         return FIXED[takes]
-    split_alkalinity(phenolphthalein=first, total=max(last, first))
-    if 2 * first <= last:  # carbonate and hydrogen carbonate
-        return {"hydroxide": (0.0, 0.0), "carbonate": (2.0, 0.0), "hydrogen carbonate": (-2.0, 1.0)}[takes]
-    return {"hydroxide": (2.0, -1.0), "carbonate": (-2.0, 2.0), "hydrogen carbonate": (0.0, 0.0)}[takes]
+    check_alkalinity(first, max(last, first))
+    return alkalinity_shares(first, last)[ALKALINITY.index(takes)]
 
 
 def _part(
@@ -109,10 +107,13 @@ def _part(
     own = _inputs_of(inputs, part)
     taken = [_taken(item, weights) for item in inside]
     others = model.run_inputs(own)
-    alone = {item.number: _value(own, item, [*others, *_volumes(own, [item], [], blank, weights)]) for item in taken}
+    models = [model.run_value(own, item) for item in taken]
+    alone = {
+        item.number: value_at_estimates(value, [*others, *_volumes(own, [item], [], blank, weights)])
+        for item, value in zip(taken, models, strict=True)
+    }
     named = [*others, *_volumes(own, taken, titrations, blank, weights), repeatability(spread(list(alone.values())))]
-    mean = model.mean_model([model.run_value(own, item) for item in taken])
-    return PartModel(part["name"], part["takes"], part["formula"], own, mean, named, alone)
+    return PartModel(part["name"], part["takes"], part["formula"], own, model.mean_model(models), named, alone)
 
 
 def _inputs_of(inputs: Inputs, part: Inputs) -> dict[str, Any]:
@@ -127,11 +128,6 @@ def _taken(item: Titration, weights: tuple[float, float]) -> Titration:
     (first, first_u), (last, last_u) = item.ends[:2]
     volume = weights[0] * first + weights[1] * last
     return replace(item, titre=volume, titre_u=math.hypot(weights[0] * first_u, weights[1] * last_u))
-
-
-def _value(inputs: Inputs, item: Titration, named: Sequence[Input]) -> float:
-    estimates = {each.name: complex(each.value) for each in named}
-    return model.run_value(inputs, item)(estimates | {"repeatability": 1}).real
 
 
 def _volumes(

@@ -21,7 +21,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 import numpy.typing as npt
 
-from analysis.acid_base import CARBONIC, steps_of
+from analysis.acid_base import CARBONIC, lost_at_start, may_have, steps_of
 from analysis.activity import davies_a, log_gamma, nernst, water_pK
 from analysis.curve import Curve
 from analysis.equivalence import Step
@@ -36,7 +36,6 @@ DOMINANT = 5.0  # times the other terms, that the term of a line is at least
 LOWEST_SCATTER, VOLUME_SD = 0.002, 0.003  # pH, mL
 CALIBRATIONS, SAME_OFFSET = 5, 0.002  # times at most, pH
 LOWEST_PH, HIGHEST_PH = -3.0, 17.0
-SAME_ACID = 0.3  # pK, within which an analyte is carbonate itself
 LN_10 = math.log(10.0)
 Side = tuple[float, float]
 Sides = tuple[Side | None, Side | None]
@@ -104,11 +103,10 @@ def unknowns_of(plot: Plot) -> list[Plot]:
     the model of a curve takes them.
     """
     found = [replace(plot, lean=0.04), replace(plot, stretch=1.02), replace(plot, apart=0.04)]
-    constants = [pKa for item in plot.system.analytes for pKa in item.pKa]
-    if min((abs(pKa - CARBONIC.pKa[0]) for pKa in constants), default=9.0) > SAME_ACID:
+    if may_have("sample carbonate", plot.system):
         found.append(replace(plot, carbonate=0.0015))
-        if plot.system.titrant == "base":
-            found.append(replace(plot, titrant_carbonate=0.0015))
+    if may_have("titrant carbonate", plot.system):
+        found.append(replace(plot, titrant_carbonate=0.0015))
     return found
 
 
@@ -177,7 +175,7 @@ def _undone(plot: Plot, place: int, *, pH: FloatArray, gamma: FloatArray) -> Flo
         10.0 ** -(pKa + plot.apart * np.sign(pKa - centre)) * gamma ** (2 * (item.charge - k) - 1)
         for k, pKa in enumerate(item.pKa)
     ]
-    lost = protons_lost(10**pH, constants)[0] - _start(item, system)
+    lost = protons_lost(10**pH, constants)[0] - lost_at_start(item, system)
     return np.asarray(plot.step.share[place] - (lost if system.titrant == "base" else -lost))
 
 
@@ -195,7 +193,7 @@ def _ionic_strength(plot: Plot, whole: FloatArray) -> FloatArray:
     item, one = _chosen(plot), plot.equivalents[system.analytes.index(_chosen(plot))]
     if item.pKa:
         base = max(plot.near - plot.step.proton * one, 0.0)
-        turn, first = (-1 if system.titrant == "base" else 1), item.charge - _start(item, system)
+        turn, first = (-1 if system.titrant == "base" else 1), item.charge - lost_at_start(item, system)
         steps = np.arange(plot.step.proton + 2 - plot.is_last)
         squares = np.interp((v - base) / one, steps, (first + turn * steps) ** 2.0)
         beyond = np.maximum(v - plot.near, 0.0) if plot.is_last else 0.0
@@ -207,10 +205,3 @@ def _ionic_strength(plot: Plot, whole: FloatArray) -> FloatArray:
 
 def _chosen(plot: Plot) -> Analyte:
     return next(item for item in plot.system.analytes if item.name == plot.step.analyte)
-
-
-def _start(item: Analyte, system: System) -> int:
-    """Protons that an analyte has lost before the first drop."""
-    if item.lost is not None:
-        return item.lost
-    return 0 if system.titrant == "base" else len(item.pKa)

@@ -11,6 +11,7 @@ from __future__ import annotations
 
 import math
 
+from analysis.amount import buoyancy
 from analysis.water import air_density, water_density
 
 AIR, WEIGHTS = 1.2, 8000.0  # conventional densities [kg/m3]
@@ -29,7 +30,7 @@ def buoyancy_factor(density: float, *, air: float = AIR, weights: float = WEIGHT
     for name, value in (("Density", density), ("Density of weights", weights)):
         if not (value > air >= 0 and math.isfinite(value)):
             raise ValueError(f"{name} is {value} kg/m3; a number above that of air, {air}, is expected.")
-    return (1 - air / weights) / (1 - air / density)
+    return buoyancy(air=air, density=density, weights=weights).real
 
 
 def z_factor(temperature: float, *, pressure: float = 1013.0, weights: float = WEIGHTS) -> float:
