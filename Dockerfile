@@ -22,7 +22,7 @@ WORKDIR /lab
 COPY --from=environment /env /env
 COPY . .
 # Collecting files needs settings that can be read, no database and no secret.
-RUN LAB_DEBUG=1 LAB_HASHED_STATIC=1 DATABASE_URL=postgres://nobody@localhost/none \
+RUN LAB_DEBUG=1 LAB_HASHED_STATIC=1 DATABASE_URL=postgres://nobody@nowhere/none \
     python manage.py collectstatic --noinput -v0
 USER lab
 VOLUME /data

@@ -5,7 +5,7 @@ PYTHON ?= $(firstword $(foreach name,python3 python3.14 python3.13 python3.12 py
 	$(name) -c 'import sys; sys.exit(sys.version_info < (3, 11))' 2>/dev/null && command -v $(name))))
 DATA_DIR ?= $(CURDIR)/.lab
 # Tools that read the settings without a database: none is opened.
-READS_SETTINGS := LAB_DEBUG=1 DATABASE_URL=postgres://nobody@localhost/none
+READS_SETTINGS := LAB_DEBUG=1 DATABASE_URL=postgres://nobody@nowhere/none
 
 .PHONY: run test lint clean-data lock
 .DEFAULT_GOAL := run

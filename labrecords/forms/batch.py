@@ -8,11 +8,9 @@ from typing import Any
 from django import forms
 from django.utils import timezone
 
-from labrecords.forms.curve_rule import FAMILIES, ChemistryField
+from labrecords.forms.endpoint_rule import CORRECTIONS, COUNTING, ENDPOINT, FAMILIES, EndpointRuleForm
 from labrecords.forms.fields import CountField, DayField, NumberField
 from labrecords.forms.parts import PartsField
-from labrecords.forms.register import GroupedForm
-from labrecords.forms.titrant import CORRECTIONS, COUNTING, ENDPOINT
 from labrecords.models import (
     Batch,
     BatchState,
@@ -73,7 +71,7 @@ class MethodForm(forms.Form):
     title = forms.CharField(max_length=120, label="Title")
 
 
-class VersionForm(GroupedForm):
+class VersionForm(EndpointRuleForm):
     """The recipe of a method version, in the order a bench would read it."""
 
     groups = (
@@ -118,17 +116,11 @@ class VersionForm(GroupedForm):
     )
     deciding_family = forms.ChoiceField(choices=FAMILIES, label="Deciding family", required=False)
     checking_family = forms.ChoiceField(choices=FAMILIES, label="Checking family", required=False)
-    fixed_reading = NumberField(label="Fixed pH or mV", required=False)
     first_fixed_reading = NumberField(
         label="First fixed pH or mV", required=False, help_text="where a curve has two, such as 8.3 before 4.5"
     )
-    agreement_limit = NumberField(
-        label="Families may differ by", initial="3", help_text="combined standard uncertainties; more needs a person"
-    )
     endpoints_expected = CountField(label="Endpoints expected", initial="1")
     endpoint_chosen = CountField(label="The one that counts", initial="1")
-    system = ChemistryField(label="Chemistry for the model")
-    initial_volume = NumberField(label="Volume in the vessel at the start, mL", required=False)
     blanks_needed = CountField(label="Blanks needed", initial="0")
     replicates_needed = CountField(label="Replicates needed", initial="3")
     policy = forms.ChoiceField(choices=MethodVersion._meta.get_field("policy").choices, label="Which replicates count")
@@ -142,14 +134,6 @@ class VersionForm(GroupedForm):
     loss_u = NumberField(label="u of the loss on drying, % (m/m)", required=False, initial="0")
     sample_density = NumberField(
         label="Density of the sample, g/cm³", required=False, help_text="weighings are then corrected for buoyancy"
-    )
-    temperature_correction = forms.BooleanField(label="Volumes are corrected to 20 °C", required=False)
-    temperature_within = NumberField(
-        label="Temperature known within, °C", initial="4",
-        help_text="about the temperature read, or about 20 °C where volumes are not corrected",
-    )  # fmt: skip
-    drift_u = NumberField(
-        label="u of the drift, µL/min", required=False, help_text="titres are then corrected for drift over their time"
     )
     coverage = forms.ChoiceField(choices=MethodVersion._meta.get_field("coverage").choices, label="Coverage factor")
     instructions = forms.CharField(

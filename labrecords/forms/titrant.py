@@ -4,26 +4,15 @@ from __future__ import annotations
 
 from django import forms
 
-from labrecords.forms.curve_rule import FAMILIES, ChemistryField
+from labrecords.forms.endpoint_rule import CORRECTIONS, COUNTING, ENDPOINT, FAMILIES, EndpointRuleForm
 from labrecords.forms.fields import CountField, DayField, NumberField, OneOfField, RecordField, TextField
-from labrecords.forms.register import GroupedForm, ReasonForm
+from labrecords.forms.register import ReasonForm
 from labrecords.models import Substance, Titrant, User
 
 SUBSTANCES = Substance.objects.filter(superseded_by=None)
 
 
-ENDPOINT = (
-    "endpoint", "indicator", "indicator_bias", "indicator_u", "curve_quantity", "deciding_family", "checking_family",
-    "agreement_limit", "fixed_reading", "first_fixed_reading", "endpoints_expected", "endpoint_chosen",
-    "initial_volume", "system",
-)  # fmt: skip
-COUNTING = ("blanks_needed", "replicates_needed", "policy", "limit", "limit_kind")
-CORRECTIONS = (
-    "temperature_correction", "expands_like", "temperature_within", "drift_u", "buoyancy", "sample_density", "coverage",
-)  # fmt: skip
-
-
-class TitrantForm(GroupedForm):
+class TitrantForm(EndpointRuleForm):
     """A kind of solution and the rule of its standardization."""
 
     groups = (
@@ -59,12 +48,6 @@ class TitrantForm(GroupedForm):
     )
     deciding_family = OneOfField(choices=FAMILIES, label="Deciding family", required=False)
     checking_family = OneOfField(choices=FAMILIES, label="Checking family", required=False)
-    fixed_reading = NumberField(label="Fixed pH or mV", required=False)
-    agreement_limit = NumberField(
-        label="Families may differ by", initial="3", help_text="combined standard uncertainties; more needs a person"
-    )
-    system = ChemistryField(label="Chemistry for the model")
-    initial_volume = NumberField(label="Volume in the vessel at the start, mL", required=False)
     blanks_needed = CountField(label="Blanks needed", initial="1")
     replicates_needed = CountField(label="Replicates needed")
     policy = OneOfField(choices=Titrant._meta.get_field("policy").choices, label="Which replicates count")
@@ -72,14 +55,6 @@ class TitrantForm(GroupedForm):
     limit_kind = OneOfField(choices=Titrant._meta.get_field("limit_kind").choices, label="Limit is a")
     expands_like = OneOfField(
         choices=Titrant._meta.get_field("expands_like").choices, label="Expands with temperature like"
-    )
-    temperature_correction = forms.BooleanField(label="Volumes are corrected to 20 °C", required=False)
-    temperature_within = NumberField(
-        label="Temperature known within, °C", initial="4",
-        help_text="about the temperature read, or about 20 °C where volumes are not corrected",
-    )  # fmt: skip
-    drift_u = NumberField(
-        label="u of the drift, µL/min", required=False, help_text="titres are then corrected for drift over their time"
     )
     buoyancy = forms.BooleanField(label="Weighings of the standard are corrected for buoyancy", required=False)
     coverage = OneOfField(choices=Titrant._meta.get_field("coverage").choices, label="Coverage factor")

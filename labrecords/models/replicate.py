@@ -2,11 +2,17 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 from django.conf import settings
 from django.db import models
 from django.db.models import Q
 
 from labrecords.models.fields import ReadingField
+
+if TYPE_CHECKING:
+    from labrecords.models.run import Run
+    from labrecords.models.standardization import Standardization
 
 
 class ReplicateKind(models.TextChoices):
@@ -100,6 +106,13 @@ class Replicate(models.Model):
 
     def __str__(self) -> str:
         return f"blank {self.number}" if self.kind == ReplicateKind.BLANK else f"titration {self.number}"
+
+    @property
+    def owner(self) -> Run | Standardization:
+        """The record it belongs to."""
+        found = self.run or self.standardization
+        assert found is not None  # the database says so
+        return found
 
     @property
     def pk_text(self) -> str:

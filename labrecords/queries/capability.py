@@ -7,7 +7,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from decimal import Decimal
 
-from django.db.models import F
+from django.db.models import F, QuerySet
 
 from analysis.capability import Capability, capability
 from labrecords.models import (
@@ -63,11 +63,16 @@ def fits_of_products() -> list[Fit]:
     ]
 
 
-def _results_by_test() -> dict[tuple[int, int], list[tuple[float, str]]]:
-    rows = Calculation.objects.filter(
+def results_of_batches() -> QuerySet[Calculation]:
+    """The approved results of batches; retests are left out, for their batches have a result already."""
+    return Calculation.objects.filter(
         run__calculation_id=F("pk"), run__state=RecordState.APPROVED, run__sample__batch__isnull=False,
         run__retest_for__isnull=True, value__isnull=False,
-    ).order_by("run__started_at", "run_id")  # fmt: skip
+    )  # fmt: skip
+
+
+def _results_by_test() -> dict[tuple[int, int], list[tuple[float, str]]]:
+    rows = results_of_batches().order_by("run__started_at", "run_id")
     series: dict[tuple[int, int], list[tuple[float, str]]] = defaultdict(list)
     of = ("run__sample__batch__product_id", "run__method_version__method_id", "value", "unit")
     for product, method, value, unit in rows.values_list(*of):

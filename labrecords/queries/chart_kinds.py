@@ -2,20 +2,19 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from functools import lru_cache
-from itertools import groupby, pairwise
+from itertools import pairwise
 
 from django.db.models import Func, JSONField, Value
 
 from analysis.control import SubgroupLimits, subgroup_chart, subgroup_limits
 from analysis.control_constants import chart_constants
-from analysis.ewma_cusum import cusum, ewma
 from analysis.rule_run_length import ZONE_RULES, rules_run_length
 from analysis.run_length import cusum_run_length, ewma_run_length
 from labrecords.models import Calculation, ControlChart, ControlLimits
-from labrecords.queries.control_chart import ChartPoint, limits_at_points
+from labrecords.queries.control_chart import ChartPoint, average_of, limits_at_points, parts_of, sums_of
 
 SHIFTS = (0.0, 0.5, 1.0, 1.5, 2.0, 3.0)  # sigma
 KINDS = {
@@ -62,17 +61,6 @@ class RunLengths:
     left_out: tuple[str, ...]
 
 
-def parts_of(
-    points: Sequence[ChartPoint], versions: Sequence[ControlLimits]
-) -> Iterator[tuple[Sequence[ChartPoint], ControlLimits | None]]:
-    """The points under one version of the limits after the other; each begins to count anew."""
-    start = 0
-    for limits, group in groupby(limits_at_points(points, versions)):
-        stop = start + len(list(group))
-        yield points[start:stop], limits
-        start = stop
-
-
 def moving_ranges(points: Sequence[ChartPoint], versions: Sequence[ControlLimits]) -> Drawn:
     """From one point to the next, from the second point on, with the mean moving range and its upper limit D4."""
     widest = chart_constants(2).D4
@@ -89,10 +77,7 @@ def averages(points: Sequence[ChartPoint], versions: Sequence[ControlLimits]) ->
     for part, limits in parts_of(points, versions):
         if limits is None:
             continue
-        found = ewma(
-            [point.value for point in part], target=limits.centre, sigma=limits.sigma, weight=limits.ewma_weight,
-            width=limits.ewma_width,
-        )  # fmt: skip
+        found = average_of([point.value for point in part], limits)
         rows += [
             (float(z), limits.centre, float(low), float(high))
             for z, low, high in zip(found.z, found.lower, found.upper, strict=True)
@@ -108,10 +93,7 @@ def sums(points: Sequence[ChartPoint], versions: Sequence[ControlLimits]) -> Sum
     for part, limits in parts_of(points, versions):
         if limits is None:
             continue
-        found = cusum(
-            [point.value for point in part], target=limits.centre, sigma=limits.sigma,
-            reference=limits.cusum_reference, interval=limits.cusum_interval,
-        )  # fmt: skip
+        found = sums_of([point.value for point in part], limits)
         upper += [float(value) for value in found.upper]
         lower += [float(value) for value in found.lower]
         interval += [limits.cusum_interval] * len(part)

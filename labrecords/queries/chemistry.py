@@ -1,9 +1,11 @@
-"""Whether the chemistry of a rule can be fitted at all, and its result be told in its unit."""
+"""What analysis knows that a rule may name, whether its chemistry can be fitted, and its result told in its unit."""
 
 from __future__ import annotations
 
 from typing import Any
 
+from analysis.determination_parts import TAKES as TAKES
+from analysis.endpoint import FAMILIES as FAMILIES
 from analysis.system import System
 from analysis.unit import factor
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from datetime import date, datetime, time
 from itertools import groupby
@@ -14,7 +14,7 @@ from django.db.models.functions import Cast
 from django.utils import timezone
 
 from analysis.control import IndividualsLimits, individuals_limits
-from analysis.ewma_cusum import cusum, ewma
+from analysis.ewma_cusum import Cusum, Ewma, cusum, ewma
 from analysis.run_rules import OTHER_RULES, RULES, signals
 from labrecords import writing
 from labrecords.models import (
@@ -133,16 +133,23 @@ def limits_at_points(points: Sequence[ChartPoint], versions: Sequence[ControlLim
 
 def signals_on(points: Sequence[ChartPoint], versions: Sequence[ControlLimits]) -> list[ChartSignal]:
     """Every point that breaks a rule in use at its time, in order; new limits begin to count anew."""
-    found: list[tuple[int, ChartSignal]] = []
-    start = 0
-    for limits, group in groupby(limits_at_points(points, versions), key=lambda item: item):
-        stop = start + len(list(group))
-        part = points[start:stop]
+    found: list[ChartSignal] = []
+    for part, limits in parts_of(points, versions):
         if limits is not None:
-            broken = _broken(part, limits)
-            found += [(start + at, ChartSignal(point=part[at], rule=rule)) for at, rule in broken]
+            broken = sorted(_broken(part, limits), key=lambda item: item[0])
+            found += [ChartSignal(point=part[at], rule=rule) for at, rule in broken]
+    return found
+
+
+def parts_of(
+    points: Sequence[ChartPoint], versions: Sequence[ControlLimits]
+) -> Iterator[tuple[Sequence[ChartPoint], ControlLimits | None]]:
+    """The points under one version of the limits after the other; each begins to count anew."""
+    start = 0
+    for limits, group in groupby(limits_at_points(points, versions)):
+        stop = start + len(list(group))
+        yield points[start:stop], limits
         start = stop
-    return [signal for _, signal in sorted(found, key=lambda item: item[0])]
 
 
 def _broken(part: Sequence[ChartPoint], limits: ControlLimits) -> list[tuple[int, str]]:
@@ -152,20 +159,26 @@ def _broken(part: Sequence[ChartPoint], limits: ControlLimits) -> list[tuple[int
     return [(place, rule) for rule, places in broken.items() for place in places]
 
 
+def average_of(values: Sequence[float], limits: ControlLimits) -> Ewma:
+    """The weighted average by the settings of a version of limits."""
+    return ewma(values, target=limits.centre, sigma=limits.sigma, weight=limits.ewma_weight, width=limits.ewma_width)
+
+
+def sums_of(values: Sequence[float], limits: ControlLimits) -> Cusum:
+    """The cumulative sums by the settings of a version of limits."""
+    return cusum(
+        values, target=limits.centre, sigma=limits.sigma, reference=limits.cusum_reference,
+        interval=limits.cusum_interval,
+    )  # fmt: skip
+
+
 def remembered(values: Sequence[float], limits: ControlLimits) -> dict[str, list[int]]:
     """The signals of the charts with memory that the limits use beside the run rules."""
     found: dict[str, list[int]] = {}
-    if "ewma" in limits.also and values:
-        average = ewma(
-            values, target=limits.centre, sigma=limits.sigma, weight=limits.ewma_weight, width=limits.ewma_width
-        )
-        found[EWMA] = list(average.signals)
-    if "cusum" in limits.also and values:
-        sums = cusum(
-            values, target=limits.centre, sigma=limits.sigma, reference=limits.cusum_reference,
-            interval=limits.cusum_interval,
-        )  # fmt: skip
-        found[CUSUM] = list(sums.signals)
+    if "ewma" in limits.also:
+        found[EWMA] = list(average_of(values, limits).signals)
+    if "cusum" in limits.also:
+        found[CUSUM] = list(sums_of(values, limits).signals)
     return found
 
 

@@ -40,14 +40,22 @@ class Compared:
 
 def results_together(numbers: Sequence[str]) -> Compared:
     """The results of runs or standardizations by their numbers; Refused with the sentences that say why not."""
-    records, reasons = _records(numbers)
+    if len(numbers) > MOST:
+        raise Refused([f"{len(numbers)} numbers are given; up to {MOST} are compared at once."])
+    known = _known(numbers)
+    records = [known[number] for number in numbers if number in known]
+    found = [(item, _calculation(item)) for item in records]
+    reasons = [f"{number} is no run and no standardization." for number in numbers if number not in known]
+    reasons += [f"{item.number} is void; a void result is not compared." for item in records if item.state == "void"]
+    reasons += [f"{item.number} has no result yet." for item, calculation in found if calculation is None]
     if reasons:
         raise Refused(reasons)
-    calculations = [calculation for record in records if (calculation := _calculation(record))]
+    pairs = [(item.number, calculation) for item, calculation in found if calculation is not None]
     try:
-        together = use_together([_result(item) for item in calculations])
+        together = use_together([_result(number, calculation) for number, calculation in pairs])
     except ValueError as problem:
         raise Refused([str(problem)]) from problem
+    calculations = [calculation for _, calculation in pairs]
     labels = {line["key"]: line["label"] for item in calculations for line in item.outputs["budget"]}
     return Compared(records, calculations, together, [labels.get(key, key) for key in together.shared])
 
@@ -58,17 +66,11 @@ def comparable_numbers(records: Sequence[Record]) -> list[str]:
     return found if len(found) > 1 else []
 
 
-def _records(numbers: Sequence[str]) -> tuple[list[Record], list[str]]:
-    if len(numbers) > MOST:
-        return [], [f"{len(numbers)} numbers are given; up to {MOST} are compared at once."]
+def _known(numbers: Sequence[str]) -> dict[str, Record]:
     known: dict[str, Record] = {}
     for model in (Run, Standardization):
         known |= {item.number: item for item in model.objects.filter(number__in=numbers)}
-    reasons = [f"{number} is no run and no standardization." for number in numbers if number not in known]
-    records = [known[number] for number in numbers if number in known]
-    reasons += [f"{item.number} is void; a void result is not compared." for item in records if item.state == "void"]
-    reasons += [f"{item.number} has no result yet." for item in records if _calculation(item) is None]
-    return records, reasons
+    return known
 
 
 def _calculation(record: Record) -> Calculation | None:
@@ -82,10 +84,6 @@ def _judged(zeta: float) -> str:
     return "look again" if zeta < DOUBTFUL else "they do not agree"
 
 
-def _result(calculation: Calculation) -> Result:
-    record = calculation.run or calculation.standardization
-    assert record is not None
+def _result(number: str, calculation: Calculation) -> Result:
     assert calculation.value is not None
-    return result_of(
-        record.number, value=calculation.value, unit=calculation.unit, budget=calculation.outputs["budget"]
-    )
+    return result_of(number, value=calculation.value, unit=calculation.unit, budget=calculation.outputs["budget"])

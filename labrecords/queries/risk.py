@@ -6,11 +6,9 @@ import math
 from dataclasses import dataclass
 from statistics import fmean, median, stdev
 
-from django.db.models import F
-
 from analysis.risk import Risks, process_risks
-from labrecords.models import Calculation, Product, RecordState, Specification, SpecificationLimit
-from labrecords.queries.capability import FEWEST
+from labrecords.models import Product, Specification, SpecificationLimit
+from labrecords.queries.capability import FEWEST, results_of_batches
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,9 +35,8 @@ def risks_of(specification: Specification) -> list[RuleRisk]:
 
 
 def _results(product: Product, limit: SpecificationLimit) -> list[tuple[float, float, float]]:
-    rows = Calculation.objects.filter(
-        run__calculation_id=F("pk"), run__state=RecordState.APPROVED, run__sample__batch__product=product,
-        run__method_version__method=limit.method, run__retest_for__isnull=True, value__isnull=False, unit=limit.unit,
+    rows = results_of_batches().filter(
+        run__sample__batch__product=product, run__method_version__method=limit.method, unit=limit.unit,
         standard_uncertainty__gt=0,
     )  # fmt: skip
     numbers = rows.values_list("value", "standard_uncertainty", "expanded_uncertainty")

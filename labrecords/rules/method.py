@@ -7,7 +7,7 @@ from decimal import Decimal
 from fractions import Fraction
 
 from labrecords.models import EndpointRule, Method, MethodVersion, User, VersionState
-from labrecords.queries.chemistry import objections_to_chemistry
+from labrecords.queries.chemistry import FAMILIES, TAKES, objections_to_chemistry
 from labrecords.rules.fit import objections_to_fit
 from labrecords.rules.number import plain
 from labrecords.rules.recipe import (
@@ -18,11 +18,7 @@ from labrecords.rules.recipe import (
 )
 
 CODE = re.compile(r"[A-Z][A-Z0-9]*(-[A-Z0-9]+)*")
-TAKES = (
-    "first", "second", "second less first", "second less twice first", "hydroxide", "carbonate", "hydrogen carbonate",
-)  # fmt: skip
 DENSITY = (Decimal("0.1"), Decimal(25))
-FAMILIES = ("model", "gran", "derivative", "parabola", "polynomial", "segments", "fixed")
 
 
 def objections_to_recording_method(*, by: User, code: str, title: str) -> list[str]:
@@ -111,16 +107,11 @@ def objections_to_curve(rule: EndpointRule) -> list[str]:
     return found + objections_to_counts(rule)
 
 
-def objections_to_temperature_within(value: Decimal) -> list[str]:
-    """How well the temperature of a titrant is known: a few degrees."""
-    if 0 <= value <= 15:
-        return []
-    return [f"Temperature known within is {plain(value)} °C: from 0 to 15."]
-
-
 def objections_to_volumes(rule: EndpointRule) -> list[str]:
     """How volumes are corrected, for methods and titrants alike."""
-    found = objections_to_temperature_within(Decimal(rule.temperature_within))
+    found, within = [], Decimal(rule.temperature_within)
+    if not 0 <= within <= 15:
+        found.append(f"Temperature known within is {plain(within)} °C: from 0 to 15.")
     if rule.drift_u is not None and not 0 <= Decimal(rule.drift_u) <= 100:
         found.append(f"u of the drift is {plain(Decimal(rule.drift_u))} µL/min: from 0 to 100.")
     if not Decimal(rule.agreement_limit) > 0:

@@ -9,7 +9,7 @@ from labrecords.models import Product, Specification, SpecificationLimit, User, 
 from labrecords.queries.method import effective_version
 from labrecords.rules.fit import objections_to_fit
 from labrecords.rules.method import CODE
-from labrecords.rules.recipe import MOST_PLACES
+from labrecords.rules.recipe import objections_to_places
 
 
 def objections_to_recording_product(*, by: User, code: str, name: str) -> list[str]:
@@ -56,9 +56,7 @@ def objections_to_limits(rows: Sequence[Mapping[str, Any]]) -> list[str]:
 
 
 def _objections_to_rounding(row: Mapping[str, Any]) -> list[str]:
-    found = objections_to_fit(SpecificationLimit(**row))
-    if not 0 <= row["places"] <= MOST_PLACES:
-        found.append(f"Places is {row['places']}: decimals from 0 to {MOST_PLACES} are expected.")
+    found = objections_to_fit(SpecificationLimit(**row)) + objections_to_places(row["places"])
     if row.get("guard_factor", 1) < 0:
         found.append(f"Guard factor is {row['guard_factor']}: a number not below 0.")
     return found

@@ -34,9 +34,14 @@ def objections_to_working(version: MethodVersion) -> list[str]:
 def objections_to_result(version: MethodVersion) -> list[str]:
     """The unit belongs to the quantity, and the decimals are some that can be printed."""
     found = objections_to_unit(version.unit, quantity=version.quantity, formula=version.expressed_as.formula)
-    if not 0 <= version.places <= MOST_PLACES:
-        found.append(f"Places is {version.places}: decimals from 0 to {MOST_PLACES} are expected.")
-    return found
+    return found + objections_to_places(version.places)
+
+
+def objections_to_places(places: int) -> list[str]:
+    """Decimals that can be printed."""
+    if 0 <= places <= MOST_PLACES:
+        return []
+    return [f"Places is {places}: decimals from 0 to {MOST_PLACES} are expected."]
 
 
 def objections_to_indicator(rule: EndpointRule) -> list[str]:

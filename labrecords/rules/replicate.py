@@ -146,7 +146,6 @@ def objections_to_attaching(replicate: Replicate, *, record: Record, by: User, d
     if replicate.curve_id or replicate.start is not None or replicate.end is not None:
         found.append(f"{str(replicate).capitalize()} has its curve or readings. Add another titration for this curve.")
     twin = Replicate.objects.filter(curve__file__sha256=digest).select_related("run", "standardization").first()
-    owner = (twin.run or twin.standardization) if twin else None
-    if owner is not None:
-        found.append(f"This file is {twin} of {owner.number} already. One recording is one titration.")
+    if twin is not None:
+        found.append(f"This file is {twin} of {twin.owner.number} already. One recording is one titration.")
     return found

@@ -10,6 +10,7 @@ from labrecords.rules.identifier import objections_to_identifier
 from labrecords.rules.method import objections_to_curve, objections_to_ratio, objections_to_volumes
 from labrecords.rules.number import plain
 from labrecords.rules.readings import day, objections_to_date, objections_to_order
+from labrecords.rules.recipe import objections_to_indicator
 from labrecords.rules.substance import objections_to_keeping_registers
 
 LONGEST_DAYS = 3650
@@ -47,11 +48,7 @@ def _objections_to_standardizing(titrant: Titrant) -> list[str]:
         found.append(f"Replicates needed is {titrant.replicates_needed}: from 2 to 20.")
     if not titrant.limit > 0:
         found.append(f"Limit is {plain(titrant.limit)}: a number above 0.")
-    if abs(titrant.indicator_bias) > 1 or not 0 <= titrant.indicator_u <= 1:
-        found.append(
-            f"Indicator is {plain(titrant.indicator_bias)} mL past equivalence with u "
-            f"{plain(titrant.indicator_u)} mL; within 1 mL, u not below 0, is expected."
-        )
+    found += objections_to_indicator(titrant)
     if titrant.buoyancy and titrant.standard_substance is not None and titrant.standard_substance.density is None:
         found.append(
             f"Buoyancy: {titrant.standard_substance.name} has no density in the register. Supersede it with one."

@@ -26,18 +26,19 @@ from labrecords.views.access import for_roles, signed_in
 def record(request: HttpRequest, pk: int) -> HttpResponse:
     """Drop the file, see which columns were taken and the curve they give, then keep it."""
     replicate, status = _replicate(pk), 200
-    owner, noun = replicate.run or replicate.standardization, "run" if replicate.run else "standardization"
+    owner = replicate.owner
+    back = reverse(f"{owner._meta.model_name}-sheet", args=[owner.number])
     context = {
         "form": CurveFileForm(),
         "replicate": replicate,
         "owner": owner,
-        "back": reverse(f"{noun}-sheet", args=[owner.number]),
+        "back": back,
     }
     if request.method == "POST":
         try:
             if "packed" in request.POST:
                 _keep(request, replicate)
-                return redirect(f"{noun}-sheet", owner.number)
+                return redirect(back)
             context |= _proposed(request, replicate)
         except Refused as refusal:
             context, status = context | {"refused": refusal.reasons}, 409
@@ -103,7 +104,7 @@ def _replicate(pk: int) -> Replicate:
 
 
 def _wanted(replicate: Replicate) -> str:
-    return (replicate.run or replicate.standardization).rule.curve_quantity
+    return replicate.owner.rule.curve_quantity
 
 
 def _safe(name: str) -> str:

@@ -31,8 +31,7 @@ def record(request: HttpRequest, pk: int, field: str) -> HttpResponse:
         service.record_readings(replicate, by=request.user, values={field: value}, reason=reason)
     except Refused as refusal:
         return JsonResponse({"reasons": list(refusal.reasons)}, status=409)
-    owner = replicate.run or replicate.standardization
-    remarks = remarks_on_reading(replicate, record=owner, field=field, value=value)
+    remarks = remarks_on_reading(replicate, record=replicate.owner, field=field, value=value)
     return JsonResponse({"saved": timezone.localtime().strftime("%H:%M:%S"), "remark": " ".join(remarks)})
 
 
@@ -66,12 +65,12 @@ def add(request: HttpRequest, noun: str, number: str) -> HttpResponse:
 def exclude(request: HttpRequest, pk: int) -> HttpResponse:
     """Take a titration out of the calculation for an assignable cause; it stays on the sheet."""
     replicate, reasons = _replicate(pk), ()
-    owner = replicate.run or replicate.standardization
+    owner = replicate.owner
     cause, sentence = request.POST.get("cause", ""), request.POST.get("sentence", "")
     if request.method == "POST":
         try:
             service.exclude_replicate(replicate, by=request.user, cause=cause, sentence=sentence)
-            return redirect(f"{'run' if replicate.run_id else 'standardization'}-sheet", owner.number)
+            return redirect(f"{owner._meta.model_name}-sheet", owner.number)
         except Refused as refusal:
             reasons = refusal.reasons
     context = {

@@ -57,7 +57,7 @@ class Bench:
         }
         if amount is not None:
             values["amount"] = D(amount)
-        if replicate.run is not None and replicate.run.method_version.temperature_correction:
+        if replicate.owner.rule.temperature_correction:
             values["temperature"] = D(f"{20.8 + self.noise(0.4):.1f}")
         self.clock.step(6)
         record_readings(replicate, by=by, values=values)
@@ -74,8 +74,7 @@ class Bench:
     ) -> None:
         """Write the instrument's file and keep it with the titration."""
         content = curve_file(volume, reading, header=header, comma=bool(self.generator.random() < 0.4))
-        owner = replicate.run or replicate.standardization
-        name = f"{owner.number}-{replicate.number}.csv" if owner else "curve.csv"
+        name = f"{replicate.owner.number}-{replicate.number}.csv"
         table = read_table(content, name=name)
         mapping = propose_mapping(table, wanted=header[1].split(" ")[0])
         curve = extract_curve(table, mapping=mapping)

@@ -1,4 +1,4 @@
-"""How a recorded curve is evaluated, as it is typed for methods and titrants."""
+"""How titrations are read, as it is typed for methods and titrants alike."""
 
 from __future__ import annotations
 
@@ -6,10 +6,21 @@ from typing import Any
 
 from django import forms
 
-from labrecords.rules.method import FAMILIES as KNOWN
+from labrecords.forms.fields import NumberField
+from labrecords.forms.register import GroupedForm
+from labrecords.queries.chemistry import FAMILIES as KNOWN
 from labrecords.rules.number import parse_number, shown
 
 FAMILIES = [("", "none"), *((name, name) for name in KNOWN)]
+ENDPOINT = (
+    "endpoint", "indicator", "indicator_bias", "indicator_u", "curve_quantity", "deciding_family", "checking_family",
+    "agreement_limit", "fixed_reading", "first_fixed_reading", "endpoints_expected", "endpoint_chosen",
+    "initial_volume", "system",
+)  # fmt: skip
+COUNTING = ("blanks_needed", "replicates_needed", "policy", "limit", "limit_kind")
+CORRECTIONS = (
+    "temperature_correction", "expands_like", "temperature_within", "drift_u", "buoyancy", "sample_density", "coverage",
+)  # fmt: skip
 HINT = (
     "first line the kind and the titrant: acid_base by base, acid_base by acid, precipitation by silver, redox by "
     "oxidant, complex by ligand ...; then one line for each substance, such as acetic acid: pKa 4.756, or hydrogen "
@@ -78,6 +89,25 @@ class ChemistryField(forms.CharField):
 
     def _odd(self, place: int, text: str, expected: str) -> forms.ValidationError:
         return forms.ValidationError(f"{self.label}, line {place} is {shown(text)}; {expected} is expected.")
+
+
+class EndpointRuleForm(GroupedForm):
+    """What methods and titrants ask with the same words about curves and volumes."""
+
+    fixed_reading = NumberField(label="Fixed pH or mV", required=False)
+    agreement_limit = NumberField(
+        label="Families may differ by", initial="3", help_text="combined standard uncertainties; more needs a person"
+    )
+    system = ChemistryField(label="Chemistry for the model")
+    initial_volume = NumberField(label="Volume in the vessel at the start, mL", required=False)
+    temperature_correction = forms.BooleanField(label="Volumes are corrected to 20 °C", required=False)
+    temperature_within = NumberField(
+        label="Temperature known within, °C", initial="4",
+        help_text="about the temperature read, or about 20 °C where volumes are not corrected",
+    )  # fmt: skip
+    drift_u = NumberField(
+        label="u of the drift, µL/min", required=False, help_text="titres are then corrected for drift over their time"
+    )
 
 
 def _constants(item: dict[str, Any]) -> str:

@@ -6,7 +6,7 @@ import pytest
 from django import forms
 
 from analysis.system import System
-from labrecords.forms.curve_rule import ChemistryField
+from labrecords.forms.endpoint_rule import ChemistryField
 from labrecords.queries.chemistry import objections_to_chemistry
 
 FIELD = ChemistryField(label="Chemistry")
